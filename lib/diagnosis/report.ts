@@ -1,0 +1,163 @@
+// In: nothing. Out: the decode report as a zod schema: a public interface, versioned, changed only by adding fields.
+// README.md documents it; the command line, the stations' API and "download report" all print exactly this.
+
+import { z } from "zod";
+
+export const REPORT_SCHEMA = "firstlow.report/1";
+
+const warning = z.object({ code: z.string(), message: z.string(), line: z.int().optional(), count: z.int().optional() });
+
+export const CaptureSchema = z.object({
+  format: z.enum(["csv", "vcd"]),
+  levels: z.enum(["digital", "volts"]),
+  start_s: z.number(),
+  duration_s: z.number(),
+  samples: z.int(),
+  edges: z.object({ scl: z.int(), sda: z.int() }),
+  sample_interval_s: z.number().nullable(),
+  channels: z.array(z.string()),
+  scl: z.string(),
+  sda: z.string(),
+  taps: z.array(z.object({ label: z.string(), scl: z.string().nullable(), sda: z.string().nullable() })),
+  vdd_v: z.number().nullable(),
+  vil_v: z.number().nullable(),
+  vih_v: z.number().nullable(),
+  time_base: z.enum(["file", "given", "assumed"]),
+  warnings: z.array(warning),
+});
+
+export const TransactionSchema = z.object({
+  index: z.int(),
+  start_s: z.number(),
+  end_s: z.number(),
+  opens: z.enum(["S", "Sr"]),
+  closes: z.enum(["P", "Sr", "none"]),
+  address_bytes: z.array(z.object({ value: z.int(), ack: z.boolean() })),
+  address: z.int().nullable(),
+  address_bits: z.union([z.literal(7), z.literal(10)]).nullable(),
+  direction: z.enum(["W", "R"]).nullable(),
+  kind: z.enum(["normal", "general-call", "start-byte", "hs-controller-code", "device-id", "reserved", "bus-clear", "broken"]),
+  address_ack: z.boolean().nullable(),
+  bytes: z.array(z.object({ value: z.int(), ack: z.boolean().nullable(), start_s: z.number(), bits: z.int() })),
+  controller: z.string().nullable(),
+});
+
+export const StretchSchema = z.object({
+  transaction: z.int(),
+  byte: z.int(),
+  bit: z.int(),
+  start_s: z.number(),
+  low_s: z.number(),
+  excess_s: z.number(),
+  by: z.enum(["target", "controller", "unknown"]),
+});
+
+export const EvidenceSchema = z.object({
+  kind: z.enum(["drive-tap", "low-level", "clock-sync", "start", "data-timing", "retry", "log"]),
+  bits: z.number(),
+  detail: z.string(),
+});
+
+export const ContestSchema = z.object({
+  transaction: z.int(),
+  start_s: z.number(),
+  decided_s: z.number(),
+  byte: z.int(),
+  bit: z.int(),
+  bit_index: z.int(),
+  kept: z.string().nullable(),
+  yielded: z.string().nullable(),
+  retry: z.int().nullable(),
+  probability: z.number(),
+  grade: z.enum(["certain", "strong", "probable", "weak"]),
+  evidence: z.array(EvidenceSchema),
+  look_alikes: z.array(z.object({ kind: z.string(), probability: z.number(), detail: z.string() })),
+});
+
+export const FAULT_KINDS = [
+  "address-nack",
+  "data-nack",
+  "missing-stop",
+  "misplaced-start",
+  "misplaced-stop",
+  "short-byte",
+  "void-message",
+  "spike",
+  "sda-change-while-high",
+  "scl-stuck-low",
+  "sda-stuck-low",
+  "bus-clear",
+  "phantom-start",
+  "reserved-address",
+  "pec-mismatch",
+  "smbus-timeout",
+  "low-swing",
+  "slow-rise",
+  "between-thresholds",
+  "address-collision",
+  "bit-slip",
+  "look-alike",
+] as const;
+
+export const FaultSchema = z.object({
+  kind: z.enum(FAULT_KINDS),
+  transaction: z.int().nullable(),
+  time_s: z.number(),
+  detail: z.string(),
+});
+
+export const MeasurementSchema = z.object({
+  parameter: z.string(),
+  count: z.int(),
+  min_s: z.number().nullable(),
+  p50_s: z.number().nullable(),
+  max_s: z.number().nullable(),
+  limit_min_s: z.number().nullable(),
+  limit_max_s: z.number().nullable(),
+  below: z.int(),
+  above: z.int(),
+  uncertain: z.int(),
+});
+
+export const ViolationSchema = z.object({
+  parameter: z.string(),
+  transaction: z.int().nullable(),
+  time_s: z.number(),
+  measured_s: z.number(),
+  limit_s: z.number(),
+  side: z.enum(["min", "max"]),
+});
+
+export const ControllerSchema = z.object({
+  id: z.string(),
+  name: z.string().nullable(),
+  tlow_s: z.number().nullable(),
+  thigh_s: z.number().nullable(),
+  vol_v: z.number().nullable(),
+  transactions: z.int(),
+});
+
+export const ReportSchema = z.object({
+  schema: z.literal(REPORT_SCHEMA),
+  capture: CaptureSchema,
+  transactions: z.array(TransactionSchema),
+  stretches: z.array(StretchSchema),
+  contests: z.array(ContestSchema),
+  faults: z.array(FaultSchema),
+  measurements: z.array(MeasurementSchema),
+  violations: z.array(ViolationSchema),
+  controllers: z.array(ControllerSchema),
+  limits: z.object({ profile: z.string(), source: z.string() }),
+  verdict: z.enum(["pass", "fail", "undecided"]),
+});
+
+export type Report = z.infer<typeof ReportSchema>;
+/** The report without its transactions: small however long the capture, so it crosses threads and is stored as a summary. */
+export type Summary = Omit<Report, "transactions"> & { readonly transactionCount: number };
+export type Contest = z.infer<typeof ContestSchema>;
+export type Fault = z.infer<typeof FaultSchema>;
+export type FaultKind = Fault["kind"];
+export type Stretch = z.infer<typeof StretchSchema>;
+export type Measurement = z.infer<typeof MeasurementSchema>;
+export type Violation = z.infer<typeof ViolationSchema>;
+export type ControllerRow = z.infer<typeof ControllerSchema>;

@@ -1,0 +1,19 @@
+/** @type {import('next').NextConfig} */
+const config = {
+  agentRules: false,
+  experimental: { agentUpgrade: false },
+  distDir: process.env.FIRSTLOW_DIST ?? ".next",
+  poweredByHeader: false,
+  reactStrictMode: true,
+  serverExternalPackages: [
+    "@mikro-orm/core",
+    "@mikro-orm/knex",
+    "@mikro-orm/migrations",
+    "@mikro-orm/postgresql",
+    "@node-rs/argon2",
+    "nodemailer",
+    "pg",
+  ],
+};
+
+export default config;

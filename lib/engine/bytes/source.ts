@@ -9,6 +9,8 @@ export interface ByteSource {
   readonly size: number | null;
   /** Reads from the start. Chunks may be of any length and are not kept by the caller after the next one is asked for. */
   open(): AsyncIterable<Uint8Array>;
+  /** Stored bytes consumed by the latest `open`, where that differs from the bytes delivered (gzip); readers report it as progress. */
+  consumed?(): number;
 }
 
 /** What the engine needs of its host and may not bring itself. */

@@ -13,6 +13,16 @@ export interface DecodeListener {
   transactions(block: TransactionBlock, bytes: ByteBlock): void;
   /** A pulse shorter than tSP that was taken out. */
   spike(spike: Spike): void;
+  /** Clocks of a transaction whose START lies before the record or before a cut. At most one per uncut stretch of record. */
+  remnant(remnant: Remnant): void;
+}
+
+/** What is left of a transaction that began before the record (or a cut) did; its bits cannot be framed into bytes. */
+export interface Remnant {
+  readonly startTick: number;
+  readonly endTick: number;
+  readonly pulses: number;
+  readonly closes: "P" | "Sr" | "none";
 }
 
 export interface Decoder {

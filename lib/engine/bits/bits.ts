@@ -16,6 +16,8 @@ export const SETUP_WITHIN_SAMPLE = 1;
 export const IN_HS = 2;
 /** SDA changed in the very tick in which SCL fell: hold time is within one sample. */
 export const HOLD_WITHIN_SAMPLE = 4;
+/** No transaction is open: clocks of a transaction that began before the record, after a STOP, or of a bus clear. */
+export const OUTSIDE = 8;
 
 /** Struct of arrays; only the first `length` entries count. NaN in a time column means "not there". */
 export interface BitBlock {
@@ -30,9 +32,9 @@ export interface BitBlock {
   readonly fall: Float64Array;
   /** The SCL rise of the high this entry stands in. For BIT equal to `tick`. For START: NaN. */
   readonly rise: Float64Array;
-  /** BIT: the SCL fall that ends the high. START and Sr: the first SCL fall after (known when the next entry starts). STOP: NaN. */
+  /** BIT: the SCL fall that ends the high; NaN where the record ended first. START and Sr: the first SCL fall after. STOP: NaN. */
   readonly end: Float64Array;
-  /** First and last SDA change inside that low (after `fall`, up to and including `rise`); NaN where SDA did not change. */
+  /** First and last SDA change inside that low (from `fall` to `rise`, both included); NaN where SDA did not change. */
   readonly sdaFirst: Float64Array;
   readonly sdaLast: Float64Array;
   /** Index of the edge (counted over the whole capture) that gives `tick`. */
@@ -41,6 +43,7 @@ export interface BitBlock {
   readonly leads: BitLeads | null;
 }
 
+/** START, Sr, STOP: `sdaLast` is the lead of the SDA change that made the condition. */
 export interface BitLeads {
   readonly fall: Float32Array;
   readonly rise: Float32Array;

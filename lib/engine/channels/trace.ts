@@ -11,6 +11,8 @@ export interface LineTrace {
   readonly ticks: Float64Array;
   /** Level after each change: 0, 1, or 2 for unknown. */
   readonly levels: Uint8Array;
+  /** Tick after which this line was no longer followed (a busy line fills its share); absent where the whole survey is held. */
+  readonly until?: number;
 }
 
 /** What one ordering of a pair decodes to, for the preview a person confirms. */

@@ -13,6 +13,8 @@ export function ormConfig(): Options {
     discovery: { disableDynamicFileAccess: true },
     migrations: { path: "./migrations", pathTs: "./migrations", snapshotName: ".snapshot", emit: "ts" },
     forceUtcTimezone: true,
+    // Ids exist from the moment a row is made, so that the audit line of the same transaction can name it.
+    processOnCreateHooksEarly: true,
     pool: { min: 0, max: pool },
   });
 }

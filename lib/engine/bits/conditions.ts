@@ -2,7 +2,7 @@
 // A change of SDA counts only against the level SCL has around that instant: in the tick in which SCL falls it belongs to the
 // low that begins, in the tick in which SCL rises it belongs to the low that ends.
 
-import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../samples/edges";
+import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN, type VoltColumns } from "../samples/edges";
 import {
   BIT,
   type BitBlock,
@@ -20,6 +20,8 @@ import { BIT_BLOCK_CAPACITY, newBitBlock } from "./columns";
 const UNKNOWN = SCL_UNKNOWN | SDA_UNKNOWN;
 /** Pulses of one byte on the wire: eight bits and the acknowledge. */
 const SLOTS = 9;
+/** Both lines known, no cut: the values of `lines` from 0 to 3. */
+const LEVELS = SCL | SDA;
 /** No condition pending. */
 const NONE = -1;
 
@@ -40,13 +42,27 @@ export interface ConditionDecoder {
 export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) => void): ConditionDecoder {
   const out = newBitBlock(volts);
   const leads = out.leads;
+  // Times live in an object's fields: captured variables would box every double anew.
+  const at = {
+    fall: Number.NaN,
+    rise: Number.NaN,
+    sdaFirst: Number.NaN,
+    sdaLast: Number.NaN,
+    riseEdge: Number.NaN,
+    pendingTick: Number.NaN,
+    pendingEdge: Number.NaN,
+    pendingLead: Number.NaN,
+    lastTick: Number.NaN,
+    lastEdge: Number.NaN,
+    fallLead: Number.NaN,
+    riseLead: Number.NaN,
+    firstLead: Number.NaN,
+    lastLead: Number.NaN,
+    sclLow: Number.NaN,
+    sdaHigh: Number.NaN,
+  };
   // Levels before the current event; UNKNOWN until the first one.
   let lines = UNKNOWN;
-  let fall = Number.NaN;
-  let rise = Number.NaN;
-  let sdaFirst = Number.NaN;
-  let sdaLast = Number.NaN;
-  let riseEdge = 0;
   let lowFlags = 0;
   // A transaction is open (START seen, no STOP yet); busy without one means clocks came before any START.
   let open = false;
@@ -55,24 +71,13 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
   let conditionInHigh = false;
   // START and Sr wait for the SCL fall that gives their `end`.
   let pending = NONE;
-  let pendingTick = 0;
-  let pendingEdge = 0;
-  let pendingLead = 0;
   // Slot of the next bit, and the bits since START, to find the Hs controller code.
   let slot = 0;
   let sinceStart = 0;
   let shift = 0;
   let hs = false;
   let afterPlainStart = false;
-  let lastTick = 0;
-  let lastEdge = 0;
   // Volts: leads of the edges remembered above.
-  let fallLead = 0;
-  let riseLead = 0;
-  let firstLead = 0;
-  let lastLead = 0;
-  let sclLow = Number.NaN;
-  let sdaHigh = Number.NaN;
 
   function put(kind: number, value: number, flags: number, tick: number, edge: number, end: number, endLead: number): void {
     if (out.length === BIT_BLOCK_CAPACITY) flush();
@@ -84,26 +89,26 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
     out.edge[i] = edge;
     out.end[i] = end;
     const plain = kind !== START && kind !== LOST;
-    out.fall[i] = plain ? fall : Number.NaN;
-    out.rise[i] = plain ? rise : Number.NaN;
-    out.sdaFirst[i] = plain ? sdaFirst : Number.NaN;
-    out.sdaLast[i] = plain ? sdaLast : Number.NaN;
+    out.fall[i] = plain ? at.fall : Number.NaN;
+    out.rise[i] = plain ? at.rise : Number.NaN;
+    out.sdaFirst[i] = plain ? at.sdaFirst : Number.NaN;
+    out.sdaLast[i] = plain ? at.sdaLast : Number.NaN;
     if (leads !== null) putLeads(i, kind, endLead);
   }
 
   function putLeads(i: number, kind: number, endLead: number): void {
     if (leads === null) return;
-    leads.fall[i] = fallLead;
-    leads.rise[i] = riseLead;
+    leads.fall[i] = at.fallLead;
+    leads.rise[i] = at.riseLead;
     leads.end[i] = endLead;
-    leads.sdaFirst[i] = firstLead;
-    leads.sdaLast[i] = kind === BIT ? lastLead : pendingLead;
-    leads.sdaHigh[i] = sdaHigh;
-    leads.sclLow[i] = sclLow;
+    leads.sdaFirst[i] = at.firstLead;
+    leads.sdaLast[i] = kind === BIT ? at.lastLead : at.pendingLead;
+    leads.sdaHigh[i] = at.sdaHigh;
+    leads.sclLow[i] = at.sclLow;
   }
 
   function putBit(value: number, end: number, endLead: number): void {
-    put(BIT, value, open ? lowFlags : lowFlags | OUTSIDE, rise, riseEdge, end, endLead);
+    put(BIT, value, open ? lowFlags : lowFlags | OUTSIDE, at.rise, at.riseEdge, end, endLead);
     if (!open) return;
     slot = slot === SLOTS - 1 ? 0 : slot + 1;
     if (sinceStart >= SLOTS) return;
@@ -117,13 +122,13 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
     if (pending === NONE) return;
     const kind = pending;
     pending = NONE;
-    put(kind, 0, 0, pendingTick, pendingEdge, end, endLead);
+    put(kind, 0, 0, at.pendingTick, at.pendingEdge, end, endLead);
   }
 
   function condition(tick: number, edge: number, sdaRose: boolean, lead: number): void {
     putPending(Number.NaN, 0);
     conditionInHigh = true;
-    pendingLead = lead;
+    at.pendingLead = lead;
     if (sdaRose) {
       put(STOP, 0, 0, tick, edge, Number.NaN, 0);
       open = false;
@@ -133,8 +138,8 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
     }
     pending = open || busy ? REPEATED_START : START;
     afterPlainStart = pending === START;
-    pendingTick = tick;
-    pendingEdge = edge;
+    at.pendingTick = tick;
+    at.pendingEdge = edge;
     open = true;
     busy = true;
     slot = 0;
@@ -145,7 +150,7 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
   // The high under way when the record breaks off: inside a byte its bit was readable; between bytes it may have been a STOP's.
   function settleHigh(): void {
     putPending(Number.NaN, 0);
-    const high = (lines & SCL) !== 0 && !conditionInHigh && !Number.isNaN(rise);
+    const high = (lines & SCL) !== 0 && !conditionInHigh && !Number.isNaN(at.rise);
     if (high && open && slot > 0) putBit((lines & SDA) === 0 ? 0 : 1, Number.NaN, 0);
   }
 
@@ -157,85 +162,164 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
     open = false;
     hs = false;
     conditionInHigh = false;
-    fall = Number.NaN;
-    rise = Number.NaN;
-    sdaFirst = Number.NaN;
-    sdaLast = Number.NaN;
+    at.fall = Number.NaN;
+    at.rise = Number.NaN;
+    at.sdaFirst = Number.NaN;
+    at.sdaLast = Number.NaN;
     lowFlags = 0;
     lines = next & ~CUT;
     busy = (lines & (UNKNOWN | SCL)) === 0;
   }
 
-  function sclFell(tick: number, edge: number, changed: number, volt: EdgeBlock["volts"], i: number): void {
-    const lead = volt === null ? 0 : volt.leadScl[i];
-    if (pending !== NONE) putPending(tick, lead);
-    else if (!conditionInHigh && !Number.isNaN(rise)) putBit((lines & SDA) === 0 ? 0 : 1, tick, lead);
-    if (!open && !conditionInHigh) busy = busy || Number.isNaN(rise);
-    conditionInHigh = false;
-    fall = tick;
-    lowFlags = 0;
-    sdaFirst = Number.NaN;
-    if ((changed & SDA) !== 0) {
-      sdaFirst = tick;
-      lowFlags = HOLD_WITHIN_SAMPLE;
+  function noteSda(tick: number, lead: number): void {
+    if (Number.isNaN(at.sdaFirst)) {
+      at.sdaFirst = tick;
+      at.firstLead = lead;
     }
-    sdaLast = sdaFirst;
-    if (volt !== null) {
-      fallLead = lead;
-      firstLead = volt.leadSda[i];
-      lastLead = firstLead;
-      sclLow = volt.meanScl[i];
-    }
-    lastEdge = edge;
+    at.sdaLast = tick;
+    at.lastLead = lead;
   }
 
-  function sclRose(tick: number, edge: number, changed: number, volt: EdgeBlock["volts"], i: number): void {
-    rise = tick;
-    riseEdge = edge;
+  // The SCL fall in full: ends a bit or a pending condition, begins a low.
+  function sclFell(tick: number, changed: number, volt: VoltColumns | null, i: number): void {
+    const lead = volt === null ? 0 : volt.leadScl[i];
+    if (pending !== NONE) putPending(tick, lead);
+    else if (!conditionInHigh && !Number.isNaN(at.rise)) putBit((lines & SDA) === 0 ? 0 : 1, tick, lead);
+    if (!open && !conditionInHigh) busy = busy || Number.isNaN(at.rise);
+    conditionInHigh = false;
+    at.fall = tick;
+    const held = (changed & SDA) !== 0;
+    lowFlags = held ? HOLD_WITHIN_SAMPLE : 0;
+    at.sdaFirst = held ? tick : Number.NaN;
+    at.sdaLast = at.sdaFirst;
+    if (volt === null) return;
+    at.fallLead = lead;
+    at.firstLead = volt.leadSda[i];
+    at.lastLead = at.firstLead;
+    at.sclLow = volt.meanScl[i];
+  }
+
+  function sclRose(tick: number, edge: number, changed: number, volt: VoltColumns | null, i: number): void {
+    at.rise = tick;
+    at.riseEdge = edge;
     if ((changed & SDA) !== 0) {
       lowFlags |= SETUP_WITHIN_SAMPLE;
       noteSda(tick, volt === null ? 0 : volt.leadSda[i]);
     }
-    if (volt !== null) {
-      riseLead = volt.leadScl[i];
-      sdaHigh = volt.meanSda[i];
-    }
+    if (volt === null) return;
+    at.riseLead = volt.leadScl[i];
+    at.sdaHigh = volt.meanSda[i];
   }
 
-  function noteSda(tick: number, lead: number): void {
-    if (Number.isNaN(sdaFirst)) {
-      sdaFirst = tick;
-      firstLead = lead;
+  function step(next: number, tick: number, edge: number, volt: VoltColumns | null, i: number): void {
+    if (((next | lines) & (UNKNOWN | CUT)) !== 0) {
+      lose(tick, edge, next);
+      return;
     }
-    sdaLast = tick;
-    lastLead = lead;
+    const changed = next ^ lines;
+    if ((changed & SCL) !== 0) {
+      if ((next & SCL) === 0) sclFell(tick, changed, volt, i);
+      else sclRose(tick, edge, changed, volt, i);
+    } else if (changed !== 0) {
+      const lead = volt === null ? 0 : volt.leadSda[i];
+      if ((next & SCL) !== 0) condition(tick, edge, (next & SDA) !== 0, lead);
+      else noteSda(tick, lead);
+    }
+    if (volt !== null && (next & SCL) === 0 && Number.isNaN(at.sclLow)) at.sclLow = volt.meanScl[i];
+    lines = next;
+  }
+
+  // The bits of one byte as they come in lawful traffic, with everything in locals; stops at the first entry that is anything
+  // else, which `step` then takes. Returns the index it stopped at.
+  function runPlain(block: EdgeBlock, from: number, to: number, firstEdge: number): number {
+    const { ticks, lines: levels } = block;
+    const {
+      kind,
+      value,
+      flags,
+      tick: tickColumn,
+      fall: fallColumn,
+      rise: riseColumn,
+      end,
+      sdaFirst: firstColumn,
+      sdaLast,
+      edge,
+    } = out;
+    const carried = hs ? IN_HS : 0;
+    let now = lines;
+    let fall = at.fall;
+    let rise = at.rise;
+    let riseEdge = at.riseEdge;
+    let first = at.sdaFirst;
+    let last = at.sdaLast;
+    let n = out.length;
+    let i = from;
+    // Below the first nine bits of a transaction `putBit` looks for the Hs controller code, so they go through `step`.
+    for (; i < to && n < BIT_BLOCK_CAPACITY; i++) {
+      const next = levels[i];
+      const changed = next ^ now;
+      if (next > LEVELS || changed === (SCL | SDA)) break;
+      if (changed === SCL) {
+        if ((next & SCL) !== 0) {
+          rise = ticks[i];
+          riseEdge = firstEdge + i;
+        } else {
+          kind[n] = BIT;
+          value[n] = now >> 1;
+          flags[n] = carried;
+          tickColumn[n] = rise;
+          fallColumn[n] = fall;
+          riseColumn[n] = rise;
+          end[n] = ticks[i];
+          firstColumn[n] = first;
+          sdaLast[n] = last;
+          edge[n] = riseEdge;
+          n++;
+          slot = slot === SLOTS - 1 ? 0 : slot + 1;
+          fall = ticks[i];
+          first = Number.NaN;
+          last = Number.NaN;
+        }
+      } else if (changed === SDA) {
+        if ((next & SCL) !== 0) break;
+        last = ticks[i];
+        if (Number.isNaN(first)) first = last;
+      }
+      now = next;
+    }
+    lines = now;
+    at.fall = fall;
+    at.rise = rise;
+    at.riseEdge = riseEdge;
+    at.sdaFirst = first;
+    at.sdaLast = last;
+    out.length = n;
+    return i;
   }
 
   function run(block: EdgeBlock, from: number, to: number, firstEdge: number): void {
-    const { ticks, volts: volt } = block;
-    const levels = block.lines;
-    for (let i = from; i < to; i++) {
-      const next = levels[i];
-      const tick = ticks[i];
-      if (((next | lines) & (UNKNOWN | CUT)) !== 0) {
-        lose(tick, firstEdge + i, next);
-        continue;
+    const { ticks, volts: volt, lines: levels } = block;
+    let i = from;
+    while (i < to) {
+      if (
+        volt === null &&
+        open &&
+        sinceStart === SLOTS &&
+        lowFlags === 0 &&
+        pending === NONE &&
+        !conditionInHigh &&
+        lines <= LEVELS
+      ) {
+        if (out.length === BIT_BLOCK_CAPACITY) flush();
+        i = runPlain(block, i, to, firstEdge);
+        if (i === to || out.length === BIT_BLOCK_CAPACITY) continue;
       }
-      const changed = next ^ lines;
-      if ((changed & SCL) !== 0) {
-        if ((next & SCL) === 0) sclFell(tick, firstEdge + i, changed, volt, i);
-        else sclRose(tick, firstEdge + i, changed, volt, i);
-      } else if (changed !== 0) {
-        const lead = volt === null ? 0 : volt.leadSda[i];
-        if ((next & SCL) !== 0) condition(tick, firstEdge + i, (next & SDA) !== 0, lead);
-        else noteSda(tick, lead);
-      }
-      if (volt !== null && (next & SCL) === 0 && Number.isNaN(sclLow)) sclLow = volt.meanScl[i];
-      lines = next;
+      step(levels[i], ticks[i], firstEdge + i, volt, i);
+      i++;
     }
     if (to > from) {
-      lastTick = ticks[to - 1];
-      lastEdge = firstEdge + to - 1;
+      at.lastTick = ticks[to - 1];
+      at.lastEdge = firstEdge + to - 1;
     }
   }
 
@@ -247,7 +331,7 @@ export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) =
 
   function finish(endTick: number): void {
     settleHigh();
-    if (open || busy) put(LOST, 0, open ? 0 : OUTSIDE, Math.max(endTick, lastTick), lastEdge, Number.NaN, 0);
+    if (open || busy) put(LOST, 0, open ? 0 : OUTSIDE, Math.max(endTick, at.lastTick), at.lastEdge, Number.NaN, 0);
     open = false;
     flush();
   }

@@ -119,6 +119,13 @@ function pulseEnd(block: EdgeBlock, i: number, line: number, limit: number): num
 
 function hasShortPulse(block: EdgeBlock, before: number, limit: number): boolean {
   const { ticks: at, lines } = block;
+  // Nearly always no two entries are that close, and the look at each line can be spared.
+  let closest = Number.POSITIVE_INFINITY;
+  for (let i = 1; i < block.length; i++) {
+    const gap = at[i] - at[i - 1];
+    if (gap < closest) closest = gap;
+  }
+  if (closest >= limit) return false;
   let sclAt = Number.NEGATIVE_INFINITY;
   let sdaAt = Number.NEGATIVE_INFINITY;
   let prev = before;

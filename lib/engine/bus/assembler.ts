@@ -22,18 +22,22 @@ export interface Assembler {
 export function createAssembler(listener: AssemblyListener): Assembler {
   const transactions = new TransactionBuilder();
   const bytes = new ByteBuilder();
+  // Times live in an object's fields: captured variables would box every double anew.
+  const at = {
+    startTick: Number.NaN,
+    startEdge: Number.NaN,
+    byteStart: Number.NaN,
+    lastEnd: Number.NaN,
+    firstByte: 0,
+    remnantStart: Number.NaN,
+  };
   let open = false;
   let opens = 0;
-  let startTick = 0;
-  let startEdge = 0;
   let flags = 0;
-  let firstByte = 0;
   let byteCount = 0;
   let pulses = 0;
   let slot = 0;
   let shift = 0;
-  let byteStart = 0;
-  let lastEnd = 0;
   // First two bytes whole: what the address is made of.
   let first = -1;
   let second = -1;
@@ -42,31 +46,30 @@ export function createAssembler(listener: AssemblyListener): Assembler {
   // 10-bit address of the write before a repeated START; gone with STOP.
   let remembered = NO_ADDRESS;
   // Clocks before any START of this stretch of record.
-  let remnantStart = Number.NaN;
   let remnantPulses = 0;
   let framed = false;
 
   function begin(kind: number, tick: number, edge: number, hs: boolean): void {
     open = true;
     opens = kind === START ? 0 : 1;
-    startTick = tick;
-    startEdge = edge;
+    at.startTick = tick;
+    at.startEdge = edge;
     flags = hs ? FLAG.hs : 0;
-    firstByte = bytes.next;
+    at.firstByte = bytes.next;
     byteCount = 0;
     pulses = 0;
     slot = 0;
     shift = 0;
     first = -1;
     second = -1;
-    lastEnd = tick;
+    at.lastEnd = tick;
   }
 
   function bit(value: number, tick: number, end: number, bitFlags: number): void {
     pulses++;
     if ((bitFlags & SETUP_WITHIN_SAMPLE) !== 0) flags |= FLAG.setupWithinSample;
-    if (slot === 0) byteStart = tick;
-    lastEnd = Number.isNaN(end) ? tick : end;
+    if (slot === 0) at.byteStart = tick;
+    at.lastEnd = Number.isNaN(end) ? tick : end;
     if (slot < 8) {
       shift = (shift << 1) | value;
       slot++;
@@ -80,7 +83,7 @@ export function createAssembler(listener: AssemblyListener): Assembler {
       second = shift;
       secondAck = ack;
     }
-    bytes.push(shift, ack, 8, byteStart, lastEnd);
+    bytes.push(shift, ack, 8, at.byteStart, at.lastEnd);
     byteCount++;
     slot = 0;
     shift = 0;
@@ -98,7 +101,7 @@ export function createAssembler(listener: AssemblyListener): Assembler {
     const addressBytes = first < 0 ? 0 : tenBitWrite && second >= 0 ? 2 : 1;
     const addressBroke = first < 0 || (tenBitWrite && second < 0 && slot > 0);
     if (slot > 0) {
-      bytes.push(shift, NO_ACK_BIT, slot, byteStart, lastEnd);
+      bytes.push(shift, NO_ACK_BIT, slot, at.byteStart, at.lastEnd);
       byteCount++;
       flags |= FLAG.shortByte;
       if (closes === CLOSE.stop) flags |= FLAG.misplacedStop;
@@ -107,9 +110,9 @@ export function createAssembler(listener: AssemblyListener): Assembler {
     if (pulses === 0 && closes !== CLOSE.none) flags |= FLAG.voidMessage;
     if (closes === CLOSE.none) flags |= FLAG.endsInRecord;
     transactions.push({
-      startTick,
-      endTick: closes === CLOSE.none ? lastEnd : tick,
-      startEdge,
+      startTick: at.startTick,
+      endTick: closes === CLOSE.none ? at.lastEnd : tick,
+      startEdge: at.startEdge,
       endEdge: edge,
       opens,
       closes,
@@ -120,7 +123,7 @@ export function createAssembler(listener: AssemblyListener): Assembler {
       direction: addressed.direction,
       addressAck: addressBytes === 2 ? secondAck : addressBytes === 1 && !(tenBitWrite && addressBroke) ? firstAck : NO_ACK_BIT,
       flags,
-      firstByte,
+      firstByte: at.firstByte,
       byteCount,
       pulses,
     });
@@ -137,10 +140,11 @@ export function createAssembler(listener: AssemblyListener): Assembler {
   }
 
   function endRemnant(tick: number, closes: Remnant["closes"]): void {
-    if (!framed && remnantPulses > 0) listener.remnant({ startTick: remnantStart, endTick: tick, pulses: remnantPulses, closes });
+    if (!framed && remnantPulses > 0)
+      listener.remnant({ startTick: at.remnantStart, endTick: tick, pulses: remnantPulses, closes });
     framed = closes !== "none";
     remnantPulses = 0;
-    remnantStart = Number.NaN;
+    at.remnantStart = Number.NaN;
   }
 
   function bits(block: BitBlock): void {
@@ -150,7 +154,7 @@ export function createAssembler(listener: AssemblyListener): Assembler {
       if (k === BIT) {
         if ((bitFlags[i] & OUTSIDE) === 0) bit(value[i], tick[i], end[i], bitFlags[i]);
         else if (!framed) {
-          if (remnantPulses === 0) remnantStart = tick[i];
+          if (remnantPulses === 0) at.remnantStart = tick[i];
           remnantPulses++;
         }
         continue;
@@ -174,7 +178,7 @@ export function createAssembler(listener: AssemblyListener): Assembler {
 
   function flush(): void {
     if (transactions.waiting === 0) return;
-    const upTo = open ? firstByte : bytes.next;
+    const upTo = open ? at.firstByte : bytes.next;
     listener.transactions(transactions.take(), bytes.take(upTo));
   }
 

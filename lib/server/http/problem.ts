@@ -28,6 +28,12 @@ const table = {
     words: "Something broke on our side. Nothing was saved; try again, and quote the request number if it happens again.",
   },
   "mail-failed": { status: 503, words: "The mail could not be sent, so nothing was changed. Try again later." },
+  "upload-mismatch": {
+    status: 422,
+    words: "What arrived in storage is not the file that was announced, so it was not accepted. Upload it again.",
+  },
+  "upload-ended": { status: 410, words: "This upload was cancelled, refused or left alone for too long. Start it again." },
+  "upload-busy": { status: 409, words: "This upload is being checked. Ask again in a moment." },
   "storage-failed": { status: 503, words: "The file storage did not answer. Nothing was lost; try again." },
 } as const;
 
@@ -44,6 +50,8 @@ interface Particulars {
   readonly fields?: FieldMessages;
   /** Seconds to wait, for "too-many". */
   readonly retryAfter?: number;
+  /** For "stale": what stands there now, as a read would answer it, so that neither version is lost. */
+  readonly theirs?: unknown;
 }
 
 /** Thrown by anything behind a door to answer with a row of the table; everything else thrown is our own fault. */
@@ -70,6 +78,7 @@ export interface Told {
   readonly fields: FieldMessages;
   readonly requestId: string;
   readonly retryAfter: number | null;
+  readonly theirs?: unknown;
 }
 
 /** Any thrown value as an answer. What was not a refusal is logged with its request number and kept to ourselves. */
@@ -83,6 +92,7 @@ export function tell(error: unknown, requestId: string): Told {
     fields: refusal.particulars.fields ?? {},
     requestId,
     retryAfter: refusal.particulars.retryAfter ?? null,
+    theirs: refusal.particulars.theirs,
   };
 }
 
@@ -101,6 +111,7 @@ export function problemResponse(told: Told): Response {
     code: told.code,
     requestId: told.requestId,
     ...(Object.keys(told.fields).length > 0 ? { fields: told.fields } : {}),
+    ...(told.theirs === undefined ? {} : { theirs: told.theirs }),
   };
   return new Response(JSON.stringify(body), { status: told.status, headers });
 }

@@ -16,6 +16,8 @@ interface RouteDefinition<Who extends keyof Admitted, Input extends z.ZodType, P
   /** Shape of the query (GET, HEAD) or of the JSON body; left out where the handler reads neither. */
   readonly input?: Input;
   readonly params?: Params;
+  /** Bytes of JSON accepted, where 4 MiB are not enough. */
+  readonly limit?: number;
   /** Another proof than the session: a share link or a station's key. */
   readonly settle?: (caller: Caller, params: z.output<Params>, request: Request) => Promise<Viewer>;
   /** Returns a Response, or a value that is sent as JSON. */
@@ -66,7 +68,9 @@ async function enter<Who extends keyof Admitted, Input extends z.ZodType, Params
   if (!reading && !request.headers.has("authorization")) checkOrigin(caller);
   const params = pathParams(definition.params, rawParams);
   const viewer = await admit(definition, caller, settle && (() => settle(caller, params, request)));
-  const input = definition.input ? parse(definition.input, reading ? queryOf(request) : await jsonOf(request)) : undefined;
+  const input = definition.input
+    ? parse(definition.input, reading ? queryOf(request) : await jsonOf(request, definition.limit ?? bodyLimit))
+    : undefined;
   return definition.handle({ viewer, input: input as z.output<Input>, params, request, caller, em: await fork() });
 }
 
@@ -81,11 +85,11 @@ function queryOf(request: Request): Record<string, string> {
   return Object.fromEntries(new URL(request.url).searchParams);
 }
 
-async function jsonOf(request: Request): Promise<unknown> {
+async function jsonOf(request: Request, limit: number): Promise<unknown> {
   if (!(request.headers.get("content-type") ?? "").startsWith("application/json")) throw new Refusal("type-refused");
-  if (Number(request.headers.get("content-length") ?? 0) > bodyLimit) throw new Refusal("too-large");
+  if (Number(request.headers.get("content-length") ?? 0) > limit) throw new Refusal("too-large");
   const text = await request.text();
-  if (text.length > bodyLimit) throw new Refusal("too-large");
+  if (text.length > limit) throw new Refusal("too-large");
   try {
     return JSON.parse(text);
   } catch {

@@ -1,0 +1,232 @@
+// In: bits, block by block, and the profile to judge by (or the modes to try). Out: every interval of the specification's
+// tables, in columns. Measuring points are those of REFERENCE 1.6 (UM10204 Figure 38); for a capture in volts each interval
+// takes its own thresholds from the leads, for a one-threshold capture both points of an edge are the same instant.
+
+import type { Timebase } from "../base/time";
+import { BIT, type BitBlock, IN_HS, LOST, OUTSIDE, type Spike, START, STOP } from "../engine/bits/bits";
+import type { CaptureHead } from "../engine/samples/reader";
+import { type ColumnSet, columnsFor, columnsOf } from "./columns";
+import { type LevelColumns, levelColumns, noteLevels } from "./levels";
+import type { LimitTable, Profile } from "./profile";
+
+export type MeasureHead = Pick<CaptureHead, "timebase" | "levels" | "sampleTicks">;
+
+/** Low periods longer than this many times the shortest one of their transaction are stretched, for tVD's purposes. */
+const STRETCHED = 1.5;
+/** From this many clock periods on, a mode that most of them are too fast for is no longer tried. */
+const SETTLED = 20_000;
+const ACK_SLOT = 8;
+
+export interface Measured {
+  readonly base: Timebase;
+  /** Standard, Fast and Fast-mode Plus traffic; judged by each of the profiles tried, in their order. */
+  readonly fs: ColumnSet;
+  /** Hs traffic, or null where there was none; judged by one table. */
+  readonly hs: ColumnSet | null;
+  readonly levels: LevelColumns | null;
+  /** Widest uncertainty of one interval, ticks; 0 where times are exact. */
+  readonly doubt: number;
+}
+
+export interface Measurement {
+  bits(block: BitBlock): void;
+  spike(spike: Spike): void;
+  readonly measured: Measured;
+}
+
+/**
+ * Uncertainty of an interval between two edges, in ticks. Uniform samples: one sample interval, exclusive (REFERENCE 7); a
+ * tick and a half is taken off where the interval was rounded to ticks. Change times are exact to their own step, and an
+ * exclusive step leaves nothing but the value itself.
+ */
+export function doubtOf(head: MeasureHead): number {
+  if (head.sampleTicks === null) return 0;
+  return head.sampleTicks > 64 ? head.sampleTicks - 1.5 : head.sampleTicks;
+}
+
+/**
+ * @param tried profiles to judge by, slowest first; empty where no limit may be judged
+ * @param hsTable limits for Hs traffic
+ */
+export function createMeasurement(head: MeasureHead, tried: readonly Profile[], hsTable: LimitTable | null): Measurement {
+  const doubt = doubtOf(head);
+  const fs = columnsFor(
+    tried.map((profile) => profile.limits),
+    head.timebase,
+    doubt,
+    false,
+  );
+  const run = new Run(head, doubt, fs, () => columnsFor(hsTable === null ? [] : [hsTable], head.timebase, doubt, true));
+  const alive = tried.map(() => true);
+
+  function dropTooSlow(): void {
+    let changed = false;
+    for (let k = 0; k < tried.length - 1; k++) {
+      const tooFast = fs.period.judgeOf(k)?.below ?? 0;
+      if (!alive[k] || tooFast * 2 < fs.period.count) continue;
+      alive[k] = false;
+      changed = true;
+    }
+    if (!changed) return;
+    for (const column of columnsOf(fs)) {
+      if (column !== fs.period) column.setJudges(tried.map((_, k) => (alive[k] ? column.judgeOf(k) : null)));
+    }
+  }
+
+  let settled = tried.length < 2;
+  return {
+    bits(block) {
+      run.bits(block);
+      if (settled || fs.period.count < SETTLED) return;
+      settled = true;
+      dropTooSlow();
+    },
+    spike(spike) {
+      fs.spike.add(spike.width, doubt, spike.tick, run.current());
+    },
+    get measured() {
+      return { base: head.timebase, fs, hs: run.hs, levels: run.levels, doubt };
+    },
+  };
+}
+
+/** The walk over the bits. */
+class Run {
+  hs: ColumnSet | null = null;
+  readonly levels: LevelColumns | null;
+  private transaction = -1;
+  private open = false;
+  private slot = 0;
+  private shortestLow = Number.POSITIVE_INFINITY;
+  private lastStop = Number.NaN;
+
+  constructor(
+    head: MeasureHead,
+    private readonly doubt: number,
+    private readonly fs: ColumnSet,
+    private readonly makeHs: () => ColumnSet,
+  ) {
+    this.levels = head.levels === "volts" ? levelColumns(doubt) : null;
+  }
+
+  current(): number {
+    return this.open ? this.transaction : -1;
+  }
+
+  bits(block: BitBlock): void {
+    const { kind, flags, length } = block;
+    for (let i = 0; i < length; i++) {
+      const k = kind[i];
+      const set = (flags[i] & IN_HS) !== 0 ? this.highSpeed() : this.fs;
+      if (k === BIT) {
+        this.bit(block, i, set);
+        continue;
+      }
+      if (k === LOST) {
+        this.open = false;
+        this.lastStop = Number.NaN;
+        continue;
+      }
+      if (k !== START) this.low(block, i, set);
+      if (k === STOP) this.stop(block, i, set);
+      else this.start(block, i, set, k === START);
+    }
+  }
+
+  private highSpeed(): ColumnSet {
+    if (this.hs === null) this.hs = this.makeHs();
+    return this.hs;
+  }
+
+  // The low before the high that this entry stands in. Returns whether it was stretched.
+  private low(block: BitBlock, i: number, set: ColumnSet): boolean {
+    const { leads } = block;
+    const fall = block.fall[i];
+    const measured = (leads === null ? block.rise[i] : block.rise[i] - leads.rise[i]) - fall;
+    // NaN where the record does not hold this low's beginning.
+    if (Number.isNaN(measured)) return true;
+    const at = this.open ? this.transaction : -1;
+    set.low.add(measured, this.doubt, fall, at);
+    if (set.timeout !== null) set.timeout.add(measured, this.doubt, fall, at);
+    if (measured < this.shortestLow) this.shortestLow = measured;
+    const first = block.sdaFirst[i];
+    if (!Number.isNaN(first)) {
+      const hold = (leads === null ? first : first - leads.sdaFirst[i]) - fall;
+      set.hdDat.add(hold, this.doubt, fall, at);
+    }
+    return measured > STRETCHED * this.shortestLow + 2 * this.doubt;
+  }
+
+  private bit(block: BitBlock, i: number, set: ColumnSet): void {
+    const { leads, flags } = block;
+    const stretched = this.low(block, i, set);
+    const at = this.open ? this.transaction : -1;
+    const { doubt, slot } = this;
+    const fall = block.fall[i];
+    const rise = block.tick[i];
+    const end = block.end[i];
+    if (!Number.isNaN(end)) {
+      set.high.add((leads === null ? end : end - leads.end[i]) - rise, doubt, rise, at);
+      if (!Number.isNaN(fall)) {
+        set.period.add(end - fall, doubt, fall, at);
+        if (set.slow !== null && !stretched) set.slow.add(end - fall, doubt, fall, at);
+      }
+    }
+    const last = block.sdaLast[i];
+    if (!Number.isNaN(last)) {
+      set.suDat.add((leads === null ? rise : rise - leads.rise[i]) - last, doubt, last, at);
+      if (!stretched && (flags[i] & OUTSIDE) === 0) (slot === ACK_SLOT ? set.vdAck : set.vdDat).add(last - fall, doubt, fall, at);
+    }
+    if (leads !== null) this.shapes(block, i, set, at);
+    if ((flags[i] & OUTSIDE) === 0) this.slot = slot === ACK_SLOT ? 0 : slot + 1;
+  }
+
+  // Volts only: edges and levels of one bit. Each SCL edge is taken once, at the bit it rises for or ends.
+  private shapes(block: BitBlock, i: number, set: ColumnSet, at: number): void {
+    const { leads } = block;
+    if (leads === null) return;
+    const { doubt } = this;
+    const rise = leads.rise[i];
+    if (rise > 0) (this.slot === 0 ? set.sclRise1 : set.sclRise).add(rise, doubt, block.tick[i] - rise, at);
+    const end = leads.end[i];
+    if (end > 0) set.sclFall.add(end, doubt, block.end[i] - end, at);
+    const last = block.sdaLast[i];
+    const sda = leads.sdaLast[i];
+    if (!Number.isNaN(last) && sda > 0) (block.value[i] === 1 ? set.sdaRise : set.sdaFall).add(sda, doubt, last - sda, at);
+    if (this.levels !== null) noteLevels(this.levels, block, i, at);
+  }
+
+  private stop(block: BitBlock, i: number, set: ColumnSet): void {
+    const { leads } = block;
+    const rise = block.rise[i];
+    const tick = block.tick[i];
+    const measured = (leads === null ? tick : tick - leads.sdaLast[i]) - rise;
+    if (!Number.isNaN(measured)) set.suSto.add(measured, this.doubt, rise, this.current());
+    if (leads !== null && leads.sdaLast[i] > 0)
+      set.sdaRise.add(leads.sdaLast[i], this.doubt, tick - leads.sdaLast[i], this.current());
+    this.open = false;
+    this.lastStop = tick;
+  }
+
+  private start(block: BitBlock, i: number, set: ColumnSet, plain: boolean): void {
+    const { leads } = block;
+    const tick = block.tick[i];
+    const begins = leads === null ? tick : tick - leads.sdaLast[i];
+    this.transaction++;
+    this.open = true;
+    this.slot = 0;
+    this.shortestLow = Number.POSITIVE_INFINITY;
+    const at = this.transaction;
+    if (plain) {
+      const free = begins - this.lastStop;
+      if (!Number.isNaN(free)) set.buf.add(free, this.doubt, this.lastStop, at);
+    } else {
+      const setUp = begins - block.rise[i];
+      if (!Number.isNaN(setUp)) set.suSta.add(setUp, this.doubt, block.rise[i], at);
+    }
+    this.lastStop = Number.NaN;
+    const hold = (leads === null ? block.end[i] : block.end[i] - leads.end[i]) - tick;
+    if (!Number.isNaN(hold)) set.hdSta.add(hold, this.doubt, tick, at);
+    if (leads !== null && leads.sdaLast[i] > 0) set.sdaFall.add(leads.sdaLast[i], this.doubt, begins, at);
+  }
+}

@@ -63,3 +63,9 @@ export function may(viewer: Viewer, action: Action): boolean {
 export function within(viewer: MemberViewer): { readonly team: string } {
   return { team: viewer.team.id };
 }
+
+/** What a page's head says about the viewer; null for guests and links. */
+export function nameplate(viewer: Viewer): { readonly name: string; readonly team: string | null } | null {
+  if (viewer.kind === "guest" || viewer.kind === "link") return null;
+  return { name: viewer.user.name, team: viewer.kind === "member" ? viewer.team.name : null };
+}

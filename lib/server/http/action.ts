@@ -1,5 +1,6 @@
 import "server-only";
 import type { Cookie } from "lucia";
+import { refresh } from "next/cache";
 import { cookies, headers } from "next/headers";
 import { redirect } from "next/navigation";
 import type { z } from "zod";
@@ -41,6 +42,8 @@ export function action<Who extends keyof Admitted, Input extends z.ZodType>(
     if (outcome.cookie) await setCookie(outcome.cookie);
     // Outside the try: redirecting works by throwing.
     if (outcome.to !== undefined) redirect(outcome.to);
+    // The page behind the form shows what is true now.
+    refresh();
     return { status: "done", message: outcome.message ?? "Saved.", fields: {}, values: {} };
   };
 }

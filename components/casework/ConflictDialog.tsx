@@ -16,7 +16,10 @@ const names: Record<keyof EditFields, string> = {
 
 function shown(field: keyof EditFields, value: unknown, view: CaseView): string {
   if (field === "status") return statusWords[value as CaseView["status"]];
-  if (field === "assignee") return value === null ? "nobody" : view.assignee?.id === value ? view.assignee.name : "your choice";
+  if (field === "assignee") {
+    if (value === null || view.assignee === null) return value === null ? "nobody" : "your choice";
+    return value === view.assignee.id ? view.assignee.name : "your choice";
+  }
   return typeof value === "string" ? value || "(empty)" : JSON.stringify(value, null, 1);
 }
 

@@ -1,4 +1,5 @@
 import { defineEntity, type InferEntity, p } from "@mikro-orm/core";
+import type { LimitChanges } from "@/lib/case/case";
 import { Profile } from "./profile";
 
 /** A limits profile as it was at one version, for the cases that were judged by it. Written once, never changed. */
@@ -14,7 +15,8 @@ export const ProfileVersion = defineEntity({
     profile: () => p.manyToOne(Profile).ref().deleteRule("cascade"),
     version: p.integer(),
     name: p.string().length(120),
-    content: p.json<Record<string, unknown>>(),
+    base: p.string().length(120),
+    changes: p.json<LimitChanges>(),
     createdAt: p.datetime().onCreate(() => new Date()),
   },
 });

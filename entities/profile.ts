@@ -1,7 +1,8 @@
 import { defineEntity, type InferEntity, p } from "@mikro-orm/core";
+import type { LimitChanges } from "@/lib/case/case";
 import { Team } from "./team";
 
-/** A team's own limits profile. `content` is what lib/limits/profile.ts reads. */
+/** A team's own limits profile: a built-in one with some values changed (`derive` of lib/limits/profile.ts). */
 export const Profile = defineEntity({
   name: "Profile",
   tableName: "profiles",
@@ -20,7 +21,7 @@ export const Profile = defineEntity({
     name: p.string().length(120),
     /** Name of the built-in profile it was derived from. */
     base: p.string().length(120),
-    content: p.json<Record<string, unknown>>(),
+    changes: p.json<LimitChanges>(),
     version: p.integer().version(),
     /** A profile that cases may have been judged by is put away, never deleted. */
     retired: p.boolean().default(false),

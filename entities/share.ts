@@ -14,9 +14,9 @@ export const Share = defineEntity({
     case: () => p.manyToOne(Case).ref().deleteRule("cascade").index(),
     label: p.string().length(120).default(""),
     /** SHA-256 of the 256-bit secret in the link. The secret itself is nowhere. */
-    secretHash: p.string().length(64).unique().hidden(),
+    secretHash: p.string().length(64).unique(),
     /** argon2id in PHC string form; null for none. */
-    passphraseHash: p.string().length(255).nullable().hidden(),
+    passphraseHash: p.string().length(255).nullable(),
     /** Query string of the exact view that was shared. */
     view: p.text().default(""),
     rawAllowed: p.boolean().default(false),

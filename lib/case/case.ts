@@ -90,6 +90,15 @@ export const LimitsChoiceSchema = z.discriminatedUnion("kind", [
 ]);
 export type LimitsChoice = z.infer<typeof LimitsChoiceSchema>;
 
+const bound = z.number().min(0).nullable().optional();
+
+/** What a team's own profile changes of its base, by symbol; in ns, frequencies in Hz (lib/limits/profile.ts `Changes`). */
+export const LimitChangesSchema = z.record(
+  z.string().min(1).max(40),
+  z.object({ min: bound, max: bound, source: z.string().max(300).optional() }),
+);
+export type LimitChanges = z.infer<typeof LimitChangesSchema>;
+
 /** Settings shared by the captures of a case; what was read how stands with each capture. */
 export const SettingsSchema = z.object({
   version: z.literal(SETTINGS_VERSION),
@@ -201,7 +210,7 @@ export const CaseFileSchema = z.object({
   fault_tags: z.array(FaultTagFileSchema),
   roster: z.array(RosterEntrySchema),
   /** The team's own limits as they were when chosen; null for automatic and built-in. */
-  profile: z.object({ name: z.string(), version: z.int(), content: z.unknown() }).nullable(),
+  profile: z.object({ name: z.string(), version: z.int(), base: z.string(), changes: LimitChangesSchema }).nullable(),
   created_at: z.iso.datetime(),
   updated_at: z.iso.datetime(),
 });

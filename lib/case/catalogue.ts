@@ -2,7 +2,7 @@
 // members to assign to. Schemas for /api/fault-tags, /api/rosters, /api/profiles, /api/people.
 
 import { z } from "zod";
-import { FaultTagFileSchema, NameSchema, RosterEntrySchema } from "./case";
+import { FaultTagFileSchema, LimitChangesSchema, NameSchema, RosterEntrySchema } from "./case";
 
 /** Single keys a fault tag may have. The others move through the stack (components own that list). */
 export const TAG_KEYS = "1234567890abcdefghilmnopqrstuvwxyz";
@@ -60,18 +60,18 @@ export const ReplaceRosterSchema = SaveRosterSchema.extend({ version: z.int().mi
 export type ReplaceRoster = z.input<typeof ReplaceRosterSchema>;
 export const RosterAnswerSchema = z.object({ roster: RosterViewSchema });
 
-/** A limits profile of the team: a derived copy of a built-in one with changed values (lib/limits/profile.ts reads `content`). */
+/** A limits profile of the team: `derive(builtIn(base), name, version, changes)` of lib/limits/profile.ts. */
 export const ProfileViewSchema = z.object({
   id: z.uuid(),
   name: z.string(),
   version: z.int(),
   base: z.string(),
-  content: z.record(z.string(), z.unknown()),
+  changes: LimitChangesSchema,
   updated_at: z.iso.datetime(),
 });
 export type ProfileView = z.infer<typeof ProfileViewSchema>;
 export const ProfileListSchema = z.object({ profiles: z.array(ProfileViewSchema) });
-export const SaveProfileSchema = z.object({ name: NameSchema, base: NameSchema, content: z.record(z.string(), z.unknown()) });
+export const SaveProfileSchema = z.object({ name: NameSchema, base: NameSchema, changes: LimitChangesSchema });
 export type SaveProfile = z.input<typeof SaveProfileSchema>;
 /** Every change is a new version; earlier ones stay, for the cases judged by them. */
 export const ReplaceProfileSchema = SaveProfileSchema.extend({ version: z.int().min(1) });

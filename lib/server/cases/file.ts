@@ -129,5 +129,5 @@ async function rosterOf(em: EntityManager, team: string, settings: Settings): Pr
 async function profileOf(em: EntityManager, team: string, { limits }: Settings): Promise<CaseFile["profile"]> {
   if (limits.kind !== "team") return null;
   const row = await em.findOne(ProfileVersion, { profile: { id: limits.profile, team }, version: limits.version });
-  return row ? { name: row.name, version: row.version, content: row.content } : null;
+  return row ? { name: row.name, version: row.version, base: row.base, changes: row.changes } : null;
 }

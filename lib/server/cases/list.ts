@@ -4,11 +4,10 @@ import { Case } from "@/entities/case";
 import { CASE_PAGE, type CaseList, type CaseQuery, type CaseRow } from "@/lib/case/wire";
 import type { MemberViewer } from "@/lib/server/access/viewer";
 import { visibleCases } from "@/lib/server/access/visible";
-import { type EntityManager, fork } from "@/lib/server/database";
+import type { EntityManager } from "@/lib/server/database";
 
 /** One page of the team's cases that fit the query. */
-export async function listCases(viewer: MemberViewer, query: CaseQuery): Promise<CaseList> {
-  const em = await fork();
+export async function listCases(em: EntityManager, viewer: MemberViewer, query: CaseQuery): Promise<CaseList> {
   const where: FilterQuery<Case> = { $and: [visibleCases(viewer), ...(await conditions(em, viewer, query))] };
   const [rows, total] = await em.findAndCount(Case, where, {
     populate: ["assignee"],

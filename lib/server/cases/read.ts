@@ -7,14 +7,13 @@ import { actions } from "@/lib/case/roles";
 import type { CaseView, Event as EventView } from "@/lib/case/wire";
 import { type MemberViewer, may, within } from "@/lib/server/access/viewer";
 import { findCase } from "@/lib/server/access/visible";
-import { type EntityManager, fork } from "@/lib/server/database";
+import type { EntityManager } from "@/lib/server/database";
 import { caseFile } from "./file";
 
 export { listCases } from "./list";
 
 /** A case with everything below it, or a refusal "not-found". */
-export async function readCase(viewer: MemberViewer, number: number): Promise<CaseView> {
-  const em = await fork();
+export async function readCase(em: EntityManager, viewer: MemberViewer, number: number): Promise<CaseView> {
   return caseView(em, viewer, await findCase(em, viewer, number));
 }
 
@@ -33,8 +32,7 @@ export async function caseView(em: EntityManager, viewer: MemberViewer, row: Cas
 const EVENTS = 500;
 
 /** The newest 500 lines of a case's trail, newest first. */
-export async function readEvents(viewer: MemberViewer, number: number): Promise<readonly EventView[]> {
-  const em = await fork();
+export async function readEvents(em: EntityManager, viewer: MemberViewer, number: number): Promise<readonly EventView[]> {
   const row = await findCase(em, viewer, number);
   const events = await em.find(
     Event,
@@ -53,8 +51,10 @@ export async function readEvents(viewer: MemberViewer, number: number): Promise<
 }
 
 /** Members a case can be assigned to, by name. */
-export async function readPeople(viewer: MemberViewer): Promise<readonly { id: string; name: string; role: string }[]> {
-  const em = await fork();
+export async function readPeople(
+  em: EntityManager,
+  viewer: MemberViewer,
+): Promise<readonly { id: string; name: string; role: string }[]> {
   const members = await em.find(Member, within(viewer), { populate: ["user"] });
   return members
     .map((member) => ({ id: member.user.id, name: member.user.getEntity().name, role: member.role }))

@@ -11,6 +11,8 @@ const table = {
   "signed-out": { status: 401, words: "Sign in first; this session has ended." },
   "wrong-credentials": { status: 401, words: "This e-mail address and password do not belong together." },
   "wrong-password": { status: 403, words: "That is not the current password." },
+  "wrong-passphrase": { status: 403, words: "This is not the passphrase of this link." },
+  "share-locked": { status: 403, words: "This link asks for a passphrase first." },
   forbidden: { status: 403, words: "Your role in this team does not include this. A team lead can change roles." },
   "not-found": { status: 404, words: "There is nothing at this address, or it is not yours to see." },
   "email-taken": { status: 409, words: "There is already an account for this e-mail address. Sign in, or reset its password." },

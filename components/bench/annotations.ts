@@ -1,0 +1,57 @@
+// What people put on a capture, as the bench shows it, and what it may ask for. The case page and the share page fill these
+// from the server; the front door has none.
+
+export interface BenchNote {
+  readonly id: string;
+  /** Footnote number in the case. */
+  readonly number: number;
+  readonly transaction: number | null;
+  readonly text: string;
+  readonly author: string;
+  /** May the present reader change or delete it. */
+  readonly mine: boolean;
+}
+
+export interface BenchTag {
+  readonly id: string;
+  readonly transaction: number | null;
+  /** Id of its TagKind. */
+  readonly kind: string;
+  readonly author: string;
+  readonly mine: boolean;
+}
+
+/** A category of the team's catalogue. */
+export interface TagKind {
+  readonly id: string;
+  readonly name: string;
+  /** The key that puts it, or null. */
+  readonly key: string | null;
+  readonly retired: boolean;
+}
+
+/** A device of the roster as far as the page names it. */
+export interface BenchDevice {
+  readonly address: number;
+  readonly name: string;
+}
+
+/** Resolves to null when it was done, else to a sentence saying why not. */
+export type Outcome = Promise<string | null>;
+
+export interface BenchCase {
+  readonly notes: readonly BenchNote[];
+  readonly tags: readonly BenchTag[];
+  readonly tagKinds: readonly TagKind[];
+  readonly finding: string;
+  readonly devices: readonly BenchDevice[];
+  /** Absent functions are not offered: a share link is read-only, a support engineer may not tag. */
+  readonly addNote?: (transaction: number | null, text: string) => Outcome;
+  readonly editNote?: (id: string, text: string) => Outcome;
+  readonly removeNote?: (id: string) => Outcome;
+  readonly addTag?: (transaction: number, kind: string) => Outcome;
+  readonly removeTag?: (id: string) => Outcome;
+  readonly saveFinding?: (text: string) => Outcome;
+}
+
+export const NO_CASE: BenchCase = { notes: [], tags: [], tagKinds: [], finding: "", devices: [] };

@@ -1,0 +1,50 @@
+import type { ReactNode } from "react";
+import type { Capture } from "@/lib/view/capture";
+import { count, duration, span } from "@/lib/view/format";
+
+function Fact({ children }: { children: ReactNode }) {
+  return <li className="whitespace-nowrap">{children}</li>;
+}
+
+function Figure({ children }: { children: ReactNode }) {
+  return <span className="tabular text-hex text-ink">{children}</span>;
+}
+
+const VERDICT_WORDS = { pass: "within limits", fail: "outside limits", undecided: "not decided" } as const;
+
+/** The capture in figures, one line. */
+export function Facts({ capture }: { capture: Capture }) {
+  const { head, summary, ledger } = capture;
+  const { record } = capture;
+  const faults = summary ? summary.faults.length : 0;
+  const contests = summary ? summary.contests.length : 0;
+  return (
+    <ul className="flex flex-wrap gap-x-6 gap-y-1 font-sans text-label text-quiet">
+      <Fact>
+        <Figure>{span(record.to - record.from, head.timebase)}</Figure> recorded
+      </Fact>
+      <Fact>
+        <Figure>{count(ledger.length)}</Figure> transactions
+      </Fact>
+      {summary && (
+        <>
+          <Fact>
+            <Figure>{count(contests)}</Figure> {contests === 1 ? "contest" : "contests"}
+          </Fact>
+          <Fact>
+            <Figure>{count(faults)}</Figure> {faults === 1 ? "fault" : "faults"}
+          </Fact>
+          <Fact>
+            judged by <Figure>{summary.limits.profile}</Figure>
+            {summary.limits.source && `, ${summary.limits.source}`}: {VERDICT_WORDS[summary.verdict]}
+          </Fact>
+        </>
+      )}
+      {head.sampleTicks !== null && head.timebase.origin !== "assumed" && (
+        <Fact>
+          sampled every <Figure>{duration(head.sampleTicks / head.timebase.ticksPerSecond)}</Figure>
+        </Fact>
+      )}
+    </ul>
+  );
+}

@@ -1,0 +1,110 @@
+// In: transactions and edges as they come. Out: where each transaction lies, and the levels at a tick not long past and at the end.
+
+import type { TransactionBlock } from "../engine/bus/transactions";
+import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../engine/samples/edges";
+import type { End } from "./rule";
+
+/** Start and end of every transaction: 17 bytes each. */
+export class TransactionPlaces {
+  count = 0;
+  private start = new Float64Array(1024);
+  private end = new Float64Array(1024);
+  private repeated = new Uint8Array(1024);
+
+  add(block: TransactionBlock): void {
+    for (let i = 0; i < block.length; i++) {
+      if (this.count === this.start.length) this.grow();
+      this.start[this.count] = block.startTick[i];
+      this.end[this.count] = block.endTick[i];
+      this.repeated[this.count] = block.opens[i];
+      this.count++;
+    }
+  }
+
+  /** The transaction that a tick lies in, both ends included; null where none does. */
+  at(tick: number): number | null {
+    let low = 0;
+    let high = this.count;
+    while (low < high) {
+      const middle = (low + high) >> 1;
+      if (this.start[middle] <= tick) low = middle + 1;
+      else high = middle;
+    }
+    const i = low - 1;
+    return i >= 0 && tick <= this.end[i] ? i : null;
+  }
+
+  /** The transaction whose START opens the message that this one belongs to. */
+  opening(transaction: number): number {
+    let i = transaction;
+    while (i > 0 && this.repeated[i] === 1) i--;
+    return i;
+  }
+
+  private grow(): void {
+    const wider = (column: Float64Array) => {
+      const grown = new Float64Array(column.length * 2);
+      grown.set(column);
+      return grown;
+    };
+    this.start = wider(this.start);
+    this.end = wider(this.end);
+    const repeated = new Uint8Array(this.repeated.length * 2);
+    repeated.set(this.repeated);
+    this.repeated = repeated;
+  }
+}
+
+/** Keeps the last two edge blocks and since when each line has had its level. */
+export class LineWatch {
+  private last: EdgeBlock | null = null;
+  private before: EdgeBlock | null = null;
+  private sclSince = 0;
+  private sdaSince = 0;
+  private levels = SCL_UNKNOWN | SDA_UNKNOWN;
+
+  push(block: EdgeBlock): void {
+    if (block.length === 0) return;
+    this.before = this.last;
+    this.last = block;
+    const scl = lastChange(block, SCL | SCL_UNKNOWN, this.levels);
+    const sda = lastChange(block, SDA | SDA_UNKNOWN, this.levels);
+    if (scl >= 0) this.sclSince = block.ticks[scl];
+    if (sda >= 0) this.sdaSince = block.ticks[sda];
+    this.levels = block.lines[block.length - 1] & ~CUT;
+  }
+
+  /** Whether SCL was high at a tick of the last two blocks; null where that is not known. */
+  sclHighAt(tick: number): boolean | null {
+    for (const block of [this.last, this.before]) {
+      if (block === null || block.ticks[0] > tick) continue;
+      let low = 0;
+      let high = block.length;
+      while (low < high) {
+        const middle = (low + high) >> 1;
+        if (block.ticks[middle] <= tick) low = middle + 1;
+        else high = middle;
+      }
+      const lines = block.lines[low - 1];
+      return (lines & SCL_UNKNOWN) !== 0 ? null : (lines & SCL) !== 0;
+    }
+    return null;
+  }
+
+  atEnd(): End["lines"] {
+    if ((this.levels & (SCL_UNKNOWN | SDA_UNKNOWN)) !== 0) return null;
+    return {
+      scl: (this.levels & SCL) === 0 ? 0 : 1,
+      sda: (this.levels & SDA) === 0 ? 0 : 1,
+      sclSince: this.sclSince,
+      sdaSince: this.sdaSince,
+    };
+  }
+}
+
+// Index of the last entry that changed any of `bits`, looking back from the block's end; -1 where none did.
+function lastChange(block: EdgeBlock, bits: number, before: number): number {
+  const { lines } = block;
+  for (let i = block.length - 1; i > 0; i--) if (((lines[i] ^ lines[i - 1]) & bits) !== 0) return i;
+  return ((lines[0] ^ before) & bits) !== 0 ? 0 : -1;
+}

@@ -1,0 +1,18 @@
+// In: what the comparator saw of a capture in volts. Out: visits between the thresholds that never became a level: receivers may
+// or may not have taken them for an edge. A dip that crosses no threshold is not listed.
+
+import { seconds } from "../../base/time";
+import { duration } from "../format";
+import type { Rule } from "../rule";
+
+export const betweenThresholds: Rule = {
+  meta: { kind: "between-thresholds", clause: "UM10204 Rev 7 Table 10, VIL and VIH" },
+  watch: (findings) => ({
+    conclude(end) {
+      for (const { line, tick, width, extreme_v } of end.tail.excursions) {
+        const wide = duration(seconds(width, findings.base));
+        findings.add("between-thresholds", tick, `${line.toUpperCase()} went to ${extreme_v.toFixed(2)} V for ${wide} and back`);
+      }
+    },
+  }),
+};

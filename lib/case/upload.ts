@@ -113,6 +113,7 @@ export const StartArchiveSchema = z.object({ size: z.int().min(1), sha256 });
 export type StartArchive = z.input<typeof StartArchiveSchema>;
 /** `key` goes back with StoreAnalysis. */
 export const SignedArchiveSchema = z.object({ key: z.string(), url: z.string(), expires_at: z.iso.datetime() });
+export type SignedArchive = z.infer<typeof SignedArchiveSchema>;
 
 export const StoreAnalysisSchema = z.object({
   archive: z.object({ key: z.string().min(1).max(500), size: z.int().min(1), sha256 }),

@@ -1,5 +1,4 @@
 import "server-only";
-import type { Capture } from "@/entities/capture";
 import type { Viewer } from "@/lib/server/access/viewer";
 import { findCapture } from "@/lib/server/access/visible";
 import type { EntityManager } from "@/lib/server/database";

@@ -102,3 +102,11 @@ function asResponse(answer: unknown): Response {
   if (answer === undefined) return new Response(null, { status: 204 });
   return Response.json(answer);
 }
+
+/** Sends the caller on to bytes in storage. The address is short-lived, so nobody may keep the answer. */
+export function moved(address: string): Response {
+  return new Response(null, {
+    status: 307,
+    headers: { location: address, "cache-control": "no-store", "x-robots-tag": "noindex" },
+  });
+}

@@ -157,9 +157,10 @@ function chosenParts(upload: Upload, text: string): StoredPart[] {
     etag: bareTag(xmlText(part, "ETag")),
   }));
   if (!listed.length) throw new StorageError("MalformedXML", "The document lists no parts.");
+  if (listed.some(({ number }, index) => index > 0 && number <= listed[index - 1].number)) {
+    throw new StorageError("InvalidPartOrder", "The parts must be listed in ascending order.");
+  }
   return listed.map(({ number, etag }, index) => {
-    if (index > 0 && number <= listed[index - 1].number)
-      throw new StorageError("InvalidPartOrder", "The parts must be listed in ascending order.");
     const part = upload.parts.get(number);
     if (part?.etag !== etag)
       throw new StorageError("InvalidPart", `Part ${number} was not uploaded, or is another one than listed.`);

@@ -203,11 +203,13 @@ async function suffer(request: IncomingMessage, fault: Fault | undefined): Promi
   if (fault.refuse) throw new StorageError(fault.refuse, "Refused on purpose, by a test.");
   if (fault.cutAfter === undefined || request.method === "GET") return false;
   let size = 0;
+  // Leaving the loop takes the socket off the request.
+  const { socket } = request;
   for await (const bytes of request as AsyncIterable<Buffer>) {
     size += bytes.length;
     if (size >= fault.cutAfter) break;
   }
-  request.socket.destroy();
+  socket.destroy();
   return true;
 }
 

@@ -4,14 +4,16 @@ import type { Warning } from "../../base/result";
 import { buffered, drives, identical } from "./behaviour";
 import { LINES_TRIED, type Line, label, type Pair } from "./line";
 import { convincing } from "./pair";
+import type { LineTrace } from "./trace";
+
+const copied = (of: LineTrace, line: LineTrace) => line.length > 0 && (identical(of, line) || buffered(of, line));
 
 export function copiesOf(pair: Pair, all: readonly Line[]): string[] {
   const copies: string[] = [];
   for (const line of all) {
     if (line.trace.id === pair.scl.trace.id || line.trace.id === pair.sda.trace.id) continue;
     for (const chosenLine of [pair.scl, pair.sda]) {
-      const same = line.trace.length > 0 && (identical(line.trace, chosenLine.trace) || buffered(chosenLine.trace, line.trace));
-      if (same && copies.length < 6) copies.push(label(line));
+      if (copied(chosenLine.trace, line.trace) && copies.length < 6) copies.push(label(line));
     }
   }
   return copies;
@@ -36,7 +38,7 @@ export function tapsOf(pair: Pair, lines: readonly Line[]): Warning | null {
 }
 
 /** Another well-named pair that decodes as well and drives nothing of this one. */
-export function otherBuses(pair: Pair, named: readonly Pair[], copies: readonly string[]): Warning | null {
+export function otherBuses(pair: Pair, named: readonly Pair[]): Warning | null {
   const others = named.filter(
     (other) =>
       other.scl.clue.strength === 3 &&
@@ -44,7 +46,7 @@ export function otherBuses(pair: Pair, named: readonly Pair[], copies: readonly 
       other.scl.clue.stem === other.sda.clue.stem &&
       other.scl.trace.id !== pair.scl.trace.id &&
       other.sda.trace.id !== pair.sda.trace.id &&
-      !copies.includes(label(other.sda)) &&
+      !copied(pair.sda.trace, other.sda.trace) &&
       convincing(other.count) &&
       !drives(other.sda.trace, 0, pair.sda.trace),
   );

@@ -91,6 +91,9 @@ export function findChannel(
     (channel) => squeeze(channel.id).endsWith(`.${key}`),
     (channel) => squeeze(channel.id).toLowerCase() === lower || squeeze(channel.name).toLowerCase() === lower,
     (channel) => squeeze(channel.id).toLowerCase().endsWith(`.${lower}`),
+    // A vector without its bit: one bit is meant if it has only one; else the answer lists them.
+    (channel) =>
+      /\[-?\d+\]$/.test(channel.id) && [channel.id, channel.name].some((text) => squeeze(text).replace(/\[-?\d+\]$/, "") === key),
   ];
   for (const reading of readings) {
     const found = key === "" ? [] : channels.filter(reading);

@@ -230,7 +230,7 @@ function settle(pair: Pair, all: readonly Line[], lines: readonly Line[], named:
     warnings.push({ code: "channels-swapped", message: `The labels of ${label(scl)} and ${label(sda)} look swapped.` });
   const taps = tapsOf(pair, lines);
   if (taps) warnings.push(taps);
-  const others = otherBuses(pair, named, copies);
+  const others = otherBuses(pair, named);
   if (others) warnings.push(others);
   return {
     scl: scl.trace.id,

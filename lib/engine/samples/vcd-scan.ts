@@ -1,0 +1,354 @@
+// In: the value changes of a VCD, in chunks. Out: calls for the nets that somebody watches, and the end of each instant.
+// IEEE 1364-2005 clause 18.3 with what simulators add: nine-value letters, string changes, port changes of an extended VCD.
+// Works on bytes; words are complete before they are read, so the inner loops need no bounds.
+
+import type { Problem } from "../../base/result";
+
+/** Who is told. `net` is the number the code was registered with. */
+export interface ChangeSink {
+  /** One of 0 1 x z and the nine-value letters, as a character code. */
+  scalar(net: number, value: number): void;
+  /** Digits of a vector or the states of a port: bytes `from` to `to`. */
+  vector(net: number, digits: Uint8Array, from: number, to: number, port: boolean): void;
+  real(net: number, digits: Uint8Array, from: number, to: number): void;
+  /** The instant `tick` is over: every watched change in it has been told. Only called where there was one. */
+  settle(tick: number): void;
+  /** Nothing is known from here on until it is told again ($dumpoff). */
+  off(): void;
+  /** The record was cut: times went back, and what follows does not join on. */
+  cut(): void;
+}
+
+const BAD = 0;
+const SCALAR = 1;
+const TIME = 2;
+const KEYWORD = 3;
+const VECTOR = 4;
+const REAL = 5;
+const STRING = 6;
+const PORT = 7;
+
+const KIND = new Uint8Array(256);
+for (const c of "01xXzZuUwWlLhH-") KIND[c.charCodeAt(0)] = SCALAR;
+KIND[35] = TIME;
+KIND[36] = KEYWORD;
+for (const [letters, kind] of [
+  ["bB", VECTOR],
+  ["rR", REAL],
+  ["sS", STRING],
+  ["p", PORT],
+] as const) {
+  for (const c of letters) KIND[c.charCodeAt(0)] = kind;
+}
+
+/** No word is longer; a longer one means that this is no VCD. */
+const WORD = 16 * 1024 * 1024;
+/** What is done while a section is open. */
+const CHANGES = 0;
+const SKIP = 1;
+
+/** Identifier codes that somebody watches, found by a hash of their bytes. */
+export class CodeTable {
+  readonly mask: number;
+  /** Net number plus one, 0 where empty. */
+  readonly slots: Int32Array;
+  readonly hashes: Int32Array;
+  private readonly codes: Uint8Array[] = [];
+
+  constructor(codes: readonly string[]) {
+    let size = 64;
+    while (size < 4 * codes.length) size *= 2;
+    this.mask = size - 1;
+    this.slots = new Int32Array(size);
+    this.hashes = new Int32Array(size);
+    codes.forEach((code, net) => {
+      const bytes = Uint8Array.from(code, (c) => c.charCodeAt(0));
+      this.codes.push(bytes);
+      let hash = 0;
+      for (const c of bytes) hash = (Math.imul(hash, 31) + c) | 0;
+      let at = hash & this.mask;
+      while (this.slots[at] !== 0) at = (at + 1) & this.mask;
+      this.slots[at] = net + 1;
+      this.hashes[at] = hash;
+    });
+  }
+
+  /** The net of the code in bytes `from` to `to`, or -1. */
+  find(bytes: Uint8Array, from: number, to: number, hash: number): number {
+    let at = hash & this.mask;
+    for (;;) {
+      const slot = this.slots[at];
+      if (slot === 0) return -1;
+      if (this.hashes[at] === hash && same(this.codes[slot - 1], bytes, from, to)) return slot - 1;
+      at = (at + 1) & this.mask;
+    }
+  }
+}
+
+function same(code: Uint8Array, bytes: Uint8Array, from: number, to: number): boolean {
+  if (code.length !== to - from) return false;
+  for (let i = 0; i < code.length; i++) if (code[i] !== bytes[from + i]) return false;
+  return true;
+}
+
+/** Feed chunks with `push`, then `finish`. After a problem nothing more is read. */
+export class ChangeScanner {
+  problem: Problem | null = null;
+  /** The latest time, NaN before the first. */
+  tick = Number.NaN;
+  /** Value changes of all variables so far. */
+  changes = 0;
+  /** Words of the file that were set aside because time had gone back, and where that began. */
+  asideChanges = 0;
+  backwardsAt = -1;
+  offCount = 0;
+  /** The file ends inside a word, a change or a section. */
+  truncated = false;
+  /** First code that no $var declares (only told where all codes are registered), as a byte offset. */
+  undeclaredAt = -1;
+  /** Byte offset of the next byte. */
+  at: number;
+
+  private dirty = false;
+  private aside = false;
+  private state = CHANGES;
+  /** A vector, real, string or port value whose code is still to come. */
+  private pending = BAD;
+  private skipWords = 0;
+  private value: Uint8Array = new Uint8Array(0);
+  private valueFrom = 0;
+  private valueTo = 0;
+  private carry: Uint8Array = new Uint8Array(0);
+  private inBlock = false;
+
+  constructor(
+    private readonly table: CodeTable,
+    private readonly sink: ChangeSink,
+    at: number,
+    private readonly all: boolean,
+  ) {
+    this.at = at;
+  }
+
+  push(chunk: Uint8Array): void {
+    let from = 0;
+    if (this.carry.length > 0) {
+      while (from < chunk.length && chunk[from] > 32) from++;
+      const joined = new Uint8Array(this.carry.length + from + 1);
+      joined.set(this.carry);
+      joined.set(chunk.subarray(0, from), this.carry.length);
+      if (from === chunk.length) {
+        this.carry = joined.subarray(0, joined.length - 1);
+        if (this.carry.length > WORD) this.refuse("vcd-change", "a word of more than 16 MiB", this.at);
+        return;
+      }
+      joined[joined.length - 1] = 32;
+      const at = this.at;
+      this.carry = new Uint8Array(0);
+      this.scan(joined, 0, joined.length);
+      this.at = at + joined.length - 1;
+    }
+    let to = chunk.length;
+    while (to > from && chunk[to - 1] > 32) to--;
+    const start = this.at;
+    if (to > from && !this.problem) this.scan(chunk, from, to);
+    this.at = start + (to - from);
+    this.carry = chunk.slice(to);
+  }
+
+  finish(): void {
+    if (this.problem) return;
+    if (this.carry.length > 0) {
+      const joined = new Uint8Array(this.carry.length + 1);
+      joined.set(this.carry);
+      joined[joined.length - 1] = 32;
+      const before = this.tick;
+      this.scan(joined, 0, joined.length);
+      // The last word may itself be cut short: one that makes no sense there is the cut, not a fault of the file.
+      if (this.problem !== null || this.tick < before) {
+        this.problem = null;
+        this.truncated = true;
+      }
+    }
+    if (this.pending !== BAD || this.skipWords > 0 || this.state === SKIP || this.inBlock) this.truncated = true;
+    this.settle();
+  }
+
+  private settle(): void {
+    if (this.dirty && !this.aside) {
+      this.sink.settle(Number.isNaN(this.tick) ? 0 : this.tick);
+      this.dirty = false;
+    }
+  }
+
+  private scan(bytes: Uint8Array, from: number, to: number): void {
+    const { table } = this;
+    const { slots, mask } = table;
+    const start = this.at - from;
+    let changes = 0;
+    let i = from;
+    while (i < to) {
+      const c = bytes[i];
+      if (c <= 32) {
+        i++;
+        continue;
+      }
+      if (this.pending !== BAD || this.state === SKIP) {
+        i = this.continued(bytes, i, start);
+        if (this.problem) break;
+        continue;
+      }
+      const kind = KIND[c];
+      if (kind === SCALAR) {
+        let hash = 0;
+        let j = i + 1;
+        for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
+        changes++;
+        if (slots[hash & mask] !== 0) {
+          const net = table.find(bytes, i + 1, j, hash);
+          if (net >= 0) {
+            this.sink.scalar(net, c);
+            this.dirty = true;
+          } else if (this.all) this.undeclared(start + i);
+        } else if (this.all) this.undeclared(start + i);
+        if (j === i + 1) {
+          this.refuse("vcd-change", `the value ${String.fromCharCode(c)} with no identifier code directly after it`, start + i);
+          break;
+        }
+        i = j;
+      } else if (kind === TIME) {
+        i = this.time(bytes, i, start);
+        if (this.problem) break;
+      } else if (kind >= VECTOR) {
+        let j = i + 1;
+        while (bytes[j] > 32) j++;
+        this.pending = kind;
+        this.skipWords = kind === PORT ? 2 : 0;
+        this.value = bytes;
+        this.valueFrom = i + 1;
+        this.valueTo = j;
+        i = j;
+      } else if (kind === KEYWORD) {
+        i = this.keyword(bytes, i);
+      } else {
+        this.refuse("vcd-change", `"${word(bytes, i)}", which is neither a time, a value change nor a keyword`, start + i);
+        break;
+      }
+    }
+    this.changes += changes;
+    if (this.pending !== BAD) {
+      this.value = this.value.slice(this.valueFrom, this.valueTo);
+      this.valueTo -= this.valueFrom;
+      this.valueFrom = 0;
+    }
+  }
+
+  /** A word that belongs to something begun before it: a vector's code, a section's text. Returns the index after it. */
+  private continued(bytes: Uint8Array, i: number, start: number): number {
+    let hash = 0;
+    let j = i;
+    for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
+    if (this.state === SKIP) {
+      if (j - i === 4 && bytes[i] === 36 && bytes[i + 1] === 101 && bytes[i + 2] === 110 && bytes[i + 3] === 100)
+        this.state = CHANGES;
+      return j;
+    }
+    if (this.skipWords > 0) {
+      this.skipWords--;
+      return j;
+    }
+    const net = this.table.find(bytes, i, j, hash);
+    const kind = this.pending;
+    this.pending = BAD;
+    this.changes++;
+    if (net < 0) {
+      if (this.all) this.undeclared(start + i);
+      return j;
+    }
+    this.dirty = true;
+    if (kind === REAL) this.sink.real(net, this.value, this.valueFrom, this.valueTo);
+    else if (kind !== STRING) {
+      const bad = this.badDigit(kind === PORT);
+      if (bad >= 0) this.refuse("vcd-change", `a vector with the digit "${String.fromCharCode(bad)}"`, start + i);
+      else this.sink.vector(net, this.value, this.valueFrom, this.valueTo, kind === PORT);
+    }
+    return j;
+  }
+
+  private badDigit(port: boolean): number {
+    if (this.valueTo === this.valueFrom) return 32;
+    if (port) return -1;
+    for (let k = this.valueFrom; k < this.valueTo; k++) if (KIND[this.value[k]] !== SCALAR) return this.value[k];
+    return -1;
+  }
+
+  private time(bytes: Uint8Array, i: number, start: number): number {
+    let j = i + 1;
+    let tick = 0;
+    for (let d = bytes[j]; d > 32; d = bytes[++j]) {
+      if (d < 48 || d > 57) {
+        this.refuse("vcd-time", `"${word(bytes, i)}" where a time, # and a whole number, is due`, start + i);
+        return j;
+      }
+      tick = tick * 10 + (d - 48);
+    }
+    if (j === i + 1) {
+      this.refuse("vcd-time", "a # without a number", start + i);
+      return j;
+    }
+    this.inBlock = false;
+    if (tick > this.tick) {
+      this.settle();
+      this.tick = tick;
+      this.aside = false;
+    } else if (tick < this.tick && !this.aside) {
+      this.settle();
+      this.aside = true;
+      if (this.backwardsAt < 0) this.backwardsAt = start + i;
+      this.sink.cut();
+    } else if (Number.isNaN(this.tick)) {
+      // Values told before the first time stand at 0, or at the first time where that is 0.
+      if (tick > 0) this.settle();
+      this.tick = tick;
+    }
+    if (this.aside) this.asideChanges++;
+    return j;
+  }
+
+  private keyword(bytes: Uint8Array, i: number): number {
+    const name = word(bytes, i);
+    if (name === "$end") this.inBlock = false;
+    else if (name === "$dumpoff" || name === "$dumpportsoff") {
+      this.offCount++;
+      this.dirty = true;
+      this.sink.off();
+      this.inBlock = true;
+    } else if (name.startsWith("$dump")) this.inBlock = true;
+    // The time after it is the last one, and is read as any other.
+    else if (name !== "$vcdclose") this.state = SKIP;
+    let j = i;
+    while (bytes[j] > 32) j++;
+    return j;
+  }
+
+  private undeclared(byte: number): void {
+    if (this.undeclaredAt < 0) this.undeclaredAt = byte;
+  }
+
+  private refuse(code: string, what: string, byte: number): void {
+    this.problem ??= {
+      code,
+      message: `The VCD has ${what} (byte ${byte}).`,
+      advice: "The file is damaged there, or is not a VCD (IEEE 1364-2005 clause 18); export it again.",
+      place: { byte },
+    };
+  }
+}
+
+function word(bytes: Uint8Array, from: number): string {
+  let text = "";
+  for (let i = from; i < bytes.length && bytes[i] > 32 && text.length < 40; i++) {
+    text += bytes[i] < 127 ? String.fromCharCode(bytes[i]) : `\\x${bytes[i].toString(16)}`;
+  }
+  return text;
+}

@@ -1,0 +1,74 @@
+// In: the source and what the head settled. Out: walks over the rows of readings, from the start, as often as needed.
+
+import type { ByteSource } from "../../bytes/source";
+import { decode, plainChunks, plainEncoding, type TextForm } from "../../bytes/text";
+import type { Axis } from "./axis";
+import type { Layout } from "./layout";
+import type { Selection } from "./lines";
+import { QuotedReader } from "./quoted";
+import type { RowTarget } from "./rows";
+import { type FastPath, INSTANT, Scanner, type ScanPlan } from "./scanner";
+
+/** Bytes after which a survey may end, and a first block of edges leaves. */
+const SLICE = 65_536;
+
+export interface Body {
+  readonly source: ByteSource;
+  readonly form: TextForm;
+  readonly layout: Layout;
+  readonly axis: Axis;
+  /** Walks until `enough` says so (asked after every slice) or to the end. */
+  walk(selection: Selection, target: RowTarget & { finish(): void }, enough: () => boolean): Promise<void>;
+}
+
+export function scanPlan(layout: Layout, axis: Axis, selection: Selection): ScanPlan {
+  const modes = selection.modes.slice();
+  if (axis.clock.column >= 0) modes[axis.clock.column] = INSTANT;
+  return {
+    dialect: layout.dialect,
+    width: layout.width,
+    firstLine: layout.firstLine,
+    clock: axis.clock,
+    modes,
+    slots: selection.slots,
+    powers: selection.powers,
+    values: selection.values,
+  };
+}
+
+/** Whoever takes the body's bytes: the scanner, or papaparse where cells are quoted. */
+export interface BodyReader {
+  push(bytes: Uint8Array): void;
+  finish(): void;
+}
+
+export function bodyReader(
+  plan: ScanPlan,
+  form: TextForm,
+  target: RowTarget,
+  fast: FastPath | null,
+  ready: () => boolean,
+): BodyReader {
+  const scanner = new Scanner(plan, target, fast, ready);
+  return plan.dialect.quoted ? new QuotedReader(scanner, target, (bytes) => decode(bytes, plainEncoding(form))) : scanner;
+}
+
+export function bodyOf(source: ByteSource, form: TextForm, layout: Layout, axis: Axis): Body {
+  return {
+    source,
+    form,
+    layout,
+    axis,
+    async walk(selection, target, enough) {
+      const reader = bodyReader(scanPlan(layout, axis, selection), form, target, null, () => false);
+      for await (const chunk of plainChunks(source.open(), form)) {
+        for (let from = 0; from < chunk.length; from += SLICE) {
+          reader.push(chunk.subarray(from, Math.min(chunk.length, from + SLICE)));
+          if (enough()) return;
+        }
+      }
+      reader.finish();
+      target.finish();
+    },
+  };
+}

@@ -1,0 +1,168 @@
+// In: the first part of a text file. Out: delimiter and decimal mark, found together, and where the table of readings
+// begins; or a refusal that says why there is none.
+
+import { ok, type Problem, type Result, refuse } from "../../../base/result";
+import { BAD, Cell, readText, UNKNOWN } from "./cell";
+import { type Dialect, lineFeeds, linesOf, splitText } from "./split";
+
+export interface HeadRow {
+  readonly cells: readonly string[];
+  /** Line of the file, from 1. */
+  readonly line: number;
+}
+
+export interface HeadTable {
+  readonly dialect: Dialect;
+  readonly rows: readonly HeadRow[];
+  /** Index in `rows` of the first row of readings. */
+  readonly first: number;
+  /** Cells in a row of readings, trailing empty ones left out. */
+  readonly width: number;
+}
+
+interface Candidate extends HeadTable {
+  readonly score: number;
+}
+
+const DELIMITERS: readonly Dialect["delimiter"][] = [",", ";", "\t", "|", " "];
+const cell = new Cell();
+
+/** `whole`: the text is the entire file; otherwise its last, possibly unfinished row is left out. */
+export function findDialect(text: string, name: string, whole: boolean): Result<HeadTable> {
+  let body = lineFeeds(text);
+  const hint = /^sep=(.)\n/i.exec(body);
+  const skipped = hint === null ? 0 : 1;
+  if (hint !== null) body = body.slice(hint[0].length);
+  const delimiters =
+    hint !== null && DELIMITERS.includes(hint[1] as Dialect["delimiter"]) ? [hint[1] as Dialect["delimiter"]] : DELIMITERS;
+  let best: Candidate | null = null;
+  for (const delimiter of delimiters) {
+    const rows = numbered(splitText(body, delimiter, !whole).rows, skipped);
+    for (const decimal of decimals(delimiter, body)) {
+      const found = candidate(rows, { delimiter, decimal, quoted: false });
+      if (found !== null && (best === null || found.score > best.score * 1.001)) best = found;
+    }
+  }
+  if (best === null) return refuse(noTable(body, name, skipped));
+  const doubt = ambiguousComma(best, name);
+  if (doubt !== null) return refuse(doubt);
+  return ok({ ...best, dialect: { ...best.dialect, quoted: best.dialect.delimiter !== " " && quotedBody(body, best, skipped) } });
+}
+
+function decimals(delimiter: string, body: string): readonly Dialect["decimal"][] {
+  return delimiter !== "," || body.includes('"') ? [".", ","] : ["."];
+}
+
+function numbered(rows: readonly string[][], skipped: number): HeadRow[] {
+  let line = 1 + skipped;
+  return rows.map((cells) => {
+    const row = { cells, line };
+    line += linesOf(cells);
+    return row;
+  });
+}
+
+/** Cells without the empty ones at the end (trailing delimiters). */
+export function trimmed(cells: readonly string[]): readonly string[] {
+  let length = cells.length;
+  while (length > 0 && cells[length - 1].trim() === "") length -= 1;
+  return length === cells.length ? cells : cells.slice(0, length);
+}
+
+/** A row of readings: every cell says a number, a logic word or "no reading", and at least one says more than the last. */
+export function isReadings(cells: readonly string[], decimal: Dialect["decimal"]): boolean {
+  let readings = 0;
+  for (const text of cells) {
+    const kind = readText(cell, text, decimal.charCodeAt(0));
+    if (kind === BAD) return false;
+    if (kind !== UNKNOWN) readings += 1;
+  }
+  return readings > 0;
+}
+
+function candidate(rows: readonly HeadRow[], dialect: Dialect): Candidate | null {
+  const widths = new Map<number, number>();
+  const flags: number[] = rows.map((row) => {
+    const cells = trimmed(row.cells);
+    if (cells.length === 0 || !isReadings(cells, dialect.decimal)) return 0;
+    widths.set(cells.length, (widths.get(cells.length) ?? 0) + 1);
+    return cells.length;
+  });
+  let width = 0;
+  let count = 0;
+  for (const [key, value] of widths) {
+    if (value > count || (value === count && key > width)) {
+      width = key;
+      count = value;
+    }
+  }
+  if (count === 0) return null;
+  const first = firstOfRun(flags, rows, width);
+  // One column fits any delimiter, so a table of several columns wins over it.
+  return { dialect, rows, first, width, score: count * (width > 1 ? 2 : 1) };
+}
+
+/** The first row of readings that is followed by another one (blank lines aside), or the first at all. */
+function firstOfRun(flags: readonly number[], rows: readonly HeadRow[], width: number): number {
+  for (let i = 0; i < flags.length; i += 1) {
+    if (flags[i] !== width) continue;
+    let next = i + 1;
+    while (next < flags.length && trimmed(rows[next].cells).length === 0) next += 1;
+    if (next < flags.length && flags[next] > 0) return i;
+  }
+  return flags.indexOf(width);
+}
+
+function quotedBody(body: string, table: HeadTable, skipped: number): boolean {
+  const lines = body.split("\n");
+  for (let i = table.rows[table.first].line - 1 - skipped; i < lines.length; i += 1) if (lines[i].includes('"')) return true;
+  return false;
+}
+
+/** "1,234" in every cell with a comma could be 1.234 or 1234: nothing in the file tells which. */
+function ambiguousComma(table: HeadTable, name: string): Problem | null {
+  if (table.dialect.decimal !== ",") return null;
+  let doubt: HeadRow | null = null;
+  let text = "";
+  for (let i = table.first; i < table.rows.length; i += 1) {
+    for (const value of table.rows[i].cells) {
+      if (!value.includes(",")) continue;
+      if (!/^\s*[+-]?[1-9]\d{0,2},\d{3}\s*$/.test(value)) return null;
+      if (doubt === null) {
+        doubt = table.rows[i];
+        text = value.trim();
+      }
+    }
+  }
+  return doubt === null ? null : ambiguous(name, doubt.line, text);
+}
+
+function ambiguous(name: string, line: number, text: string): Problem {
+  return {
+    code: "ambiguous-number",
+    message: `Line ${line} of ${name} has the number ${text}, whose comma or point may be a decimal mark or may group thousands; nothing in the file tells which.`,
+    advice: "Export again without digit grouping, or with more decimals.",
+    place: { line },
+  };
+}
+
+function noTable(body: string, name: string, skipped: number): Problem {
+  const lines = body.split("\n");
+  for (let i = 0; i < lines.length; i += 1) {
+    const grouped = /(?:^|[;\t" ])([+-]?\d{1,3}(?:[.,']\d{3})*(?:\.\d{3},\d+|,\d{3}\.\d+|'\d{3}(?:\.\d+)?))(?:$|[;\t" ,])/.exec(
+      lines[i],
+    );
+    if (grouped !== null) return ambiguous(name, i + 1 + skipped, grouped[1]);
+  }
+  const at = Math.max(
+    0,
+    lines.findIndex((line) => line.trim() !== ""),
+  );
+  const sample = lines[at].trim().slice(0, 60);
+  return {
+    code: "no-readings",
+    message: `${name} holds text, but no table of readings: no row of numbers or 0/1 levels was found (line ${at + 1 + skipped} reads "${sample}").`,
+    advice: "Export the sampled channels as CSV (time, SCL, SDA), not a log, a screenshot or a list of decoded messages.",
+    place: { line: at + 1 + skipped },
+  };
+}

@@ -1,0 +1,213 @@
+// In: the head of a CSV as a table. Out: the layout: where the readings begin, what each column is, what the preamble says.
+
+import { BITS, Cell, HIGH, LOW, NUMBER, RELEASED, readText, UNKNOWN } from "./cell";
+import { type HeadRow, type HeadTable, isReadings, trimmed } from "./dialect";
+import { isTimingKey, isUnitsRow, type Metadata, metadataOf } from "./metadata";
+import type { Dialect } from "./split";
+import { isOrdinalName, isTimeName, parseUnit, splitHeader, type Unit } from "./unit";
+
+/** What a column's cells are. bits: a packed word written 0x.., 0b.. or as a number; pattern: as digits 0 and 1. */
+export type Role = "time" | "ordinal" | "digital" | "volts" | "counts" | "bits" | "pattern" | "other";
+
+export interface Column {
+  /** From 0. */
+  readonly index: number;
+  readonly name: string;
+  readonly unit: Unit | null;
+  readonly role: Role;
+  /** Bits of a packed word, otherwise 0. */
+  readonly bits: number;
+}
+
+export interface Layout {
+  readonly dialect: Dialect;
+  /** Line of the first row of readings, from 1. */
+  readonly firstLine: number;
+  /** Cells that a row of readings must have; empty ones after them are tolerated. */
+  readonly width: number;
+  readonly columns: readonly Column[];
+  readonly metadata: Metadata;
+  /** False where the file has no header row. */
+  readonly named: boolean;
+}
+
+/** Rows of the head by which columns are judged. */
+const JUDGED_ROWS = 2000;
+
+export function layoutOf(table: HeadTable): Layout {
+  const { rows, width, dialect } = table;
+  const first = headerAmongReadings(table) ? nextFilled(rows, table.first + 1) : table.first;
+  const before = rows.slice(0, first).filter((row) => trimmed(row.cells).length > 0);
+  const header = takeHeader(before, width, dialect);
+  const judged = rows.slice(first, first + JUDGED_ROWS).filter((row) => isReadings(trimmed(row.cells), dialect.decimal));
+  const facts = Array.from({ length: width }, (_, index) => factsOf(judged, index, dialect));
+  const columns = facts.map((fact, index) => columnOf(index, header.names[index] ?? "", header.units[index] ?? "", fact));
+  return {
+    dialect,
+    firstLine: rows[first].line,
+    width,
+    columns: settleSole(settleTime(columns, facts), facts),
+    metadata: metadataOf(header.preamble),
+    named: header.named,
+  };
+}
+
+function nextFilled(rows: readonly HeadRow[], from: number): number {
+  let at = from;
+  while (at < rows.length - 1 && trimmed(rows[at].cells).length === 0) at += 1;
+  return at;
+}
+
+/** A header of pin numbers or of one-letter names passes for readings: "s,0,1" or "0,1,2" above columns of 0 and 1. */
+function headerAmongReadings(table: HeadTable): boolean {
+  const { rows, first, width, dialect } = table;
+  const following = rows
+    .slice(first + 1, first + 200)
+    .map((row) => trimmed(row.cells))
+    .filter((cells) => cells.length === width && isReadings(cells, dialect.decimal));
+  if (following.length === 0) return false;
+  const top = trimmed(rows[first].cells);
+  let foreign = 0;
+  for (let c = 0; c < width; c += 1) {
+    const text = top[c].trim();
+    const numbers = following.every((cells) => kindOf(cells[c], dialect) === NUMBER);
+    if (numbers && /^[a-zA-Z]$/.test(text)) foreign += 1;
+    const logic = numbers && following.every((cells) => /^\s*[01]\s*$/.test(cells[c]));
+    if (logic && /^\d+$/.test(text) && Number(text) > 1) foreign += 1;
+  }
+  return foreign > 0;
+}
+
+const cell = new Cell();
+
+function kindOf(text: string, dialect: Dialect): number {
+  return readText(cell, text, dialect.decimal.charCodeAt(0));
+}
+
+interface Header {
+  readonly names: readonly string[];
+  readonly units: readonly string[];
+  readonly preamble: readonly HeadRow[];
+  readonly named: boolean;
+}
+
+function takeHeader(before: readonly HeadRow[], width: number, dialect: Dialect): Header {
+  const rows = [...before];
+  let units: readonly string[] = [];
+  let names: readonly string[] = [];
+  const fits = (row: HeadRow | undefined) =>
+    row !== undefined &&
+    trimmed(row.cells).length <= Math.max(width, row.cells.length) &&
+    trimmed(row.cells).length >= Math.max(1, width - 1);
+  let last = rows[rows.length - 1];
+  if (fits(last) && isUnitsRow(last.cells) && width > 1) {
+    units = last.cells.map((text) => text.replace(/^#\s*/, ""));
+    rows.pop();
+    last = rows[rows.length - 1];
+  }
+  if (fits(last) && isHeader(last, width)) {
+    names = last.cells.map((text, i) => (i === 0 ? text.replace(/^(?:#|%|\/\/|;)+\s*/, "") : text).trim());
+    rows.pop();
+  }
+  // A unit alone in a cell of the header ("s,SCL,SDA") is that column's unit as well.
+  if (units.length === 0) units = names.map((text) => (parseUnit(text) === null || dialect.delimiter === " " ? "" : text));
+  return { names, units, preamble: rows, named: names.length > 0 };
+}
+
+/** "Sample interval,1e-7" directly above two columns of readings is no header. */
+function isHeader(row: HeadRow, width: number): boolean {
+  const cells = trimmed(row.cells);
+  if (cells.length === 2 && /^[+-]?[\d.,]/.test(cells[1].trim()) && (isTimingKey(cells[0]) || width > 2)) return false;
+  if (cells.length === 1) return width === 1 && !/[:=]/.test(cells[0]);
+  return true;
+}
+
+interface Facts {
+  readonly numbers: readonly number[];
+  readonly texts: readonly string[];
+  readonly words: number;
+  readonly hex: number;
+  readonly unknown: number;
+  readonly integer: boolean;
+  readonly bits: number;
+}
+
+function factsOf(rows: readonly HeadRow[], index: number, dialect: Dialect): Facts {
+  const numbers: number[] = [];
+  const texts: string[] = [];
+  let words = 0;
+  let hex = 0;
+  let unknown = 0;
+  let bits = 0;
+  for (const row of rows) {
+    const text = (row.cells[index] ?? "").trim();
+    const kind = kindOf(text, dialect);
+    if (kind === NUMBER) {
+      numbers.push(cell.value());
+      texts.push(text);
+    } else if (kind === BITS) {
+      hex += 1;
+      bits = Math.max(bits, /^0x/i.test(text) ? (text.length - 2) * 4 : text.length - 2);
+    } else if (kind === UNKNOWN) unknown += 1;
+    else if (kind === LOW || kind === HIGH || kind === RELEASED) words += 1;
+  }
+  return { numbers, texts, words, hex, unknown, integer: texts.every((text) => /^[+-]?\d+$/.test(text)), bits };
+}
+
+function columnOf(index: number, header: string, unitText: string, facts: Facts): Column {
+  const split = splitHeader(header);
+  const unit = parseUnit(unitText) ?? split.unit;
+  const name = parseUnit(header) !== null && unitText === header ? "" : split.name;
+  const range = /\[(\d+):(\d+)\]$/.exec(header.trim());
+  const bits = range === null ? facts.bits : Math.abs(Number(range[1]) - Number(range[2])) + 1;
+  return { index, name: range === null ? name : header.trim(), unit, role: roleOf(name, unit, facts, range !== null), bits };
+}
+
+function roleOf(name: string, unit: Unit | null, facts: Facts, ranged: boolean): Role {
+  const { numbers, texts } = facts;
+  if (facts.hex > 0) return "bits";
+  if (numbers.length === 0) return facts.words > 0 ? "digital" : "other";
+  if (unit?.quantity === "time") return "time";
+  if (unit?.quantity === "voltage") return "volts";
+  if (unit?.quantity === "count") return isOrdinalName(name) ? "ordinal" : "counts";
+  if (isOrdinalName(name) && facts.integer && rises(numbers)) return "ordinal";
+  if (isTimeName(name) && rises(numbers)) return facts.integer ? "ordinal" : "time";
+  if (ranged && facts.integer) return "bits";
+  if (texts.length > 1 && texts.every((text) => /^[01]{2,32}$/.test(text) && text.length === texts[0].length)) return "pattern";
+  if (numbers.every((value) => value === 0 || value === 1) && texts.every((text) => /^[+-]?[01](?:[.,]0?)?$/.test(text)))
+    return "digital";
+  return facts.integer ? "counts" : "volts";
+}
+
+function rises(numbers: readonly number[]): boolean {
+  return numbers.length < 2 || numbers[numbers.length - 1] > numbers[0];
+}
+
+/** A column without a time name is the time where it never falls and rises in most rows; only the first such one. */
+function settleTime(columns: readonly Column[], facts: readonly Facts[]): Column[] {
+  if (columns.some((column) => column.role === "time" || column.role === "ordinal")) return [...columns];
+  const at = columns.findIndex((column) => {
+    const { numbers } = facts[column.index];
+    if ((column.role !== "volts" && column.role !== "counts") || column.unit !== null || numbers.length < 2) return false;
+    let up = 0;
+    for (let i = 1; i < numbers.length; i += 1) {
+      if (numbers[i] < numbers[i - 1]) return false;
+      if (numbers[i] > numbers[i - 1]) up += 1;
+    }
+    return numbers.length < 8 ? up === numbers.length - 1 : up > numbers.length / 20;
+  });
+  return columns.map((column, i) => (i === at ? { ...column, role: facts[i].integer ? "ordinal" : "time" } : column));
+}
+
+/** One column of small whole numbers beside the time: a word of bits per row (0..3 for two lines). */
+function settleSole(columns: readonly Column[], facts: readonly Facts[]): Column[] {
+  const lines = columns.filter((column) => column.role !== "time" && column.role !== "ordinal" && column.role !== "other");
+  return columns.map((column) => {
+    if (column.role === "pattern") return { ...column, bits: facts[column.index].texts[0].length };
+    if (lines.length !== 1 || column !== lines[0] || column.role !== "counts" || column.unit !== null) return column;
+    const top = Math.max(...facts[column.index].numbers);
+    return top <= 15 && Math.min(...facts[column.index].numbers) >= 0
+      ? { ...column, role: "bits", bits: top > 3 ? 4 : 2 }
+      : column;
+  });
+}

@@ -1,0 +1,162 @@
+// In: an opened CSV and a sink. Out: its edges, block by block, in one pass over the file, and the tail.
+
+import { ok, type Result, refuse, type Warning } from "../../../base/result";
+import { guardInflate } from "../../bytes/gzip";
+import { plainChunks } from "../../bytes/text";
+import type { CaptureHead, CaptureTail, EdgeSink } from "../reader";
+import { Aside } from "./aside";
+import { type Body, bodyReader, scanPlan } from "./body";
+import { Comparator, Excursions } from "./comparator";
+import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
+import { Rows } from "./rows";
+import { type LevelSource, LevelTaker, type TapLines, VoltTaker } from "./takers";
+import type { LevelPlan } from "./thresholds";
+import { EdgeWriter } from "./writer";
+
+export interface BodyJob {
+  readonly body: Body;
+  readonly head: CaptureHead;
+  readonly scl: LineSource;
+  readonly sda: LineSource;
+  readonly taps: readonly { readonly scl: LineSource | null; readonly sda: LineSource | null; readonly inverted: boolean }[];
+  readonly levels: LevelPlan;
+}
+
+/** Bytes read before the first block of edges leaves, so that the first transactions are there at once. */
+const FIRST_FLUSH = 65_536;
+/** A settled sample looks back this far, in seconds (well under the shortest SCL low of Fast-mode, 1.3 us). */
+const SETTLE_SECONDS = 60e-9;
+
+export async function readBody(job: BodyJob, sink: EdgeSink): Promise<Result<CaptureTail>> {
+  const { body } = job;
+  const parts = assemble(job, sink);
+  const { rows, writers, finish } = parts;
+  const reader = bodyReader(scanPlan(body.layout, body.axis, parts.selection), body.form, rows, null, () => false);
+  return guardInflate(body.source.name, async () => {
+    let read = 0;
+    for await (const chunk of plainChunks(body.source.open(), body.form)) {
+      const slice = read === 0 ? FIRST_FLUSH : chunk.length;
+      for (let from = 0; from < chunk.length; from += slice) {
+        reader.push(from === 0 && slice >= chunk.length ? chunk : chunk.subarray(from, Math.min(chunk.length, from + slice)));
+        for (const writer of writers) writer.flush();
+      }
+      read += chunk.length;
+      sink.progress(body.source.consumed?.() ?? read);
+    }
+    reader.finish();
+    rows.finish();
+    finish();
+    sink.progress(body.source.consumed?.() ?? read);
+    return tailOf(job, rows, parts);
+  });
+}
+
+interface Parts {
+  readonly selection: Selection;
+  readonly rows: Rows;
+  readonly writers: readonly EdgeWriter[];
+  readonly bus: EdgeWriter;
+  readonly excursions: Excursions;
+  finish(): void;
+}
+
+function assemble(job: BodyJob, sink: EdgeSink): Parts {
+  const { body, scl, sda, levels } = job;
+  const tapSources = job.taps.flatMap((tap) => [tap.scl, tap.sda]).filter((source): source is LineSource => source !== null);
+  const selection = select(body.layout, [scl, sda, ...tapSources]);
+  const judged = levels.judge(scl, sda);
+  const volts = judged.levels === "volts";
+  const bus = new EdgeWriter((block) => sink.edges(block), volts);
+  const taps = job.taps.map(
+    (tap, index): TapLines => ({
+      scl: tap.scl === null ? null : levelSource(tap.scl, selection, levels),
+      sda: tap.sda === null ? null : levelSource(tap.sda, selection, levels),
+      inverted: tap.inverted,
+      writer: new EdgeWriter((block) => sink.tap(index, block), false),
+    }),
+  );
+  const excursions = new Excursions(job.head.vdd_v !== null);
+  const window = windowOf(body);
+  let finishBus = () => bus.finish();
+  let taker: LevelTaker | VoltTaker;
+  if (!volts) taker = new LevelTaker(new DigitalTap(scl, selection), new DigitalTap(sda, selection), taps, bus);
+  else {
+    const voltTaker = new VoltTaker(
+      selection.values,
+      selection.slots[scl.column.index],
+      selection.slots[sda.column.index],
+      new Comparator(judged.scl, window, excursions.visitor("scl")),
+      new Comparator(judged.sda, window, excursions.visitor("sda")),
+      taps,
+      bus,
+      job.head.vdd_v !== null,
+    );
+    taker = voltTaker;
+    finishBus = () => voltTaker.finish();
+  }
+  const rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
+  const writers = [bus, ...taps.map((tap) => tap.writer)];
+  const finish = () => {
+    finishBus();
+    for (const tap of taps) tap.writer.finish();
+  };
+  return { selection, rows, writers, bus, excursions, finish };
+}
+
+function windowOf(body: Body): number {
+  const { pace, timebase } = body.axis;
+  if (pace.step === null || timebase.origin === "assumed") return 1;
+  return Math.ceil((SETTLE_SECONDS * timebase.ticksPerSecond) / pace.step);
+}
+
+function levelSource(source: LineSource, selection: Selection, levels: LevelPlan): LevelSource {
+  if (isDigital(source)) return new DigitalTap(source, selection);
+  const thresholds = levels.columns.get(source.column.index);
+  if (thresholds === undefined) return { level: () => 2 };
+  const comparator = new Comparator(thresholds, 1, () => undefined);
+  const slot = selection.slots[source.column.index];
+  return {
+    level(tick, cut) {
+      if (cut) comparator.reset();
+      comparator.detect(tick, selection.values[slot]);
+      return comparator.level;
+    },
+  };
+}
+
+function tailOf(job: BodyJob, rows: Rows, parts: Parts): Result<CaptureTail> {
+  const { asides } = rows;
+  if (rows.count === 0 || asides.count > rows.count) {
+    const first = asides.first();
+    return refuse({
+      code: "too-many-rows-set-aside",
+      message: `${asides.count} of ${asides.count + rows.count} rows of ${job.body.source.name} cannot be used${first === null ? "" : `; line ${first.line} ${first.words}`}.`,
+      advice: "Check that the export is complete and has the same columns in every row.",
+      place: first === null ? {} : { line: first.line },
+    });
+  }
+  const warnings: Warning[] = asides.warnings();
+  if (rows.cuts > 0) warnings.push(cutWarning(rows, job.head.timebase.ticksPerSecond, job.head.timebase.origin === "assumed"));
+  return ok({
+    endTick: rows.lastTick,
+    samples: rows.count,
+    sclEdges: parts.bus.sclEdges,
+    sdaEdges: parts.bus.sdaEdges,
+    rowsSetAside: asides.count,
+    excursions: parts.excursions.list,
+    excursionCount: parts.excursions.count,
+    warnings,
+  });
+}
+
+function cutWarning(rows: Rows, ticksPerSecond: number, sampleNumbers: boolean): Warning {
+  const gap = sampleNumbers ? `${rows.cutTicks} samples` : `${Number((rows.cutTicks / ticksPerSecond).toPrecision(6))} s`;
+  const places = rows.cuts === 1 ? "one place" : `${rows.cuts} places`;
+  const lost = rows.lostRows > 0 ? `about ${rows.lostRows} samples are missing` : "changes are missing";
+  return {
+    code: "rows-lost",
+    message: `The record is cut in ${places} where rows are missing, and nothing is decoded across a cut: ${lost}, first before line ${rows.cutLine} (a step of ${gap}).`,
+    line: rows.cutLine,
+    count: rows.cuts,
+  };
+}

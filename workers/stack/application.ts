@@ -7,10 +7,10 @@ import { run, type Service, serve } from "./process";
 const NEXT = "node_modules/next/dist/bin/next";
 const READY_WITHIN = 90_000;
 
-/** Settings on top of the caller's environment; a NODE_ENV of the caller's would change what the framework does. */
-export function applicationEnvironment(settings: Readonly<Record<string, string>>): NodeJS.ProcessEnv {
+/** Settings on top of an outer environment; a NODE_ENV of the caller's would change what the framework does. */
+export function applicationEnvironment(settings: Readonly<Record<string, string>>, outer = process.env): NodeJS.ProcessEnv {
   return {
-    ...process.env,
+    ...outer,
     ...settings,
     NODE_ENV: "production",
     NEXT_TELEMETRY_DISABLED: "1",

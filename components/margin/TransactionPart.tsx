@@ -1,3 +1,4 @@
+import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { Capture } from "@/lib/view/capture";
 import { address, addressBytes, count, duration, hex, instant, span, timeDigits } from "@/lib/view/format";
 import { faultWords } from "@/lib/view/words";
@@ -7,13 +8,12 @@ export interface TransactionPartProps {
   capture: Capture;
   index: number;
   device: string | null;
-  advice: (kind: string) => string | null;
 }
 
 const SHOWN = 64;
 
 /** The selected transaction in words and figures, with every fault and every limit it broke. */
-export function TransactionPart({ capture, index, device, advice }: TransactionPartProps) {
+export function TransactionPart({ capture, index, device }: TransactionPartProps) {
   const { ledger, head, marks } = capture;
   const row = ledger.row(index);
   const own = marks.of(index);
@@ -68,7 +68,7 @@ export function TransactionPart({ capture, index, device, advice }: TransactionP
         {own.faults.map((fault) => (
           <li key={`${fault.kind}${fault.time_s}`}>
             <span className="italic text-broken">{faultWords(fault.kind)}</span> {fault.detail}
-            {advice(fault.kind) && <span className="block text-quiet">{advice(fault.kind)}</span>}
+            <span className="block text-quiet">{FAULT_WORDS[fault.kind].advice}</span>
           </li>
         ))}
         {own.violations.map((entry) => (

@@ -1,5 +1,6 @@
 import { memo, useMemo } from "react";
 import { RowTrace } from "@/components/score/RowTrace";
+import { TagShape } from "@/components/ui/Icon";
 import type { Capture } from "@/lib/view/capture";
 import { address, addressBytes, count, instant } from "@/lib/view/format";
 import { NO_MARKS } from "@/lib/view/marks";
@@ -90,7 +91,7 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
       {found.length > VERDICTS && <span className="block text-quiet">and {found.length - VERDICTS} more</span>}
       {props.tags.map((tag) => (
         <span key={tag} className="block font-sans text-small not-italic text-accent">
-          ⚑ {tag}
+          <TagShape /> {tag}
         </span>
       ))}
     </>

@@ -2,6 +2,7 @@
 // hear the page instead of seeing it.
 
 import type { FaultKind } from "../diagnosis/report";
+import { FAULT_WORDS } from "../diagnosis/wording";
 import { address, count, duration, hex } from "./format";
 import type { Ledger, Row } from "./ledger";
 import type { Marks, RowMarks } from "./marks";
@@ -13,7 +14,8 @@ export interface Verdict {
   readonly tone: Tone;
 }
 
-const FAULT_WORDS: Record<FaultKind, string> = {
+/** What fits the last column of a row; the full words stand in lib/diagnosis/wording.ts. */
+const SHORT_WORDS: Record<FaultKind, string> = {
   "address-nack": "no answer",
   "data-nack": "data not acknowledged",
   "missing-stop": "no STOP",
@@ -39,7 +41,7 @@ const FAULT_WORDS: Record<FaultKind, string> = {
 };
 
 export function faultWords(kind: FaultKind): string {
-  return FAULT_WORDS[kind];
+  return SHORT_WORDS[kind];
 }
 
 /** Every verdict that applies, the gravest first. */
@@ -48,7 +50,7 @@ export function verdicts(row: Row, marks: RowMarks, all: Marks): Verdict[] {
   if (marks.contest) list.push({ text: `contest, bit ${marks.contest.bit_index}`, tone: "contest" });
   if (marks.retryOf !== null) list.push({ text: `retry of ${count(marks.retryOf)}`, tone: "contest" });
   const kinds = new Set(marks.faults.map((fault) => fault.kind));
-  for (const kind of kinds) list.push({ text: FAULT_WORDS[kind], tone: "broken" });
+  for (const kind of kinds) list.push({ text: SHORT_WORDS[kind], tone: FAULT_WORDS[kind].fails ? "broken" : "plain" });
   const parameters = new Set<string>();
   for (const violation of marks.violations) {
     if (parameters.has(violation.parameter)) continue;

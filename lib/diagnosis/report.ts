@@ -106,6 +106,9 @@ export const FaultSchema = z.object({
   detail: z.string(),
 });
 
+const occurrence = z.object({ transaction: z.int().nullable(), time_s: z.number(), measured_s: z.number() });
+
+/** A frequency is given as its period. A parameter stands twice where a capture holds Hs traffic as well: see `traffic`. */
 export const MeasurementSchema = z.object({
   parameter: z.string(),
   count: z.int(),
@@ -117,6 +120,23 @@ export const MeasurementSchema = z.object({
   below: z.int(),
   above: z.int(),
   uncertain: z.int(),
+  traffic: z.enum(["F/S", "Hs"]).optional(),
+  p1_s: z.number().nullable().optional(),
+  p99_s: z.number().nullable().optional(),
+  verdict: z.enum(["pass", "fail", "too-close", "not-measurable", "not-seen", "no-limit"]).optional(),
+  /** Of one interval; 0 where times are exact to their own step. */
+  uncertainty_s: z.number().optional(),
+  /** From where to where it is measured. */
+  points: z.string().optional(),
+  /** Document, revision and table of the limit. */
+  clause: z.string().optional(),
+  note: z.string().optional(),
+  /** Samples per second that would judge the limit within a tenth, where this capture is too slow for it. */
+  needs_rate: z.number().nullable().optional(),
+  smallest: occurrence.nullable().optional(),
+  largest: occurrence.nullable().optional(),
+  /** Pairs: intervals from this length on, and how many, in steps of 1/8 octave. */
+  distribution: z.array(z.tuple([z.number(), z.int()])).optional(),
 });
 
 export const ViolationSchema = z.object({
@@ -137,6 +157,20 @@ export const ControllerSchema = z.object({
   transactions: z.int(),
 });
 
+const level = z.object({ count: z.int(), min_v: z.number(), p50_v: z.number(), max_v: z.number() }).nullable();
+
+/** Volts only. */
+export const LevelsSchema = z.object({
+  scl_low: level,
+  sda_low: level,
+  sda_high: level,
+  /** RC of the lines from their median 30 % to 70 % rise; null where no rise was seen. */
+  rc_s: z.number().nullable(),
+  /** Smallest pull-up for the profile's drivers, and the largest line capacitance times pull-up that still rises in time. */
+  rp_min_ohm: z.number().nullable(),
+  rc_max_s: z.number().nullable(),
+});
+
 export const ReportSchema = z.object({
   schema: z.literal(REPORT_SCHEMA),
   capture: CaptureSchema,
@@ -147,8 +181,18 @@ export const ReportSchema = z.object({
   measurements: z.array(MeasurementSchema),
   violations: z.array(ViolationSchema),
   controllers: z.array(ControllerSchema),
-  limits: z.object({ profile: z.string(), source: z.string() }),
+  limits: z.object({
+    profile: z.string(),
+    source: z.string(),
+    version: z.int().optional(),
+    base: z.string().nullable().optional(),
+  }),
   verdict: z.enum(["pass", "fail", "undecided"]),
+  levels: LevelsSchema.nullable().optional(),
+  /** Faults of each kind, listed or not. */
+  fault_totals: z.record(z.string(), z.int()).optional(),
+  /** Two or three plain sentences. */
+  lede: z.array(z.string()).optional(),
 });
 
 export type Report = z.infer<typeof ReportSchema>;
@@ -160,4 +204,5 @@ export type FaultKind = Fault["kind"];
 export type Stretch = z.infer<typeof StretchSchema>;
 export type Measurement = z.infer<typeof MeasurementSchema>;
 export type Violation = z.infer<typeof ViolationSchema>;
+export type Levels = z.infer<typeof LevelsSchema>;
 export type ControllerRow = z.infer<typeof ControllerSchema>;

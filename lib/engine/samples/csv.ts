@@ -4,7 +4,7 @@
 import { ok, type Problem, type Result, refuse, type Warning } from "../../base/result";
 import { firstBytes, guardInflate } from "../bytes/gzip";
 import type { ByteSource } from "../bytes/source";
-import { decode, plainChunks, plainEncoding, textForm } from "../bytes/text";
+import { decode, type Encoding, plainChunks, plainEncoding, textForm } from "../bytes/text";
 import { needsMore, type Proposal, proposeChannels } from "../channels/propose";
 import type { LineTrace } from "../channels/trace";
 import { axisOf } from "./csv/axis";
@@ -23,6 +23,7 @@ export const HEAD_BYTES = 65_536;
 /** A CSV as far as it is understood; also what a preview shows when the lines are not found. */
 export interface CsvView {
   readonly rows: readonly HeadRow[];
+  readonly encoding: Encoding;
   readonly layout: Layout;
   readonly sources: readonly LineSource[];
   readonly warnings: readonly Warning[];
@@ -58,7 +59,7 @@ export async function examineCsv(source: ByteSource, choices: ReadChoices, gzip:
     if (!found.ok) return found;
     const { proposal, levels, startTick } = found.value;
     const warnings = [...layoutWarnings(layout, sources), ...axis.warnings];
-    view = { rows: table.value.rows, layout, sources, warnings, proposal };
+    view = { rows: table.value.rows, encoding: form.encoding, layout, sources, warnings, proposal };
     if (!proposal.ok) return proposal;
     return openFound(body, sources, choices, gzip, proposal.value, levels, startTick, view);
   });

@@ -50,7 +50,7 @@ export class Comparator {
   /** Whether the line changed between the previous sample and this one. */
   detect(tick: number, v: number): boolean {
     let changed = false;
-    if (v !== v) changed = this.lose(tick);
+    if (Number.isNaN(v)) changed = this.lose(tick);
     else if (this.level === 1) changed = v < this.vih ? this.dip(tick, v) : this.back(tick, v, this.vih);
     else if (this.level === 0) changed = v > this.vil ? this.climb(tick, v) : this.back(tick, v, this.vil);
     else changed = this.begin(tick, v);
@@ -101,7 +101,7 @@ export class Comparator {
   private begin(tick: number, v: number): boolean {
     if (v < this.vih && v > this.vil) return false;
     this.level = v >= this.vih ? 1 : 0;
-    const known = this.previous === this.previous;
+    const known = !Number.isNaN(this.previous);
     this.eventTick = known ? this.crossing(tick, v, this.level === 1 ? this.vih : this.vil) : tick;
     this.lead = Number.NaN;
     this.between = false;
@@ -145,9 +145,9 @@ export class Comparator {
   /** After the previous sample's tick and no later than this one's. */
   private crossing(tick: number, v: number, threshold: number): number {
     const from = this.previousTick;
-    if (from !== from || v === this.previous) return tick;
+    if (Number.isNaN(from) || v === this.previous) return tick;
     const at = Math.round(from + ((threshold - this.previous) / (v - this.previous)) * (tick - from));
-    return at <= from ? Math.min(tick, from + 1) : at > tick ? tick : at;
+    return at <= from ? Math.min(tick, from + 1) : Math.min(at, tick);
   }
 }
 

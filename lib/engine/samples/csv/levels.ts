@@ -22,7 +22,7 @@ export class Histogram {
   total = 0;
 
   add(value: number): void {
-    if (value !== value) return;
+    if (Number.isNaN(value)) return;
     this.total += 1;
     if (value < this.least) this.least = value;
     if (value > this.most) this.most = value;

@@ -81,7 +81,7 @@ export class DigitalTap {
   level(): number {
     const value = this.values[this.slot];
     if (this.bit < 0) return value;
-    if (value !== value) return 2;
+    if (Number.isNaN(value)) return 2;
     const shifted = Math.floor(value / this.divisor);
     return this.pattern ? (shifted % 10 === 1 ? 1 : 0) : shifted % 2;
   }

@@ -212,12 +212,13 @@ export class Scanner {
           let e = 0;
           if (bytes[p] === decimal) {
             const point = p + 1;
-            do {
+            p = point;
+            d = bytes[p] - 48;
+            while (d >= 0 && d <= 9) {
+              m = m * 10 + d;
               p += 1;
               d = bytes[p] - 48;
-              if (d < 0 || d > 9) break;
-              m = m * 10 + d;
-            } while (true);
+            }
             e = point - p;
             digits -= e;
           }

@@ -6,7 +6,8 @@ import { buttonClass } from "@/components/ui/Button";
 import { CaseQuerySchema } from "@/lib/case/wire";
 import { pageMember } from "@/lib/server/access/page";
 import { may, nameplate } from "@/lib/server/access/viewer";
-import { listCases } from "@/lib/server/cases/read";
+import { listCases } from "@/lib/server/cases/list";
+import { fork } from "@/lib/server/database";
 
 export const metadata: Metadata = { title: "Cases" };
 
@@ -18,7 +19,7 @@ export default async function CasesPage({
   const viewer = await pageMember("/cases", "case.read");
   // A damaged query shows the plain list rather than an error.
   const query = CaseQuerySchema.safeParse(await searchParams);
-  const initial = await listCases(viewer, query.success ? query.data : CaseQuerySchema.parse({}));
+  const initial = await listCases(await fork(), viewer, query.success ? query.data : CaseQuerySchema.parse({}));
   const mayCreate = may(viewer, "case.create");
   return (
     <>

@@ -92,7 +92,7 @@ export function naiveDecode(instants: readonly Instant[]): NaiveTransaction[] {
       if (word.is === "bit") {
         if (now !== null && (word.value < 2 || bits.length % 9 !== 0)) bits.push(word.value & 1);
       } else if (word.is === "start") {
-        const again = now !== null || busy;
+        const again: boolean = now !== null || busy;
         settle("Sr");
         now = { opens: again ? "Sr" : "S", closes: "none", start: word.tick, bytes: [] };
         bits = [];

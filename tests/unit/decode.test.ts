@@ -169,33 +169,28 @@ describe("spikes (UM10204 Rev 7 Table 10: tSP 50 ns)", () => {
 });
 
 // Levels that wander at random reach every branch; SCL and SDA may move in one tick, and sometimes become unknown.
-const wandering = fc
-  .array(
-    fc.record({
-      gap: fc.integer({ min: 1, max: 3 }),
-      scl: fc.integer({ min: 0, max: 3 }),
-      sda: fc.integer({ min: 0, max: 2 }),
-      lost: fc.integer({ min: 0, max: 60 }),
-    }),
-    { minLength: 2, maxLength: 400 },
-  )
-  .map((steps) => {
-    const out: Instant[] = [];
-    let tick = 0;
-    let scl: 0 | 1 | 2 = 1;
-    let sda: 0 | 1 | 2 = 1;
-    for (const step of steps) {
-      tick += step.gap;
-      if (scl === 2) scl = 1;
-      if (sda === 2) sda = 1;
-      if (step.scl > 0) scl = scl === 1 ? 0 : 1;
-      if (step.sda === 0) sda = sda === 1 ? 0 : 1;
-      if (step.lost === 0) sda = 2;
-      const last = out[out.length - 1];
-      if (last === undefined || last.scl !== scl || last.sda !== sda) out.push({ tick, scl, sda });
-    }
-    return out;
-  });
+const level = fc.constantFrom<0 | 1>(0, 1);
+const step = fc.record({
+  gap: fc.integer({ min: 1, max: 3 }),
+  clock: fc.integer({ min: 0, max: 3 }),
+  data: fc.integer({ min: 0, max: 2 }),
+  lost: fc.integer({ min: 0, max: 120 }),
+});
+const wandering = fc.tuple(level, level, fc.array(step, { minLength: 2, maxLength: 400 })).map(([firstScl, firstSda, steps]) => {
+  const out: Instant[] = [{ tick: 0, scl: firstScl, sda: firstSda }];
+  let tick = 0;
+  let scl = firstScl;
+  let sda = firstSda;
+  for (const { gap, clock, data, lost } of steps) {
+    tick += gap;
+    if (clock > 0) scl = scl === 1 ? 0 : 1;
+    if (data === 0) sda = sda === 1 ? 0 : 1;
+    const now: Instant = { tick, scl: lost === 1 ? 2 : scl, sda: lost === 0 ? 2 : sda };
+    const last = out[out.length - 1];
+    if (last.scl !== now.scl || last.sda !== now.sda) out.push(now);
+  }
+  return out;
+});
 
 describe("agreement with the second decoder", () => {
   it("on wandering lines, cut anywhere", () => {

@@ -10,7 +10,7 @@ export interface TableRecord {
 
 export function tableOf(text: string): Result<TableRecord[]> {
   const body = text.startsWith("\uFEFF") ? text.slice(1) : text;
-  const delimiter = delimiterOf(body.slice(0, (body.search(/[\r\n]/) + body.length + 1) % (body.length + 1)));
+  const delimiter = delimiterOf(body.split(/[\r\n]/, 1)[0]);
   const records: TableRecord[] = [];
   let cells: string[] = [];
   let cell = "";

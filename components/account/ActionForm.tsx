@@ -56,16 +56,18 @@ export function ActionForm({
         <Button type="submit" look={look} busy={busy} aria-label={submitLabel}>
           {submit}
         </Button>
-        <Answer state={state} />
+        <Answer state={state} inline={inline} />
       </div>
     </form>
   );
 }
 
-function Answer({ state }: { state: FormState }) {
+function Answer({ state, inline }: { state: FormState; inline: boolean }) {
   const refused = state.status === "refused";
+  // The live region has to be there before there is something to say; unseen, it takes back the gap it would make.
+  const gap = inline && !state.message ? "-ml-3" : "";
   return (
-    <p aria-live="polite" className={`font-sans text-small ${refused ? "text-broken" : "text-quiet"}`}>
+    <p aria-live="polite" className={`font-sans text-small ${gap} ${refused ? "text-broken" : "text-quiet"}`}>
       {state.message && `${refused ? "× " : ""}${state.message}`}
     </p>
   );

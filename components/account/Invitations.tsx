@@ -32,7 +32,7 @@ export function Invitations({ rows }: { rows: readonly InvitationRow[] }) {
             <tr key={row.id}>
               <Cell>{row.email}</Cell>
               <Cell>{row.role}</Cell>
-              <Cell>
+              <Cell className="whitespace-nowrap">
                 <Day at={row.expiresAt} />
               </Cell>
               <Cell className="text-right">
@@ -57,7 +57,7 @@ export function Invitations({ rows }: { rows: readonly InvitationRow[] }) {
 function InviteForm() {
   return (
     <section className="max-w-md" aria-labelledby="invite">
-      <h2 id="invite" className="mb-4 font-serif text-lg italic">
+      <h2 id="invite" className="mb-4 font-serif text-lg font-normal italic">
         Invite somebody
       </h2>
       <ActionForm action={invite} submit="Send the invitation" label="Invite somebody">

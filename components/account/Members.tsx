@@ -32,10 +32,10 @@ export function Members({ rows, mayChange, mayRemove }: { rows: readonly MemberR
     <Table caption="Members" captioned columns={columns}>
       {rows.map((row) => (
         <tr key={row.id}>
-          <Cell>{row.self ? `${row.name} (you)` : row.name}</Cell>
+          <Cell className="whitespace-nowrap">{row.self ? `${row.name} (you)` : row.name}</Cell>
           <Cell>{row.email}</Cell>
           <Cell>{mayChange ? <RoleChoice row={row} /> : row.role}</Cell>
-          <Cell>
+          <Cell className="whitespace-nowrap">
             <Day at={row.joinedAt} />
           </Cell>
           <Cell className="text-right">{row.self ? <Leave /> : mayRemove && <Remove row={row} />}</Cell>
@@ -62,7 +62,7 @@ function RoleChoice({ row }: { row: MemberRow }) {
           name="role"
           defaultValue={row.role}
           aria-label={`Role of ${row.name}`}
-          className={`${entryClass} !w-auto py-0.5 text-label [&>option]:bg-paper`}
+          className={`${entryClass} !w-auto min-w-28 py-0.5 text-label [&>option]:bg-paper`}
         >
           {roles.map((role) => (
             <option key={role}>{role}</option>
@@ -75,9 +75,9 @@ function RoleChoice({ row }: { row: MemberRow }) {
 
 function Remove({ row }: { row: MemberRow }) {
   return (
-    <details className="inline-block text-left">
-      <summary className="text-right">Remove</summary>
-      <p className="mt-2 mb-2 max-w-[34ch] font-serif text-body">
+    <details className="ml-auto w-fit max-w-[34ch]">
+      <summary>Remove</summary>
+      <p className="mt-2 mb-2 text-left font-serif text-body">
         {row.name} loses access to every case of the team. Notes, tags and findings stay.
       </p>
       <ActionForm
@@ -93,9 +93,9 @@ function Remove({ row }: { row: MemberRow }) {
 
 function Leave() {
   return (
-    <details className="inline-block text-left">
-      <summary className="text-right">Leave</summary>
-      <p className="mt-2 mb-2 max-w-[34ch] font-serif text-body">
+    <details className="ml-auto w-fit max-w-[34ch]">
+      <summary>Leave</summary>
+      <p className="mt-2 mb-2 text-left font-serif text-body">
         You lose access to every case of the team until somebody invites you again.
       </p>
       <ActionForm action={leaveTeam} submit="Leave the team" look="danger" />

@@ -36,8 +36,12 @@ export function Trail({ rows, shown }: { rows: readonly TrailRow[]; shown: numbe
   );
 }
 
+// The database keeps no order of its own; what a line is about comes first.
+const order = ["name", "email", "role", "from", "to"];
+
 function particulars(detail: TrailRow["detail"]): string {
   return Object.entries(detail)
+    .sort(([one], [other]) => order.indexOf(one) - order.indexOf(other))
     .map(([name, value]) => `${name}: ${value}`)
     .join(", ");
 }

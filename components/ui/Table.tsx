@@ -18,7 +18,7 @@ export interface TableProps {
 /** A typeset table: one strong rule under the head, hairlines between rows, no boxes. Wide ones scroll inside themselves. */
 export function Table({ caption, captioned = false, columns, children }: TableProps) {
   return (
-    <section aria-label={caption} className="max-w-full overflow-x-auto">
+    <section aria-label={caption} className="relative max-w-full overflow-x-auto">
       <table className="w-full border-collapse font-sans text-label">
         <caption className={captioned ? "pb-1 text-left font-serif text-lg italic" : "sr-only"}>{caption}</caption>
         <thead>

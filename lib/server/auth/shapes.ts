@@ -24,7 +24,7 @@ export const teamName = z
 /** Length is what counts (NIST SP 800-63B): no rules about kinds of characters. */
 export const newPassword = z
   .string({ error: "Choose a password." })
-  .min(10, "Use at least 10 characters; a short sentence is good.")
+  .min(10, "That is too short: use at least 10 characters.")
   .max(200, "Use at most 200 characters.");
 
 /** A password that already exists: only its size is looked at. */

@@ -104,6 +104,7 @@ export function problemResponse(told: Told): Response {
     "content-type": "application/problem+json; charset=utf-8",
     "cache-control": "no-store",
     "x-request-id": told.requestId,
+    "x-content-type-options": "nosniff",
   });
   if (told.retryAfter !== null) headers.set("retry-after", String(told.retryAfter));
   const body = {

@@ -42,6 +42,7 @@ export function route<
     try {
       const response = asResponse(await enter(definition, request, await context.params, caller));
       response.headers.set("x-request-id", caller.requestId);
+      response.headers.set("x-content-type-options", "nosniff");
       if (!response.headers.has("cache-control")) response.headers.set("cache-control", "no-store");
       return response;
     } catch (error) {

@@ -43,9 +43,11 @@ export async function openTestDatabase(): Promise<TestDatabase> {
   };
 }
 
-/** Settings that a test does not depend on; one that does sets them before it opens the database. */
+/** The address that tests know is set; the rest only where neither the test command nor the test gave it. */
 function giveSettings(): void {
-  process.env.APP_URL ??= "http://firstlow.test";
+  process.env.APP_URL = "http://firstlow.test";
+  delete process.env.SESSION_SECURE;
+  delete process.env.PROXY_HOPS;
   process.env.SMTP_URL ??= "smtp://127.0.0.1:9";
   process.env.MAIL_FROM ??= "Firstlow <firstlow@firstlow.test>";
   process.env.S3_ENDPOINT ??= "http://127.0.0.1:9";

@@ -46,7 +46,8 @@ export function otherBuses(pair: Pair, named: readonly Pair[]): Warning | null {
       other.scl.clue.stem === other.sda.clue.stem &&
       other.scl.trace.id !== pair.scl.trace.id &&
       other.sda.trace.id !== pair.sda.trace.id &&
-      !copied(pair.sda.trace, other.sda.trace) &&
+      // The same traffic on other lines (a line in volts beside its level, say) is no other bus.
+      other.count.firstBytes !== pair.count.firstBytes &&
       convincing(other.count) &&
       !drives(other.sda.trace, 0, pair.sda.trace),
   );

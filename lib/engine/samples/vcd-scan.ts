@@ -21,7 +21,6 @@ export interface ChangeSink {
 
 const BAD = 0;
 const SCALAR = 1;
-const TIME = 2;
 const KEYWORD = 3;
 const VECTOR = 4;
 const REAL = 5;
@@ -30,7 +29,6 @@ const PORT = 7;
 
 const KIND = new Uint8Array(256);
 for (const c of "01xXzZuUwWlLhH-") KIND[c.charCodeAt(0)] = SCALAR;
-KIND[35] = TIME;
 KIND[36] = KEYWORD;
 for (const [letters, kind] of [
   ["bB", VECTOR],
@@ -56,7 +54,7 @@ export class CodeTable {
   private readonly codes: Uint8Array[] = [];
 
   constructor(codes: readonly string[]) {
-    let size = 64;
+    let size = 256;
     while (size < 4 * codes.length) size *= 2;
     this.mask = size - 1;
     this.slots = new Int32Array(size);
@@ -162,12 +160,15 @@ export class ChangeScanner {
       const joined = new Uint8Array(this.carry.length + 1);
       joined.set(this.carry);
       joined[joined.length - 1] = 32;
-      const before = this.tick;
+      const before = this.asideChanges;
+      const was = this.backwardsAt;
       this.scan(joined, 0, joined.length);
       // The last word may itself be cut short: one that makes no sense there is the cut, not a fault of the file.
-      if (this.problem !== null || this.tick < before) {
+      if (this.problem !== null || this.asideChanges > before) {
         this.problem = null;
         this.truncated = true;
+        this.asideChanges = before;
+        this.backwardsAt = was;
       }
     }
     if (this.pending !== BAD || this.skipWords > 0 || this.state === SKIP || this.inBlock) this.truncated = true;
@@ -181,66 +182,76 @@ export class ChangeScanner {
     }
   }
 
+  /** The hot loop: bytes `from` to `to` end in white space, so that no word needs its bound checked. */
   private scan(bytes: Uint8Array, from: number, to: number): void {
-    const { table } = this;
+    const { table, sink, all } = this;
     const { slots, mask } = table;
     const start = this.at - from;
-    let changes = 0;
-    let i = from;
-    while (i < to) {
+    let i = this.resume(bytes, from, to, start);
+    while (i < to && this.problem === null) {
       const c = bytes[i];
       if (c <= 32) {
         i++;
-        continue;
-      }
-      if (this.pending !== BAD || this.state === SKIP) {
-        i = this.continued(bytes, i, start);
-        if (this.problem) break;
-        continue;
-      }
-      const kind = KIND[c];
-      if (kind === SCALAR) {
+      } else if (c === 35) {
+        let j = i + 1;
+        let tick = 0;
+        for (let d = bytes[j] - 48; d >= 0 && d < 10; d = bytes[++j] - 48) tick = tick * 10 + d;
+        if (bytes[j] > 32 || j === i + 1) this.badTime(bytes, i, start);
+        else if (tick > this.tick && !this.dirty && !this.aside) this.tick = tick;
+        else this.advance(tick, start + i);
+        i = j;
+      } else if (KIND[c] === SCALAR) {
         let hash = 0;
         let j = i + 1;
         for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
-        changes++;
-        if (slots[hash & mask] !== 0) {
-          const net = table.find(bytes, i + 1, j, hash);
-          if (net >= 0) {
-            this.sink.scalar(net, c);
-            this.dirty = true;
-          } else if (this.all) this.undeclared(start + i);
-        } else if (this.all) this.undeclared(start + i);
-        if (j === i + 1) {
-          this.refuse("vcd-change", `the value ${String.fromCharCode(c)} with no identifier code directly after it`, start + i);
-          break;
-        }
+        this.changes++;
+        const net = slots[hash & mask] === 0 ? -1 : table.find(bytes, i + 1, j, hash);
+        if (net >= 0) {
+          sink.scalar(net, c);
+          this.dirty = true;
+        } else if (all || j === i + 1) this.strange(c, j === i + 1, start + i);
         i = j;
-      } else if (kind === TIME) {
-        i = this.time(bytes, i, start);
-        if (this.problem) break;
-      } else if (kind >= VECTOR) {
-        let j = i + 1;
-        while (bytes[j] > 32) j++;
-        this.pending = kind;
-        this.skipWords = kind === PORT ? 2 : 0;
-        this.value = bytes;
-        this.valueFrom = i + 1;
-        this.valueTo = j;
-        i = j;
-      } else if (kind === KEYWORD) {
-        i = this.keyword(bytes, i);
-      } else {
-        this.refuse("vcd-change", `"${word(bytes, i)}", which is neither a time, a value change nor a keyword`, start + i);
-        break;
-      }
+      } else i = this.other(bytes, i, to, start);
     }
-    this.changes += changes;
     if (this.pending !== BAD) {
       this.value = this.value.slice(this.valueFrom, this.valueTo);
       this.valueTo -= this.valueFrom;
       this.valueFrom = 0;
     }
+  }
+
+  /** Vectors, keywords and what should not be there. Returns the index after it. */
+  private other(bytes: Uint8Array, i: number, to: number, start: number): number {
+    const kind = KIND[bytes[i]];
+    if (kind === KEYWORD) return this.resume(bytes, this.keyword(bytes, i), to, start);
+    if (kind < VECTOR) {
+      this.refuse("vcd-change", `"${word(bytes, i)}", which is neither a time, a value change nor a keyword`, start + i);
+      return to;
+    }
+    let j = i + 1;
+    while (bytes[j] > 32) j++;
+    this.pending = kind;
+    this.skipWords = kind === PORT ? 2 : 0;
+    this.value = bytes;
+    this.valueFrom = i + 1;
+    this.valueTo = j;
+    return this.resume(bytes, j, to, start);
+  }
+
+  /** Goes on with what is open, a value whose code is to come or a section to be left out, as far as the bytes reach. */
+  private resume(bytes: Uint8Array, from: number, to: number, start: number): number {
+    let i = from;
+    while (i < to && (this.pending !== BAD || this.state === SKIP) && this.problem === null) {
+      if (bytes[i] <= 32) i++;
+      else i = this.continued(bytes, i, start);
+    }
+    return i;
+  }
+
+  private strange(value: number, alone: boolean, byte: number): void {
+    if (alone)
+      this.refuse("vcd-change", `the value ${String.fromCharCode(value)} with no identifier code directly after it`, byte);
+    else this.undeclared(byte);
   }
 
   /** A word that belongs to something begun before it: a vector's code, a section's text. Returns the index after it. */
@@ -282,20 +293,11 @@ export class ChangeScanner {
     return -1;
   }
 
-  private time(bytes: Uint8Array, i: number, start: number): number {
-    let j = i + 1;
-    let tick = 0;
-    for (let d = bytes[j]; d > 32; d = bytes[++j]) {
-      if (d < 48 || d > 57) {
-        this.refuse("vcd-time", `"${word(bytes, i)}" where a time, # and a whole number, is due`, start + i);
-        return j;
-      }
-      tick = tick * 10 + (d - 48);
-    }
-    if (j === i + 1) {
-      this.refuse("vcd-time", "a # without a number", start + i);
-      return j;
-    }
+  private badTime(bytes: Uint8Array, i: number, start: number): void {
+    this.refuse("vcd-time", `"${word(bytes, i)}" where a time, # and a whole number, is due`, start + i);
+  }
+
+  private advance(tick: number, byte: number): void {
     this.inBlock = false;
     if (tick > this.tick) {
       this.settle();
@@ -304,15 +306,14 @@ export class ChangeScanner {
     } else if (tick < this.tick && !this.aside) {
       this.settle();
       this.aside = true;
-      if (this.backwardsAt < 0) this.backwardsAt = start + i;
+      if (this.backwardsAt < 0) this.backwardsAt = byte;
       this.sink.cut();
     } else if (Number.isNaN(this.tick)) {
-      // Values told before the first time stand at 0, or at the first time where that is 0.
+      // Values told before the first time stand at 0.
       if (tick > 0) this.settle();
       this.tick = tick;
     }
     if (this.aside) this.asideChanges++;
-    return j;
   }
 
   private keyword(bytes: Uint8Array, i: number): number {

@@ -28,6 +28,8 @@ export class Transfer {
   private readonly etags = new Map<number, string>();
   private readonly underWay = new Map<number, { request: XMLHttpRequest | null; sent: number }>();
   private running = false;
+  /** How the person has the file read by now; kept with the capture. */
+  read: Read = {};
   private now: TransferView;
 
   constructor(
@@ -35,7 +37,6 @@ export class Transfer {
     readonly caseNumber: number,
     /** An unfinished upload of this very file to go on with. */
     private readonly resumed: string | null,
-    private readonly readChoices: () => Read,
   ) {
     this.now = { state: "waiting", name: file.name, size: file.size, sent: 0, message: "", capture: null };
   }
@@ -203,7 +204,7 @@ export class Transfer {
     const { capture } = await ask({
       method: "POST",
       path: `/api/uploads/${this.uploadId}/complete`,
-      body: { parts, read: this.readChoices() },
+      body: { parts, read: this.read },
       answer: CaptureAnswerSchema,
     });
     this.running = false;

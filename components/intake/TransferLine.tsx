@@ -23,7 +23,7 @@ export function TransferLine({ transfer }: { transfer: Transfer }) {
   const share = view.size === 0 ? 0 : Math.floor((view.sent / view.size) * 100);
   const moving = view.state === "sending" || view.state === "offline";
   return (
-    <div className="py-1.5 font-sans text-label" role="group" aria-label={`Upload of ${view.name}`}>
+    <section className="py-1.5 font-sans text-label" aria-label={`Upload of ${view.name}`}>
       <div className="flex flex-wrap items-baseline gap-x-5 gap-y-1">
         <span className="tabular text-hex">{view.name}</span>
         <span className={view.state === "failed" ? "text-broken" : "text-quiet"} aria-live="polite">
@@ -56,6 +56,6 @@ export function TransferLine({ transfer }: { transfer: Transfer }) {
           {share} %
         </progress>
       )}
-    </div>
+    </section>
   );
 }

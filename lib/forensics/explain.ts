@@ -1,0 +1,100 @@
+// In: one message and the signatures. Out: the log density of what was seen under each explanation: one controller alone; two
+// together until one yields at a slot and leaves then, at the eighth or at the ninth pulse of its byte; two to the end.
+
+import { Chain, single } from "./chain";
+import type { Ledger } from "./ledger";
+import { DATA_FALL, DATA_RISE, HOLD_START, type Slots } from "./message";
+import { logAdd, logNormal } from "./normal";
+import type { HabitFigure, LevelFigure, Sampling, Signature } from "./signature";
+
+/** Log densities of one message under one signature, slot by slot. */
+export interface Trace {
+  readonly low: Float64Array;
+  readonly high: Float64Array;
+  readonly data: Float64Array;
+  readonly sda: Float64Array;
+  readonly scl: Float64Array;
+}
+
+/** How many slots a freshly started clock filter is followed before the continuous one is used again. */
+const FRESH = 8;
+
+export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampling: Sampling): Trace {
+  const n = slots.length;
+  const column = (): Float64Array => new Float64Array(n);
+  const out = { low: column(), high: column(), data: column(), sda: column(), scl: column() };
+  const chain = new Chain(sampling.variance);
+  for (let s = 0; s < n; s++) {
+    const e = slots.entry[s];
+    if (slots.pulse[s] === 0) chain.restart();
+    out.low[s] = interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]);
+    out.high[s] = interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]);
+    const habit = slots.dataHabit[s];
+    const figure = habit === DATA_FALL || habit === DATA_RISE ? signature.habits[habit] : null;
+    if (figure !== null && figure.count > 0) out.data[s] = single(ledger.first[e], figure, sampling.variance);
+    if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
+    out.scl[s] = levelDensity(ledger.sclLevel[e], signature.sclLow);
+    if (slots.bus[s] === 0) out.sda[s] = levelDensity(ledger.sdaLevel[e], signature.sdaLow);
+  }
+  return out;
+}
+
+function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
+  if (x !== x || habit === null) {
+    chain.restart();
+    return 0;
+  }
+  return chain.step(x, habit.mean, habit.jitter, habit.broken);
+}
+
+function levelDensity(v: number, figure: LevelFigure | null): number {
+  if (figure === null || v !== v) return 0;
+  return logAdd(Math.log(0.97) + logNormal(v, figure.mean, figure.variance), Math.log(0.03));
+}
+
+/** Fresh clock densities of the slots from `from` on, against the continuous ones: what to add to the sum over the tail. */
+export function freshGain(ledger: Ledger, slots: Slots, from: number, signature: Signature, running: Trace, sampling: Sampling): number {
+  const chain = new Chain(sampling.variance);
+  let gain = 0;
+  const end = Math.min(slots.length, from + FRESH);
+  for (let s = from; s < end; s++) {
+    const e = slots.entry[s];
+    if (slots.pulse[s] === 0) chain.restart();
+    gain += interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]) - running.low[s];
+    gain += interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]) - running.high[s];
+  }
+  return gain;
+}
+
+/** START hold of one controller alone. */
+export function holdAlone(hold: number, a: Signature, sampling: Sampling): number {
+  const habit = a.habits[HOLD_START];
+  return habit === null || hold !== hold ? 0 : single(hold, habit, sampling.variance);
+}
+
+/**
+ * START hold of two: SDA falls with whoever is first, SCL with the first hold to run out. The lag between the two is taken as
+ * uniform, half the time over the whole hold, half over its first third; who is first is even.
+ */
+export function holdTogether(hold: number, a: Signature, b: Signature, sampling: Sampling): number {
+  const x = a.habits[HOLD_START];
+  const y = b.habits[HOLD_START];
+  if (x === null || y === null || hold !== hold) return 0;
+  return Math.log(0.5) + logAdd(holdAfter(hold, x, y, sampling), holdAfter(hold, y, x, sampling));
+}
+
+function holdAfter(hold: number, first: HabitFigure, second: HabitFigure, sampling: Sampling): number {
+  const full = single(hold, first, sampling.variance);
+  if (second.mean >= first.mean) return full;
+  const room = first.mean - second.mean;
+  const sd = Math.sqrt(first.jitter + 2 * sampling.variance);
+  const inside = hold > second.mean - 2 * sd && hold < first.mean + 2 * sd ? 1 : 0;
+  let out = Number.NEGATIVE_INFINITY;
+  for (const reach of [first.mean, first.mean / 3]) {
+    const squeezed = Math.min(1, room / reach);
+    const density = inside * (squeezed / Math.min(room, reach));
+    const whole = logAdd(Math.log(1 - squeezed + 1e-9) + full, Math.log(density + 1e-12 / first.mean));
+    out = logAdd(out, Math.log(0.5) + whole);
+  }
+  return out;
+}

@@ -1,0 +1,156 @@
+// In: the weighed messages of a capture. Out: probabilities, with the rates that the capture itself shows: how often contests
+// happen, what each controller does after losing, how often it tries again. Expectation-maximisation (Dempster, Laird, Rubin, 1977).
+
+import { logAdd } from "./normal";
+import type { Habitual, RetryRates } from "./retry";
+import type { Option, Scales, Weighed } from "./weigh";
+
+/** Before the capture has spoken: one message in a hundred, worth 20 messages of evidence. */
+const PRIOR_CONTEST = 0.01;
+const PRIOR_WEIGHT = 20;
+/** Lows longer by one amount over many bits: rare, and then usually a target's own manner. */
+const PRIOR_SLOWED = 0.004;
+const ROUNDS = 3;
+
+export interface Rates extends RetryRates {
+  contest: number;
+  /** Per controller: how likely it leaves at once, at the eighth, at the ninth pulse. */
+  readonly modes: number[][];
+  readonly share: number[];
+}
+
+export interface Judged {
+  readonly message: number;
+  /** Probability that more than one controller drove. */
+  readonly probability: number;
+  readonly tie: number;
+  readonly slowed: number;
+  /** Controller most probable if there was no contest. */
+  readonly alone: number;
+  /** Given a contest with a yield: best pair and its share, best slot and its share. */
+  readonly best: Option | null;
+  readonly pairShare: number;
+  readonly slotShare: number;
+  readonly logAlone: number;
+}
+
+export function judge(scales: Scales, habitual: Habitual, odd: readonly number[], total: number, share: readonly number[]): { judged: Judged[]; rates: Rates } {
+  const kinds = scales.signatures.length;
+  const rates: Rates = {
+    contest: PRIOR_CONTEST,
+    again: 0.7,
+    prompt: 0.7,
+    modes: Array.from({ length: kinds }, () => [0.5, 0.15, 0.35]),
+    share: [...share],
+  };
+  let judged: Judged[] = [];
+  const weighed = odd.map((m) => scales.weigh(m, habitual, rates));
+  for (let round = 0; round < ROUNDS; round++) {
+    judged = weighed.map((w) => conclude(w, rates));
+    learnRates(weighed, judged, rates, total);
+  }
+  return { judged, rates };
+}
+
+function pairLog(rates: Rates, a: number, b: number): number {
+  let sum = 0;
+  for (let x = 0; x < rates.share.length; x++) for (let y = 0; y < rates.share.length; y++) if (x !== y) sum += rates.share[x] * rates.share[y];
+  return Math.log((rates.share[a] * rates.share[b]) / sum);
+}
+
+function optionLog(option: Option, rates: Rates): number {
+  const mode = option.at < 0 ? 0 : Math.log(rates.modes[option.b][option.mode]);
+  // A tie is counted for both orders.
+  return Math.log(rates.contest) + pairLog(rates, option.a, option.b) + mode + option.log;
+}
+
+function conclude(weighed: Weighed, rates: Rates): Judged {
+  let alone = 0;
+  let logAlone = Number.NEGATIVE_INFINITY;
+  let none = Number.NEGATIVE_INFINITY;
+  weighed.alone.forEach((log, c) => {
+    const full = log + Math.log(rates.share[c]);
+    none = logAdd(none, full);
+    if (full > logAlone) {
+      logAlone = full;
+      alone = c;
+    }
+  });
+  const slowed = weighed.slowed + Math.log(PRIOR_SLOWED);
+  let yields = Number.NEGATIVE_INFINITY;
+  let tie = Number.NEGATIVE_INFINITY;
+  const pairs = new Map<number, number>();
+  const slots = new Map<number, number>();
+  let best: Option | null = null;
+  let bestLog = Number.NEGATIVE_INFINITY;
+  for (const option of weighed.options) {
+    const log = optionLog(option, rates);
+    if (option.at < 0) {
+      tie = logAdd(tie, log);
+      continue;
+    }
+    yields = logAdd(yields, log);
+    const pair = option.a * 64 + option.b;
+    pairs.set(pair, logAdd(pairs.get(pair) ?? Number.NEGATIVE_INFINITY, log));
+    slots.set(option.at, logAdd(slots.get(option.at) ?? Number.NEGATIVE_INFINITY, log));
+    if (log > bestLog) {
+      bestLog = log;
+      best = option;
+    }
+  }
+  const all = logAdd(logAdd(none, slowed), logAdd(yields, tie));
+  const chosen = best === null ? null : pick(weighed.options, pairs, slots, best, rates);
+  const shareOf = (log: number | undefined): number => (log === undefined ? 0 : Math.exp(log - yields));
+  return {
+    message: weighed.message,
+    probability: Math.exp(yields - all),
+    tie: Math.exp(tie - all),
+    slowed: Math.exp(slowed - all),
+    alone,
+    best: chosen,
+    pairShare: chosen === null ? 0 : shareOf(pairs.get(chosen.a * 64 + chosen.b)),
+    slotShare: chosen === null ? 0 : shareOf(slots.get(chosen.at)),
+    logAlone,
+  };
+}
+
+/** Most probable pair, then most probable slot within it, then most probable mode. */
+function pick(options: readonly Option[], pairs: Map<number, number>, slots: Map<number, number>, fallback: Option, rates: Rates): Option {
+  const top = (map: Map<number, number>): number => [...map].reduce((x, y) => (y[1] > x[1] ? y : x))[0];
+  const pair = top(pairs);
+  const within = new Map<number, number>();
+  for (const o of options) {
+    if (o.at < 0 || o.a * 64 + o.b !== pair) continue;
+    within.set(o.at, logAdd(within.get(o.at) ?? Number.NEGATIVE_INFINITY, optionLog(o, rates)));
+  }
+  const slot = within.size > 0 ? top(within) : top(slots);
+  let best = fallback;
+  let bestLog = Number.NEGATIVE_INFINITY;
+  for (const o of options) {
+    if (o.at !== slot || o.a * 64 + o.b !== pair) continue;
+    const log = optionLog(o, rates);
+    if (log > bestLog) {
+      bestLog = log;
+      best = o;
+    }
+  }
+  return best;
+}
+
+function learnRates(weighed: readonly Weighed[], judged: readonly Judged[], rates: Rates, total: number): void {
+  let contests = 0;
+  const modes = rates.modes.map(() => [1, 0.3, 0.7]);
+  weighed.forEach((w, i) => {
+    const p = judged[i].probability;
+    contests += p;
+    if (p < 0.05) return;
+    let sum = Number.NEGATIVE_INFINITY;
+    for (const o of w.options) if (o.at >= 0) sum = logAdd(sum, optionLog(o, rates));
+    for (const o of w.options) if (o.at >= 0) modes[o.b][o.mode] += p * Math.exp(optionLog(o, rates) - sum);
+  });
+  rates.contest = Math.min(0.5, (contests + PRIOR_CONTEST * PRIOR_WEIGHT) / (total + PRIOR_WEIGHT));
+  modes.forEach((m, b) => {
+    const s = m[0] + m[1] + m[2];
+    for (let k = 0; k < 3; k++) rates.modes[b][k] = m[k] / s;
+  });
+}

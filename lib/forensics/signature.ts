@@ -1,0 +1,157 @@
+// In: the messages of one controller. Out: its signature: for every habit a mean, its own jitter apart from the sampling
+// error, and how often it is broken (stretching, pauses, noise).
+
+import { type Ledger, VALUE } from "./ledger";
+import {
+  DATA_FALL,
+  DATA_RISE,
+  HABITS,
+  HIGH_IN,
+  HIGH_NINTH,
+  HOLD_SR,
+  HOLD_START,
+  LOW_FIRST,
+  LOW_IN,
+  LOW_NEXT,
+  LOW_NINTH,
+  LOW_SR,
+  LOW_STOP,
+  type Messages,
+  newSlots,
+  readMessage,
+  SETUP_SR,
+} from "./message";
+import { quantile } from "./normal";
+
+export interface HabitFigure {
+  readonly mean: number;
+  /** Variance of the controller's own timer, sampling error taken out, the error of `mean` put in. */
+  readonly jitter: number;
+  /** Share of occurrences that do not follow the habit. */
+  readonly broken: number;
+  readonly count: number;
+}
+
+export interface LevelFigure {
+  readonly mean: number;
+  readonly variance: number;
+  readonly count: number;
+}
+
+export interface Signature {
+  /** By habit; null where the capture does not show it. */
+  readonly habits: readonly (HabitFigure | null)[];
+  readonly sdaLow: LevelFigure | null;
+  readonly sclLow: LevelFigure | null;
+  readonly messages: number;
+}
+
+/** What the instrument adds to an instant, ticks. */
+export interface Sampling {
+  readonly step: number;
+  /** Variance of one instant. */
+  readonly variance: number;
+}
+
+const ENOUGH = 400;
+const LOOK = 200;
+
+export function learn(ledger: Ledger, messages: Messages, members: readonly number[], sampling: Sampling): Signature {
+  const values: number[][] = Array.from({ length: HABITS }, () => []);
+  const sda: number[] = [];
+  const scl: number[] = [];
+  const slots = newSlots();
+  const stride = Math.max(1, Math.floor(members.length / 120));
+  for (let i = 0; i < members.length; i += stride) {
+    const m = members[i];
+    readMessage(ledger, messages, m, slots, LOOK);
+    for (let t = messages.first[m]; t < messages.first[m + 1]; t++) {
+      const hold = ledger.hold[t];
+      if (hold === hold) values[t === messages.first[m] ? HOLD_START : HOLD_SR].push(hold);
+    }
+    for (let s = 0; s < slots.length; s++) {
+      const e = slots.entry[s];
+      add(values[slots.lowHabit[s]], ledger.low[e]);
+      add(values[slots.highHabit[s]], ledger.high[e]);
+      if (slots.dataHabit[s] !== 0) add(values[slots.dataHabit[s]], ledger.first[e]);
+      if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
+      if (slots.bus[s] === 0 && (ledger.what[e] & VALUE) === 0) add(sda, ledger.sdaLevel[e]);
+      if (slots.lowHabit[s] === LOW_IN) add(scl, ledger.sclLevel[e]);
+    }
+  }
+  const base = figure(values[LOW_IN], sampling, false, null);
+  const habits = values.map((list, habit) => {
+    if (habit === LOW_IN) return base;
+    const lengthens = habit === LOW_NINTH || habit === LOW_NEXT || habit === LOW_FIRST || habit === LOW_SR || habit === LOW_STOP;
+    return figure(list, sampling, lengthens, base);
+  });
+  return { habits: filled(habits), sdaLow: level(sda), sclLow: level(scl), messages: members.length };
+}
+
+function add(list: number[], x: number): void {
+  if (x === x && list.length < ENOUGH) list.push(x);
+}
+
+/** A habit that the capture does not show is taken from its nearest kin, more loosely. */
+function filled(habits: readonly (HabitFigure | null)[]): (HabitFigure | null)[] {
+  const out = [...habits];
+  const borrow = (to: number, from: number): void => {
+    const kin = out[from];
+    if (out[to] !== null || kin === null) return;
+    out[to] = { mean: kin.mean, jitter: kin.jitter + (0.02 * kin.mean) ** 2, broken: 0.2, count: 0 };
+  };
+  for (const low of [LOW_FIRST, LOW_NINTH, LOW_NEXT, LOW_SR, LOW_STOP]) borrow(low, LOW_IN);
+  borrow(HIGH_NINTH, HIGH_IN);
+  borrow(HOLD_SR, HOLD_START);
+  borrow(SETUP_SR, HIGH_IN);
+  borrow(DATA_FALL, DATA_RISE);
+  return out;
+}
+
+/** `lengthens`: others may only lengthen it, so the habit is the lowest crowd, not the middle. */
+function figure(list: readonly number[], sampling: Sampling, lengthens: boolean, kin: HabitFigure | null): HabitFigure | null {
+  if (list.length === 0) return null;
+  const sorted = Float64Array.from(list).sort();
+  const half = (quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2;
+  const middle = quantile(sorted, 0.5);
+  const own = kin === null ? 0 : Math.sqrt(kin.jitter + 2 * sampling.variance);
+  const centre = lengthens ? lowestCrowd(sorted, Math.max(2.2 * sampling.step, 5 * own, 0.002 * middle)) : middle;
+  const reach = Math.max(1.3 * sampling.step, 4 * (lengthens ? own : Math.min(half, 0.15 * middle)), 0.001 * middle);
+  let n = 0;
+  let sum = 0;
+  let square = 0;
+  for (const x of sorted) {
+    const d = x - centre;
+    if (Math.abs(d) > reach) continue;
+    n++;
+    sum += d;
+    square += d * d;
+  }
+  const mean = centre + sum / n;
+  const variance = n > 1 ? Math.max(0, (square - (sum * sum) / n) / (n - 1)) : 0;
+  const floor = Math.max(0.01 * sampling.step * sampling.step, (1e-4 * mean) ** 2);
+  let jitter = Math.max(variance - 2 * sampling.variance, floor);
+  if (kin !== null && n < 6) jitter = Math.max(jitter, kin.jitter);
+  jitter += (jitter + 2 * sampling.variance) / n;
+  return { mean, jitter, broken: (list.length - n + 0.5) / (list.length + 1), count: n };
+}
+
+/** Middle of the lowest window that holds a fair share of the values. */
+function lowestCrowd(sorted: Float64Array, width: number): number {
+  const n = sorted.length;
+  const fair = Math.max(1, Math.min(8, Math.ceil(0.12 * n)));
+  for (let i = 0; i + fair <= n; i++) {
+    if (sorted[i + fair - 1] - sorted[i] > width) continue;
+    let j = i + fair;
+    while (j < n && sorted[j] - sorted[i] <= width) j++;
+    return quantile(sorted.subarray(i, j), 0.5);
+  }
+  return quantile(sorted, 0.5);
+}
+
+function level(list: readonly number[]): LevelFigure | null {
+  if (list.length < 3) return null;
+  const sorted = Float64Array.from(list).sort();
+  const half = Math.max((quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2, 5e-4);
+  return { mean: quantile(sorted, 0.5), variance: half * half, count: list.length };
+}

@@ -1,0 +1,128 @@
+// In: what some controllers themselves drove. Out: who took part in each message and where each let go of SDA although it had
+// not finished: certain, whatever the bus shows. UM10204 3.1.8: it puts a 1 and sees a 0 while SCL is high.
+
+import { CUT, type EdgeBlock, SCL, SDA } from "../engine/samples/edges";
+import type { Ledger } from "./ledger";
+import { BUS_STOP, type Messages, newSlots, readMessage, type Slots } from "./message";
+
+/** Levels of one tap over time: bit set = released. */
+export class TapTrace {
+  private ticks = new Float64Array(1024);
+  private lines = new Uint8Array(1024);
+  private count = 0;
+
+  constructor(
+    readonly label: string,
+    readonly hasScl: boolean,
+    readonly hasSda: boolean,
+  ) {}
+
+  push(block: EdgeBlock): void {
+    if (this.count + block.length > this.ticks.length) {
+      const room = Math.max(this.count + block.length, 2 * this.ticks.length);
+      const ticks = new Float64Array(room);
+      const lines = new Uint8Array(room);
+      ticks.set(this.ticks.subarray(0, this.count));
+      lines.set(this.lines.subarray(0, this.count));
+      this.ticks = ticks;
+      this.lines = lines;
+    }
+    this.ticks.set(block.ticks.subarray(0, block.length), this.count);
+    for (let i = 0; i < block.length; i++) this.lines[this.count + i] = block.lines[i] & ~CUT;
+    this.count += block.length;
+  }
+
+  get used(): boolean {
+    return this.count > 0;
+  }
+
+  /** Index of the last change at or before `tick`, -1 before the first. */
+  private at(tick: number): number {
+    let low = 0;
+    let high = this.count;
+    while (low < high) {
+      const middle = (low + high) >> 1;
+      if (this.ticks[middle] <= tick) low = middle + 1;
+      else high = middle;
+    }
+    return low - 1;
+  }
+
+  pulls(line: typeof SCL | typeof SDA, tick: number): boolean {
+    const i = this.at(tick);
+    return i >= 0 && (this.lines[i] & line) === 0;
+  }
+
+  /** Whether it pulled the line at any moment of a span. */
+  pulledWithin(line: typeof SCL | typeof SDA, from: number, to: number): boolean {
+    let i = this.at(from);
+    if (i < 0) i = 0;
+    for (; i < this.count && this.ticks[i] <= to; i++) if ((this.lines[i] & line) === 0) return true;
+    return false;
+  }
+}
+
+export interface TapLoss {
+  readonly message: number;
+  readonly tap: number;
+  readonly slot: number;
+}
+
+export interface TapFindings {
+  /** Tap that was in the message to its end (index), or -1. */
+  readonly owner: Int16Array;
+  /** 1: every controller that drove there is tapped or nothing untapped drove (all of START seen on taps). */
+  readonly joined: Uint8Array;
+  readonly losses: readonly TapLoss[];
+}
+
+export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapTrace[], step: number): TapFindings {
+  const owner = new Int16Array(messages.count).fill(-1);
+  const joined = new Uint8Array(messages.count);
+  const losses: TapLoss[] = [];
+  const slots = newSlots();
+  for (let m = 0; m < messages.count; m++) {
+    const t = messages.first[m];
+    const start = ledger.openTick[t];
+    const hold = ledger.hold[t];
+    if (hold !== hold) continue;
+    readMessage(ledger, messages, m, slots, 4096);
+    const entrants: number[] = [];
+    taps.forEach((tap, i) => {
+      // It pulls SDA when SCL first falls, and pulls SCL in the low that follows: a controller that took part in the START.
+      const sda = !tap.hasSda || tap.pulls(SDA, start + hold - step / 2);
+      const scl = !tap.hasScl || tap.pulledWithin(SCL, start + hold - step, start + hold + (ledger.low[ledger.openEntry[t] + 1] || 0) / 2);
+      if (tap.used && sda && scl && (tap.hasSda || tap.hasScl)) entrants.push(i);
+    });
+    joined[m] = entrants.length;
+    for (const i of entrants) {
+      const slot = lossSlot(ledger, slots, taps[i], step);
+      if (slot < 0) owner[m] = i;
+      else losses.push({ message: m, tap: i, slot });
+    }
+  }
+  return { owner, joined, losses };
+}
+
+/** First slot of its own in which the tap lets SDA go while the bus is low; -1 if it drove everything that was driven. */
+function lossSlot(ledger: Ledger, slots: Slots, tap: TapTrace, step: number): number {
+  let at = 0;
+  let transaction = -1;
+  for (let s = 0; s < slots.length; s++) {
+    const t = slots.transaction[s];
+    if (t !== transaction) {
+      transaction = t;
+      at = ledger.openTick[t] + (ledger.hold[t] || 0);
+    }
+    const e = slots.entry[s];
+    const rise = at + ledger.low[e];
+    const high = ledger.high[e] || 0;
+    const middle = rise + Math.min(high / 2, Math.max(high - 2 * step, 0));
+    if (slots.own[s] === 1 && tap.hasSda) {
+      if (slots.bus[s] === 0 && !tap.pulls(SDA, middle)) return s;
+      if (slots.bus[s] === BUS_STOP && !tap.pulls(SDA, rise)) return s;
+    } else if (!tap.hasSda && !tap.pulledWithin(SCL, at, rise)) return Math.max(0, s - 1);
+    at = rise + high;
+  }
+  return -1;
+}

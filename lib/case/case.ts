@@ -34,7 +34,7 @@ function text(limit: number) {
 function line(limit: number) {
   return z
     .string()
-    .transform((value) => value.replace(/\p{Cc}+/gu, " ").trim())
+    .transform((value) => value.replace(/[\p{Cc}\s]+/gu, " ").trim())
     .pipe(z.string().min(1, "must not be empty").max(limit, `at most ${limit} characters`));
 }
 

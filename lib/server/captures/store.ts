@@ -64,7 +64,7 @@ export class Store {
       return await question();
     } catch (error) {
       if (error instanceof Refusal) throw error;
-      console.error(`storage failed to ${what}`, error);
+      console.error(`storage failed to ${what}: ${error instanceof Error ? `${error.name}: ${error.message}` : String(error)}`);
       throw new Refusal("storage-failed", { detail: what });
     }
   }

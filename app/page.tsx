@@ -1,11 +1,24 @@
-import { Header } from "@/components/header/Header";
+import Link from "next/link";
+import { Masthead } from "@/components/account/Masthead";
+import { FrontDoor } from "@/components/bench/FrontDoor";
+import { pageViewer } from "@/lib/server/access/page";
+import { nameplate } from "@/lib/server/access/viewer";
 
-export default function FrontDoor() {
+export default async function FrontPage() {
+  const viewer = await pageViewer();
   return (
     <>
-      <Header />
-      <main className="mx-auto max-w-[90rem] px-4 py-8 sm:px-10">
-        <h1 className="text-head">A capture of a two-wire bus, read and proved</h1>
+      <Masthead person={nameplate(viewer)} />
+      <main>
+        <FrontDoor
+          keep={
+            viewer.kind === "member" ? (
+              <Link href="/cases/new">keep it in a case</Link>
+            ) : (
+              <Link href="/sign-in">sign in to keep it</Link>
+            )
+          }
+        />
       </main>
     </>
   );

@@ -24,6 +24,8 @@ export interface StackProps {
   /** Zooming over a trace, factor and pixel from START. */
   onZoom: (factor: number, at: number) => void;
   onShift: (pixels: number) => void;
+  /** First and last transaction in view, after the page came to rest there. */
+  onView: (first: number, last: number) => void;
   names: ReadonlyMap<number, string>;
   notes: readonly BenchNote[];
   tags: readonly BenchTag[];
@@ -171,6 +173,14 @@ export function Stack(props: StackProps) {
     element.addEventListener("wheel", onWheel, { passive: false });
     return () => element.removeEventListener("wheel", onWheel);
   }, [onZoom, onShift]);
+
+  const seen = rowSpan(extent, position, 0);
+  const firstSeen = seen.first < seen.end ? (rows ? rows[seen.first] : seen.first) : -1;
+  const lastSeen = seen.first < seen.end ? (rows ? rows[seen.end - 1] : seen.end - 1) : -1;
+  const { onView } = props;
+  useEffect(() => {
+    if (firstSeen >= 0) onView(firstSeen, lastSeen);
+  }, [firstSeen, lastSeen, onView]);
 
   const span = rowSpan(extent, position, SPARE);
   const digits = Math.min(7, timeDigits(capture.head.timebase, capture.head.sampleTicks));

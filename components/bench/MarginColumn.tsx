@@ -1,0 +1,41 @@
+"use client";
+
+import type { RefObject } from "react";
+import { ContestPart } from "@/components/margin/ContestPart";
+import { FindingPart } from "@/components/margin/FindingPart";
+import { Notes } from "@/components/margin/Notes";
+import { TagsPart } from "@/components/margin/TagsPart";
+import { TransactionPart } from "@/components/margin/TransactionPart";
+import type { Capture } from "@/lib/view/capture";
+import type { BenchCase } from "./annotations";
+import { BusPart } from "./BusPart";
+
+export interface MarginColumnProps {
+  capture: Capture;
+  of: BenchCase;
+  selected: number | null;
+  names: ReadonlyMap<number, string>;
+  onGo: (transaction: number) => void;
+  onTag: (kind: string) => void;
+  onAddress: (address: number) => void;
+  noteField: RefObject<HTMLTextAreaElement | null>;
+}
+
+/** What stands beside the trace: the contest and its evidence, the selected transaction, tags, notes, finding. */
+export function MarginColumn({ capture, of, selected, names, onGo, onTag, onAddress, noteField }: MarginColumnProps) {
+  const { summary, marks, ledger } = capture;
+  const index = selected !== null && selected < ledger.length ? selected : null;
+  const own = index === null ? null : marks.of(index);
+  const contest = own?.contest ?? (own && own.retryOf !== null ? marks.of(own.retryOf).contest : null);
+  const device = index === null ? null : (names.get(ledger.row(index).address) ?? null);
+  return (
+    <div className="space-y-6">
+      {summary && contest && <ContestPart contest={contest} summary={summary} onGo={onGo} />}
+      {index !== null && <TransactionPart capture={capture} index={index} device={device} />}
+      <TagsPart of={of} selected={index} onTag={onTag} />
+      <Notes of={of} selected={index} onGo={onGo} field={noteField} />
+      <FindingPart of={of} onGo={onGo} />
+      {index === null && <BusPart capture={capture} names={names} onAddress={onAddress} />}
+    </div>
+  );
+}

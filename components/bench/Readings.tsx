@@ -1,0 +1,194 @@
+"use client";
+
+import { type RefObject, useCallback, useMemo, useState } from "react";
+import { Faults } from "@/components/ledger/Faults";
+import { Filters } from "@/components/ledger/Filters";
+import { Limits } from "@/components/ledger/Limits";
+import { ScaleBar } from "@/components/ledger/ScaleBar";
+import { Search } from "@/components/ledger/Search";
+import { Stack } from "@/components/stack/Stack";
+import { StripTrace } from "@/components/strip/StripTrace";
+import { wordClass } from "@/components/ui/Tabs";
+import { type Capture, longest, usualScale } from "@/lib/view/capture";
+import { addressesSeen, SHOWS, type Show } from "@/lib/view/filter";
+import { count } from "@/lib/view/format";
+import { transactionNear } from "@/lib/view/hit";
+import { READINGS, type Reading, type ViewState } from "@/lib/view/state";
+import type { BenchCase } from "./annotations";
+
+export interface ReadingsProps {
+  capture: Capture;
+  version: unknown;
+  state: ViewState;
+  onState: (change: Partial<ViewState>) => void;
+  onGo: (transaction: number) => void;
+  rows: Uint32Array | null;
+  of: BenchCase;
+  tagged: readonly number[];
+  names: ReadonlyMap<number, string>;
+  searchField: RefObject<HTMLInputElement | null>;
+  onView: (first: number, last: number) => void;
+}
+
+const READING_WORDS: Record<Reading, string> = { stack: "Stack", strip: "Strip", limits: "Limits", faults: "Faults" };
+
+function ReadingWords({
+  reading,
+  onReading,
+  capture,
+}: {
+  reading: Reading;
+  onReading: (reading: Reading) => void;
+  capture: Capture;
+}) {
+  const faults = capture.summary?.faults.length ?? 0;
+  const broken = (capture.summary?.measurements ?? []).filter((row) => row.below + row.above > 0).length;
+  return (
+    <nav aria-label="Readings" className="screen-only flex gap-x-6 font-serif text-[1.125rem]">
+      {READINGS.filter((entry) => capture.summary || entry === "stack" || entry === "strip").map((entry) => (
+        <button key={entry} type="button" aria-pressed={reading === entry} onClick={() => onReading(entry)} className={wordClass}>
+          {READING_WORDS[entry]}
+          {entry === "faults" && faults > 0 && <span className="tabular ml-1.5 text-[0.75rem]">{count(faults)}</span>}
+          {entry === "limits" && broken > 0 && <span className="tabular ml-1.5 text-[0.75rem] text-broken">{count(broken)}</span>}
+        </button>
+      ))}
+    </nav>
+  );
+}
+
+/** The readings of one capture: the stack, the strip, the limits and the faults; the selection is shared. */
+export function Readings(props: ReadingsProps) {
+  const { capture, state, onState, onGo, version } = props;
+  return (
+    <>
+      <ReadingWords reading={state.reading} onReading={(reading) => onState({ reading })} capture={capture} />
+      {state.reading === "stack" && <StackReading {...props} />}
+      {state.reading === "strip" && (
+        <div className="screen-only mt-3">
+          <StripTrace
+            capture={capture}
+            version={version}
+            span={state.strip}
+            onSpan={(strip) => onState({ strip })}
+            selected={state.selected}
+            onSelectAt={(tick) => {
+              const near = transactionNear(capture.ledger, tick);
+              if (near !== null) onState({ selected: near });
+            }}
+          />
+        </div>
+      )}
+      {state.reading === "limits" && capture.summary && (
+        <div className="screen-only mt-3">
+          <Limits summary={capture.summary} onGo={onGo} />
+        </div>
+      )}
+      {state.reading === "faults" && capture.summary && (
+        <div className="screen-only">
+          <Faults summary={capture.summary} capture={capture} onGo={onGo} />
+        </div>
+      )}
+    </>
+  );
+}
+
+function StackReading({ capture, version, state, onState, rows, of, tagged, names, searchField, onView }: ReadingsProps) {
+  const [traceWidth, setTraceWidth] = useState(600);
+  const [shift, setShift] = useState(0);
+  const concluded = capture.summary !== null;
+  const begun = capture.ledger.length > 0;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: fitted when the first rows are there and once more when all are
+  const usual = useMemo(() => usualScale(capture.ledger, traceWidth), [capture, traceWidth, concluded, begun]);
+  // biome-ignore lint/correctness/useExhaustiveDependencies: as above
+  const most = useMemo(() => longest(capture.ledger), [capture, concluded, begun]);
+  const scale = state.stackScale ?? usual;
+
+  const zoom = useCallback(
+    (factor: number, at: number) => {
+      const next = Math.min(Math.max(1, most / 60), Math.max(1 / 50, scale * factor));
+      setShift((now) => Math.max(0, ((now + at - 14) * scale) / next - (at - 14)));
+      onState({ stackScale: next });
+    },
+    [scale, most, onState],
+  );
+  const move = useCallback(
+    (pixels: number) => setShift((now) => Math.max(0, Math.min(Math.max(0, most / scale - traceWidth + 60), now + pixels))),
+    [most, scale, traceWidth],
+  );
+
+  const counts: Record<Show, number> = {
+    all: capture.ledger.length,
+    contested: capture.marks.contested.length,
+    stretched: capture.marks.stretched.length,
+    "no-answer": capture.marks.unanswered.length,
+    "outside-limits": capture.marks.outside.length,
+    faulty: capture.marks.faulty.length,
+    tagged: tagged.length,
+  };
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place; while it does the list is not needed
+  const addresses = useMemo(() => addressesSeen(capture.ledger), [capture, concluded]);
+  const empty = rows !== null && rows.length === 0;
+  return (
+    <>
+      <div className="screen-only mt-2 flex flex-wrap items-baseline justify-between gap-x-8 gap-y-1.5">
+        <Filters
+          filter={state.filter}
+          onFilter={(filter) => onState({ filter })}
+          counts={counts}
+          tagging={SHOWS.length > 0 && (of.addTag !== undefined || tagged.length > 0)}
+        />
+        <ScaleBar
+          ticksPerPixel={scale}
+          timebase={capture.head.timebase}
+          onZoom={(factor) => zoom(factor, 14)}
+          onFit={() => {
+            setShift(0);
+            onState({ stackScale: null });
+          }}
+        />
+      </div>
+      <div className="screen-only mb-2 mt-1.5">
+        <Search
+          filter={state.filter}
+          onFilter={(filter) => onState({ filter })}
+          addresses={addresses}
+          names={names}
+          input={searchField}
+          remaining={rows === null ? null : rows.length}
+        />
+      </div>
+      {empty ? (
+        <p className="screen-only border-t border-ink py-6 font-serif text-body text-quiet">
+          No transaction of this capture is such.
+        </p>
+      ) : (
+        <Stack
+          capture={capture}
+          version={version}
+          rows={rows}
+          selected={state.selected}
+          onSelect={(selected) => onState({ selected })}
+          onOpen={(index) => onState(spanAround(capture, index))}
+          ticksPerPixel={scale}
+          shift={shift}
+          onTraceWidth={setTraceWidth}
+          onZoom={zoom}
+          onShift={move}
+          onView={onView}
+          names={names}
+          notes={of.notes}
+          tags={of.tags}
+          tagKinds={of.tagKinds}
+        />
+      )}
+    </>
+  );
+}
+
+/** The strip at one transaction with a little before and after. */
+export function spanAround(capture: Capture, index: number): Partial<ViewState> {
+  const from = capture.ledger.startTick(index);
+  const to = capture.ledger.endTick(index);
+  const margin = Math.max(1, (to - from) * 0.12);
+  return { reading: "strip", strip: { from: from - margin, to: to + margin }, selected: index };
+}

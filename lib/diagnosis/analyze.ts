@@ -12,7 +12,7 @@ import type { AnalysisListener, AnalysisOutcome, AnalysisSettings } from "./anal
 import { type Chosen, chosenProfile, highSpeedLimits, judgedRows, measurementsOf, triedProfiles, violationsOf } from "./judge";
 import { ledeOf } from "./lede";
 import { levelsOf } from "./levels";
-import { createForensics } from "./no-forensics";
+import { createForensics } from "../forensics/forensics";
 import { resolveProfile } from "./profile-file";
 import { REPORT_SCHEMA, type Summary } from "./report";
 import { RuleBook } from "./rulebook";

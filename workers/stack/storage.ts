@@ -42,6 +42,8 @@ export async function startStorage(wish: StorageWish): Promise<Storage> {
   const server = http.createServer((request, response) => void answer(request, response, wish, disk, faults));
   // A part may take long on a slow line.
   server.requestTimeout = 0;
+  // But not stand still: S3 gives up an idle connection after about 20 seconds too.
+  server.timeout = 20_000;
   server.keepAliveTimeout = 30_000;
   await listen(server, wish.port);
   return {

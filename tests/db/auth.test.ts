@@ -180,6 +180,13 @@ describe("the length of a session", () => {
     expect(await daysLeft(email)).toBeCloseTo(30, 1);
   });
 
+  it("leaves no row behind for ever", async () => {
+    const { email } = await newcomer();
+    await setDays(email, -1);
+    await newcomer();
+    expect(await daysLeft(email)).toBeUndefined();
+  });
+
   it("ends for good", async () => {
     const { browser, email } = await newcomer();
     await setDays(email, -1);

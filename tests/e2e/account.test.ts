@@ -53,7 +53,8 @@ test("a form names each wrong field, goes to the first, and keeps what was typed
   await expectAccessible(page);
 });
 
-test("a lead invites, changes a role and removes; the other follows along", async ({ page, browser }) => {
+test("a lead invites, changes a role and removes; the other follows along", async ({ page, browser, complaints }) => {
+  complaints.expectComplaint("/team/audit");
   await foundTeam(page, "Outflow works");
   const email = address("tor");
   const link = await invite(page, email, "technician");

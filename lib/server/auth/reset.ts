@@ -17,7 +17,7 @@ export async function askReset(em: EntityManager, email: string): Promise<Letter
   const token = newToken();
   // Only the newest link works: a person who asks twice reads the second mail.
   await em.transactional(async (tx) => {
-    await tx.nativeDelete(Reset, { user: user.id });
+    await tx.nativeDelete(Reset, { $or: [{ user: user.id }, { expiresAt: { $lte: new Date() } }] });
     tx.create(Reset, { tokenHash: hashToken(token), user, expiresAt: new Date(Date.now() + lifeMinutes * 60_000) });
   });
   return resetLetter(user, token, lifeMinutes);

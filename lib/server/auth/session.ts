@@ -6,6 +6,8 @@ import { lucia } from "./lucia";
 /** Signs a person in on this browser, working in `team`. A session the browser had before ends. */
 export async function startSession(user: string, team: string | null, caller: Caller): Promise<Cookie> {
   await endRow(caller);
+  // Rows of cookies that never came back; an indexed delete, and sign-ins are rare.
+  await lucia().deleteExpiredSessions();
   const session = await lucia().createSession(user, { team, agent: caller.agent });
   return lucia().createSessionCookie(session.id);
 }

@@ -3,12 +3,16 @@
 import type { ByteSource, Host } from "../lib/engine/bytes/source";
 
 export const host: Host = {
-  inflate: (chunks) => inflate(chunks),
+  inflate: (chunks) => through(chunks, new DecompressionStream("gzip")),
+  deflate: (chunks) => through(chunks, new CompressionStream("gzip")),
 };
 
-async function* inflate(chunks: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
+async function* through(
+  chunks: AsyncIterable<Uint8Array>,
+  codec: ReadableWritablePair<Uint8Array, BufferSource>,
+): AsyncGenerator<Uint8Array> {
   const input = chunks[Symbol.asyncIterator]();
-  const compressed = new ReadableStream<BufferSource>({
+  const plain = new ReadableStream<BufferSource>({
     async pull(controller) {
       const next = await input.next();
       // A copy, because sources may reuse their read buffer for the next chunk.
@@ -19,7 +23,7 @@ async function* inflate(chunks: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8
       await input.return?.();
     },
   });
-  yield* streamed(compressed.pipeThrough(new DecompressionStream("gzip")));
+  yield* streamed(plain.pipeThrough(codec));
 }
 
 async function* streamed(stream: ReadableStream<Uint8Array>): AsyncGenerator<Uint8Array> {

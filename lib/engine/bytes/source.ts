@@ -17,4 +17,6 @@ export interface ByteSource {
 export interface Host {
   /** Decompresses one gzip stream (all its members). Rejects with an Error on corrupt or truncated data. */
   inflate(chunks: AsyncIterable<Uint8Array>): AsyncIterable<Uint8Array>;
+  /** Compresses into one gzip stream. */
+  deflate(chunks: AsyncIterable<Uint8Array>): AsyncIterable<Uint8Array>;
 }

@@ -21,8 +21,15 @@ const LOOK = 220;
 /** A squared deviation counts for no more than this: one wild interval says that it is wild, not whose it is. */
 const CAP = 20;
 
-/** Signatures from the capture itself. `known[m]` is the controller of message m where taps show it, else -1; null without taps. */
-export function takeCensus(ledger: Ledger, messages: Messages, sampling: Sampling, known: Int16Array | null, kinds: number): Census {
+/** Signatures from the capture itself. `closed`: there are no others than the known ones. `known[m]` is the controller of message m where taps show it, else -1; null without taps. */
+export function takeCensus(
+  ledger: Ledger,
+  messages: Messages,
+  sampling: Sampling,
+  known: Int16Array | null,
+  kinds: number,
+  closed = false,
+): Census {
   const list: number[] = [];
   const stride = Math.max(1, messages.count / SAMPLE);
   for (let i = 0; i < messages.count; i += stride) list.push(Math.floor(i));
@@ -31,12 +38,13 @@ export function takeCensus(ledger: Ledger, messages: Messages, sampling: Samplin
     const members = group.members.map((i) => features.messages[i]);
     return learn(ledger, messages, members, sampling);
   });
-  if (known !== null) signatures = withKnown(ledger, messages, sampling, known, kinds, signatures);
+  if (known !== null) signatures = withKnown(ledger, messages, sampling, known, kinds, closed ? [] : signatures);
   let census = attribute(ledger, messages, sampling, signatures, known);
   for (let round = 0; round < 2 && signatures.length > 0; round++) {
     signatures = signatures.map((old, c) => {
       const members: number[] = [];
-      for (let m = 0; m < messages.count; m++) if (census.by[m] === c && census.odd[m] === 0 && census.margin[m] > 3) members.push(m);
+      for (let m = 0; m < messages.count; m++)
+        if (census.by[m] === c && census.odd[m] === 0 && census.margin[m] > 3) members.push(m);
       return members.length > 0 ? learn(ledger, messages, members, sampling) : old;
     });
     census = attribute(ledger, messages, sampling, signatures, known);
@@ -71,7 +79,8 @@ function apart(a: Signature, b: Signature, sampling: Sampling): boolean {
     const x = a.habits[h];
     const y = b.habits[h];
     if (x === null || y === null || x.count === 0 || y.count === 0) return false;
-    const error = (x.jitter + 2 * sampling.variance) / x.count + (y.jitter + 2 * sampling.variance) / y.count + (4e-4 * x.mean) ** 2;
+    const error =
+      (x.jitter + 2 * sampling.variance) / x.count + (y.jitter + 2 * sampling.variance) / y.count + (4e-4 * x.mean) ** 2;
     return Math.abs(x.mean - y.mean) > 5 * Math.sqrt(error);
   });
 }
@@ -117,7 +126,7 @@ function attribute(
   const count = (gauge: Gauge, c: number, x: number, limit: number): void => {
     const z = (x - gauge.mean) * gauge.inverse;
     const square = z * z;
-    score[c] += square < CAP ? square : CAP;
+    score[c] += Math.min(square, CAP);
     if (square > limit) odds[c] = 1;
   };
   const levels = levelGauges(signatures);
@@ -128,7 +137,7 @@ function attribute(
     runLow.fill(0);
     runHigh.fill(0);
     const start = ledger.hold[messages.first[m]];
-    if (start === start) for (let c = 0; c < kinds; c++) count(hold[c], c, start, 14);
+    if (!Number.isNaN(start)) for (let c = 0; c < kinds; c++) count(hold[c], c, start, 14);
     let looked = 0;
     let lows = 0;
     let highs = 0;
@@ -147,21 +156,21 @@ function attribute(
           for (let c = 0; c < kinds; c++) {
             const z = (l - low[c].mean) * low[c].inverse;
             const square = z * z;
-            score[c] += square < CAP ? square : CAP;
+            score[c] += Math.min(square, CAP);
             runLow[c] += z;
             if (square > 12 || (lows > 2 && runLow[c] * runLow[c] > 11 * lows)) odds[c] = 1;
           }
         }
-        if (h === h && bit !== 8) {
+        if (!Number.isNaN(h) && bit !== 8) {
           highs++;
           for (let c = 0; c < kinds; c++) {
             const z = (h - high[c].mean) * high[c].inverse;
             const square = z * z;
-            score[c] += square < CAP ? square : CAP;
+            score[c] += Math.min(square, CAP);
             runHigh[c] += z;
             if (square > 12 || (highs > 2 && runHigh[c] * runHigh[c] > 11 * highs)) odds[c] = 1;
           }
-        } else if (h === h) for (let c = 0; c < kinds; c++) count(ninth[c], c, h, 14);
+        } else if (!Number.isNaN(h)) for (let c = 0; c < kinds; c++) count(ninth[c], c, h, 14);
         const own = bit > 0 && bit < 8 && (!read || p < 8);
         if (own && ledger.first[e] === ledger.last[e]) {
           const gauge = (ledger.what[e] & VALUE) === 0 ? fall : rise;
@@ -169,8 +178,9 @@ function attribute(
         }
         if (own && levels !== null && ledger.sdaLevel !== null && ledger.sclLevel !== null) {
           for (let c = 0; c < kinds; c++) {
-            if (ledger.sclLevel[e] === ledger.sclLevel[e]) count(levels.scl[c], c, ledger.sclLevel[e], 10);
-            if ((ledger.what[e] & VALUE) === 0 && ledger.sdaLevel[e] === ledger.sdaLevel[e]) count(levels.sda[c], c, ledger.sdaLevel[e], 10);
+            if (!Number.isNaN(ledger.sclLevel[e])) count(levels.scl[c], c, ledger.sclLevel[e], 10);
+            if ((ledger.what[e] & VALUE) === 0 && !Number.isNaN(ledger.sdaLevel[e]))
+              count(levels.sda[c], c, ledger.sdaLevel[e], 10);
           }
         }
         bit = bit === 8 ? 0 : bit + 1;

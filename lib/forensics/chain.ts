@@ -61,5 +61,8 @@ export function single(x: number, habit: HabitFigure, edgeVariance: number): num
   const b = Math.max(habit.broken, LEAST_BROKEN);
   const scale = Math.max(habit.mean, 4 * Math.sqrt(spread));
   const broad = b / (scale * 4);
-  return Math.log(((1 - b) * Math.exp((-d * d) / (2 * spread))) / Math.sqrt(2 * Math.PI * spread) + broad * Math.exp(-Math.abs(d) / (2 * scale)));
+  return Math.log(
+    ((1 - b) * Math.exp((-d * d) / (2 * spread))) / Math.sqrt(2 * Math.PI * spread) +
+      broad * Math.exp(-Math.abs(d) / (2 * scale)),
+  );
 }

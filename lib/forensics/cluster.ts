@@ -26,7 +26,10 @@ export function clusters(features: Features): Group[] {
   for (let i = 0; i < n; i++) {
     if (features.even[i] === 1 && features.count[F_LOW][i] >= 4 && features.count[F_HIGH][i] >= 4) usable.push(i);
   }
-  const groups = dense(features, usable).map((members) => summary(features, members));
+  // A message that does not show every figure could pass for a neighbour of two different controllers.
+  const shows = (f: number) => (i: number) => features.count[f][i] > 0;
+  const complete = usable.filter(shows(F_FALL)).filter(shows(F_RISE));
+  const groups = dense(features, 2 * complete.length >= usable.length ? complete : usable).map((members) => summary(features, members));
   return withoutMixtures(features, groups);
 }
 
@@ -44,7 +47,7 @@ function distance(features: Features, i: number, j: number): number {
   for (const f of TOLD_BY) {
     const a = features.value[f][i];
     const b = features.value[f][j];
-    if (a !== a || b !== b) continue;
+    if (Number.isNaN(a) || Number.isNaN(b)) continue;
     const s = features.spread[f];
     const g = grain(f, a);
     const variance = (s * s) / features.count[f][i] + (s * s) / features.count[f][j] + g * g;
@@ -103,7 +106,7 @@ function summary(features: Features, members: readonly number[]): Group {
     let sum = 0;
     for (const i of members) {
       const x = features.value[f][i];
-      if (x !== x) continue;
+      if (Number.isNaN(x)) continue;
       weight += features.count[f][i];
       sum += features.count[f][i] * x;
     }
@@ -115,7 +118,7 @@ function summary(features: Features, members: readonly number[]): Group {
 }
 
 function apart(features: Features, f: number, a: number, b: number, ea: number, eb: number): number {
-  if (a !== a || b !== b) return 0;
+  if (Number.isNaN(a) || Number.isNaN(b)) return 0;
   const g = grain(f, a) + 0.03 * features.spread[f];
   return (a - b) / Math.sqrt(ea * ea + eb * eb + g * g);
 }
@@ -157,7 +160,7 @@ function isMixture(features: Features, group: Group, kept: readonly Group[]): bo
       const x = kept[a];
       const y = kept[b];
       const fits = (f: number, pick: (p: number, q: number) => number): boolean => {
-        const m = x.mean[f] !== x.mean[f] || y.mean[f] !== y.mean[f] ? Number.NaN : pick(x.mean[f], y.mean[f]);
+        const m = Number.isNaN(x.mean[f]) || Number.isNaN(y.mean[f]) ? Number.NaN : pick(x.mean[f], y.mean[f]);
         const e = Math.max(x.error[f], y.error[f]) + 0.4 * features.spread[f];
         return Math.abs(apart(features, f, group.mean[f], m, group.error[f], e)) < 3.5;
       };

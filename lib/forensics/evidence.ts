@@ -18,7 +18,15 @@ export interface Naming {
   microseconds(ticks: number): string;
 }
 
-export function evidenceOf(scales: Scales, m: number, option: Option, alone: number, habitual: Habitual, rates: RetryRates, name: Naming): Evidence[] {
+export function evidenceOf(
+  scales: Scales,
+  m: number,
+  option: Option,
+  alone: number,
+  habitual: Habitual,
+  rates: RetryRates,
+  name: Naming,
+): Evidence[] {
   const { ledger, signatures, sampling } = scales;
   const slots = scales.read(m);
   const single = trace(ledger, slots, signatures[alone], sampling);
@@ -36,7 +44,8 @@ export function evidenceOf(scales: Scales, m: number, option: Option, alone: num
     level += (s < option.at ? both.sda[s] : one.sda[s]) - single.sda[s] + (contested ? both.scl[s] : one.scl[s]) - single.scl[s];
   }
   const hold = ledger.hold[scales.messages.first[m]];
-  const start = holdTogether(hold, signatures[option.a], signatures[option.b], sampling) - holdAlone(hold, signatures[alone], sampling);
+  const start =
+    holdTogether(hold, signatures[option.a], signatures[option.b], sampling) - holdAlone(hold, signatures[alone], sampling);
   const rival = habitual.rival(m, option.b, rates);
   const out: Evidence[] = [];
   const add = (kind: Evidence["kind"], nats: number, detail: string): void => {
@@ -47,22 +56,46 @@ export function evidenceOf(scales: Scales, m: number, option: Option, alone: num
   const b = name.id(option.b);
   const mean = (c: number, habit: number): string => name.microseconds(signatures[c].habits[habit]?.mean ?? Number.NaN);
   add("clock-sync", clock, clockWords(a, b, mean, option, g, slots.pulse[g]));
-  add("data-timing", data, `SDA falls ${mean(option.a, DATA_FALL)} and rises ${mean(option.a, DATA_RISE)} after SCL where ${a} drives alone; ${b}: ${mean(option.b, DATA_FALL)} and ${mean(option.b, DATA_RISE)}.`);
+  add(
+    "data-timing",
+    data,
+    `SDA falls ${mean(option.a, DATA_FALL)} and rises ${mean(option.a, DATA_RISE)} after SCL where ${a} drives alone; ${b}: ${mean(option.b, DATA_FALL)} and ${mean(option.b, DATA_RISE)}.`,
+  );
   add("low-level", level, `The low level of the lines up to the deciding bit against that of ${a} alone.`);
-  add("start", start, `SCL falls ${name.microseconds(hold)} after SDA; ${a} holds ${mean(option.a, HOLD_START)}, ${b} ${mean(option.b, HOLD_START)}.`);
+  add(
+    "start",
+    start,
+    `SCL falls ${name.microseconds(hold)} after SDA; ${a} holds ${mean(option.a, HOLD_START)}, ${b} ${mean(option.b, HOLD_START)}.`,
+  );
   if (rival.retry >= 0) {
     const gain = rival.retrySlot === option.at ? rival.retryGain : rival.elsewhereGain;
     const share = (rival.base * 100).toFixed(rival.base < 0.1 ? 1 : 0);
-    const words = rival.retrySlot === option.at ? "has 1 where this one has 0 at the deciding bit" : "parts from this one at another bit";
-    add("retry", gain, `The next message of ${b} equals this one up to there and ${words}; ${share} % of its messages would by chance.`);
+    const words =
+      rival.retrySlot === option.at ? "has 1 where this one has 0 at the deciding bit" : "parts from this one at another bit";
+    add(
+      "retry",
+      gain,
+      `The next message of ${b} equals this one up to there and ${words}; ${share} % of its messages would by chance.`,
+    );
   } else add("retry", rival.elsewhereGain, `No message of ${b} that would be its retry follows.`);
   if (visibility(signatures[option.a], scales.pair(option.a, option.b), sampling.variance) < 1) {
-    out.push({ kind: "clock-sync", bits: 0, detail: `${a} and ${b} clocking together would look like ${a} alone: no bus-only evidence could exist here.` });
+    out.push({
+      kind: "clock-sync",
+      bits: 0,
+      detail: `${a} and ${b} clocking together would look like ${a} alone: no bus-only evidence could exist here.`,
+    });
   }
   return out;
 }
 
-function clockWords(a: string, b: string, mean: (c: number, h: number) => string, option: Option, g: number, pulse: number): string {
+function clockWords(
+  a: string,
+  b: string,
+  mean: (c: number, h: number) => string,
+  option: Option,
+  g: number,
+  pulse: number,
+): string {
   const until = g === option.at ? "the deciding bit" : `pulse ${pulse}, the end of its byte`;
   return `Up to ${until} SCL is low as long as the longer of ${a} (${mean(option.a, LOW_IN)}) and ${b} (${mean(option.b, LOW_IN)}), high as short as the shorter (${mean(option.a, HIGH_IN)}, ${mean(option.b, HIGH_IN)}); after it the clock is that of ${a}.`;
 }

@@ -40,7 +40,7 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
 }
 
 function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
-  if (x !== x || habit === null) {
+  if (Number.isNaN(x) || habit === null) {
     chain.restart();
     return 0;
   }
@@ -48,12 +48,19 @@ function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
 }
 
 function levelDensity(v: number, figure: LevelFigure | null): number {
-  if (figure === null || v !== v) return 0;
+  if (figure === null || Number.isNaN(v)) return 0;
   return logAdd(Math.log(0.97) + logNormal(v, figure.mean, figure.variance), Math.log(0.03));
 }
 
 /** Fresh clock densities of the slots from `from` on, against the continuous ones: what to add to the sum over the tail. */
-export function freshGain(ledger: Ledger, slots: Slots, from: number, signature: Signature, running: Trace, sampling: Sampling): number {
+export function freshGain(
+  ledger: Ledger,
+  slots: Slots,
+  from: number,
+  signature: Signature,
+  running: Trace,
+  sampling: Sampling,
+): number {
   const chain = new Chain(sampling.variance);
   let gain = 0;
   const end = Math.min(slots.length, from + FRESH);
@@ -69,7 +76,7 @@ export function freshGain(ledger: Ledger, slots: Slots, from: number, signature:
 /** START hold of one controller alone. */
 export function holdAlone(hold: number, a: Signature, sampling: Sampling): number {
   const habit = a.habits[HOLD_START];
-  return habit === null || hold !== hold ? 0 : single(hold, habit, sampling.variance);
+  return habit === null || Number.isNaN(hold) ? 0 : single(hold, habit, sampling.variance);
 }
 
 /**
@@ -79,7 +86,7 @@ export function holdAlone(hold: number, a: Signature, sampling: Sampling): numbe
 export function holdTogether(hold: number, a: Signature, b: Signature, sampling: Sampling): number {
   const x = a.habits[HOLD_START];
   const y = b.habits[HOLD_START];
-  if (x === null || y === null || hold !== hold) return 0;
+  if (x === null || y === null || Number.isNaN(hold)) return 0;
   return Math.log(0.5) + logAdd(holdAfter(hold, x, y, sampling), holdAfter(hold, y, x, sampling));
 }
 

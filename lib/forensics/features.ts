@@ -82,16 +82,20 @@ function collect(ledger: Ledger, slots: Slots): number[][] {
     if (slots.dataHabit[s] === DATA_FALL) out[F_FALL].push(ledger.first[e]);
     else if (slots.dataHabit[s] === DATA_RISE) out[F_RISE].push(ledger.first[e]);
     if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
-    if ((ledger.what[e] & VALUE) === 0 && slots.bus[s] === 0 && ledger.sdaLevel[e] === ledger.sdaLevel[e]) {
+    if ((ledger.what[e] & VALUE) === 0 && slots.bus[s] === 0 && !Number.isNaN(ledger.sdaLevel[e])) {
       out[F_SDA_LEVEL].push(ledger.sdaLevel[e]);
     }
-    if (slots.lowHabit[s] === LOW_IN && ledger.sclLevel[e] === ledger.sclLevel[e]) out[F_SCL_LEVEL].push(ledger.sclLevel[e]);
+    if (slots.lowHabit[s] === LOW_IN && !Number.isNaN(ledger.sclLevel[e])) out[F_SCL_LEVEL].push(ledger.sclLevel[e]);
   }
   return out;
 }
 
 /** Mean of the values within `window` of the median of `head`. */
-function trimmed(list: readonly number[], head: readonly number[], window: number): { mean: number; variance: number; count: number } {
+function trimmed(
+  list: readonly number[],
+  head: readonly number[],
+  window: number,
+): { mean: number; variance: number; count: number } {
   const median = quantile(Float64Array.from(head).sort(), 0.5);
   let n = 0;
   let sum = 0;

@@ -4,8 +4,9 @@
 import type { Timebase } from "../base/time";
 import type { Contest, ControllerRow } from "../diagnosis/report";
 import { NO_ADDRESS, type TransactionBlock } from "../engine/bus/transactions";
+import type { CaptureHead, TapChoice } from "../engine/samples/reader";
 import { type Census, takeCensus } from "./census";
-import type { CreateForensics, ForensicsOutcome, RosterEntry } from "./contract";
+import type { CreateForensics, Forensics, ForensicsOptions, ForensicsOutcome, RosterEntry } from "./contract";
 import { evidenceOf, type Naming } from "./evidence";
 import { FLOOR, gradeOf } from "./grade";
 import { Ledger } from "./ledger";
@@ -18,7 +19,21 @@ import { readTaps, type TapFindings, TapTrace } from "./taps";
 import { together } from "./together";
 import { lastTogether, Scales } from "./weigh";
 
-export const createForensics: CreateForensics = (head, taps, options) => {
+/** What a bystander of a simulation may know beforehand: who made the uncontested messages. For calibration only. */
+export interface Observer {
+  readonly kinds: number;
+  /** Controller of the message that starts at a tick, -1 where it was contested. */
+  controller(startTick: number): number;
+}
+
+export const createForensics: CreateForensics = (head, taps, options) => openForensics(head, taps, options, null);
+
+export function openForensics(
+  head: CaptureHead,
+  taps: readonly TapChoice[],
+  options: ForensicsOptions,
+  observer: Observer | null,
+): Forensics {
   const ledger = new Ledger(head.levels === "volts");
   const traces = taps.map((tap) => new TapTrace(tap.label, tap.scl !== null, tap.sda !== null));
   const ends: Float64Array[] = [];
@@ -43,10 +58,10 @@ export const createForensics: CreateForensics = (head, taps, options) => {
         vdd: head.vdd_v,
         roster: options.roster,
       };
-      return concludeCapture(capture, traces);
+      return concludeCapture(capture, traces, observer);
     },
   };
-};
+}
 
 interface Capture {
   readonly ledger: Ledger;
@@ -59,10 +74,13 @@ interface Capture {
   readonly roster: readonly RosterEntry[];
 }
 
-function concludeCapture(capture: Capture, traces: readonly TapTrace[]): ForensicsOutcome {
+function concludeCapture(capture: Capture, traces: readonly TapTrace[], observer: Observer | null): ForensicsOutcome {
   const { ledger, messages, sampling } = capture;
   const tapped = traces.some((t) => t.used) ? readTaps(ledger, messages, traces, sampling.step) : null;
-  const census = takeCensus(ledger, messages, sampling, tapped === null ? null : tapped.owner, traces.length);
+  const census =
+    observer === null
+      ? takeCensus(ledger, messages, sampling, tapped === null ? null : tapped.owner, traces.length)
+      : observed(ledger, messages, sampling, observer);
   const by = census.by.slice();
   for (let m = 0; m < messages.count; m++) if (census.margin[m] < Math.log(9)) by[m] = -1;
   const contests: Contest[] = [];
@@ -74,12 +92,24 @@ function concludeCapture(capture: Capture, traces: readonly TapTrace[]): Forensi
   const naming = order(capture, census, by);
   const stretches = stretchesOf({ ...capture, census, by, contestedUntil });
   return {
-    contests: contests.map((c) => ({ ...c, kept: naming.rename(c.kept), yielded: naming.rename(c.yielded), evidence: c.evidence })),
+    contests: contests.map((c) => ({
+      ...c,
+      kept: naming.rename(c.kept),
+      yielded: naming.rename(c.yielded),
+      evidence: c.evidence,
+    })),
     controllers: naming.rows(traces),
     attribution: perTransaction(messages, by, naming.index),
     stretches,
     lookAlikes: [],
   };
+}
+
+function observed(ledger: Ledger, messages: Messages, sampling: Sampling, observer: Observer): Census {
+  const known = new Int16Array(messages.count);
+  for (let m = 0; m < messages.count; m++) known[m] = observer.controller(ledger.openTick[messages.first[m]]);
+  const census = takeCensus(ledger, messages, sampling, known, observer.kinds, true);
+  return { ...census, odd: census.odd.map(() => 1) };
 }
 
 /** Rank of each controller by its first transaction; C1 is the first seen. Evidence texts already use these ids. */
@@ -166,7 +196,8 @@ function inferContests(
   const index = ranks(census);
   const naming: Naming = {
     id: (c) => `C${index[c] + 1}`,
-    microseconds: (ticks) => (ticks !== ticks ? "unknown" : `${((ticks / capture.timebase.ticksPerSecond) * 1e6).toFixed(3)} us`),
+    microseconds: (ticks) =>
+      Number.isNaN(ticks) ? "unknown" : `${((ticks / capture.timebase.ticksPerSecond) * 1e6).toFixed(3)} us`,
   };
   for (const j of judged) {
     if (j.best === null) continue;
@@ -223,7 +254,8 @@ function tapContests(
     if (loss.slot >= slots.length) continue;
     contested[loss.message] = 1;
     const owner = tapped.owner[loss.message];
-    const kept = owner >= 0 ? owner : census.by[loss.message] >= 0 && census.by[loss.message] !== loss.tap ? census.by[loss.message] : -1;
+    const kept =
+      owner >= 0 ? owner : census.by[loss.message] >= 0 && census.by[loss.message] !== loss.tap ? census.by[loss.message] : -1;
     by[loss.message] = kept;
     contestedUntil[loss.message] = slots.entry[Math.min(lastTogether(slots, loss.slot, 2), slots.length - 1)];
     const t = slots.transaction[loss.slot];
@@ -241,7 +273,13 @@ function tapContests(
       retry: next >= 0 ? messages.first[next] : null,
       probability: 1,
       grade: gradeOf(1, true),
-      evidence: [{ kind: "drive-tap", bits: 20, detail: `The tap on C${index[loss.tap] + 1} releases SDA here while the bus is low, in a bit it was driving.` }],
+      evidence: [
+        {
+          kind: "drive-tap",
+          bits: 20,
+          detail: `The tap on C${index[loss.tap] + 1} releases SDA here while the bus is low, in a bit it was driving.`,
+        },
+      ],
       look_alikes: [],
     });
   }

@@ -108,7 +108,8 @@ function reserve(slots: Slots, size: number): void {
 /** Fills `slots` with message `m`, at most `limit` slots (contests beyond are not looked for). */
 export function readMessage(ledger: Ledger, messages: Messages, m: number, slots: Slots, limit: number): void {
   slots.length = 0;
-  for (let t = messages.first[m]; t < messages.first[m + 1] && slots.length < limit; t++) readTransaction(ledger, t, slots, limit);
+  for (let t = messages.first[m]; t < messages.first[m + 1] && slots.length < limit; t++)
+    readTransaction(ledger, t, slots, limit);
 }
 
 function readTransaction(ledger: Ledger, t: number, slots: Slots, limit: number): void {

@@ -34,7 +34,13 @@ export interface Judged {
   readonly logAlone: number;
 }
 
-export function judge(scales: Scales, habitual: Habitual, odd: readonly number[], total: number, share: readonly number[]): { judged: Judged[]; rates: Rates } {
+export function judge(
+  scales: Scales,
+  habitual: Habitual,
+  odd: readonly number[],
+  total: number,
+  share: readonly number[],
+): { judged: Judged[]; rates: Rates } {
   const kinds = scales.signatures.length;
   const rates: Rates = {
     contest: PRIOR_CONTEST,
@@ -54,7 +60,8 @@ export function judge(scales: Scales, habitual: Habitual, odd: readonly number[]
 
 function pairLog(rates: Rates, a: number, b: number): number {
   let sum = 0;
-  for (let x = 0; x < rates.share.length; x++) for (let y = 0; y < rates.share.length; y++) if (x !== y) sum += rates.share[x] * rates.share[y];
+  for (let x = 0; x < rates.share.length; x++)
+    for (let y = 0; y < rates.share.length; y++) if (x !== y) sum += rates.share[x] * rates.share[y];
   return Math.log((rates.share[a] * rates.share[b]) / sum);
 }
 
@@ -115,7 +122,13 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
 }
 
 /** Most probable pair, then most probable slot within it, then most probable mode. */
-function pick(options: readonly Option[], pairs: Map<number, number>, slots: Map<number, number>, fallback: Option, rates: Rates): Option {
+function pick(
+  options: readonly Option[],
+  pairs: Map<number, number>,
+  slots: Map<number, number>,
+  fallback: Option,
+  rates: Rates,
+): Option {
   const top = (map: Map<number, number>): number => [...map].reduce((x, y) => (y[1] > x[1] ? y : x))[0];
   const pair = top(pairs);
   const within = new Map<number, number>();

@@ -67,7 +67,7 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
     readMessage(ledger, messages, m, slots, LOOK);
     for (let t = messages.first[m]; t < messages.first[m + 1]; t++) {
       const hold = ledger.hold[t];
-      if (hold === hold) values[t === messages.first[m] ? HOLD_START : HOLD_SR].push(hold);
+      if (!Number.isNaN(hold)) values[t === messages.first[m] ? HOLD_START : HOLD_SR].push(hold);
     }
     for (let s = 0; s < slots.length; s++) {
       const e = slots.entry[s];
@@ -89,7 +89,7 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
 }
 
 function add(list: number[], x: number): void {
-  if (x === x && list.length < ENOUGH) list.push(x);
+  if (!Number.isNaN(x) && list.length < ENOUGH) list.push(x);
 }
 
 /** A habit that the capture does not show is taken from its nearest kin, more loosely. */

@@ -85,13 +85,14 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
     const t = messages.first[m];
     const start = ledger.openTick[t];
     const hold = ledger.hold[t];
-    if (hold !== hold) continue;
+    if (Number.isNaN(hold)) continue;
     readMessage(ledger, messages, m, slots, 4096);
     const entrants: number[] = [];
     taps.forEach((tap, i) => {
       // It pulls SDA when SCL first falls, and pulls SCL in the low that follows: a controller that took part in the START.
       const sda = !tap.hasSda || tap.pulls(SDA, start + hold - step / 2);
-      const scl = !tap.hasScl || tap.pulledWithin(SCL, start + hold - step, start + hold + (ledger.low[ledger.openEntry[t] + 1] || 0) / 2);
+      const scl =
+        !tap.hasScl || tap.pulledWithin(SCL, start + hold - step, start + hold + (ledger.low[ledger.openEntry[t] + 1] || 0) / 2);
       if (tap.used && sda && scl && (tap.hasSda || tap.hasScl)) entrants.push(i);
     });
     joined[m] = entrants.length;

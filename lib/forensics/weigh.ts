@@ -130,7 +130,13 @@ export function lastTogether(slots: Slots, k: number, mode: number): number {
   if (mode === LEAVES || slots.bus[k] === BUS_STOP) return k;
   const end = mode === BYTE ? 7 : 8;
   let s = k;
-  while (s + 1 < slots.length && slots.pulse[s] % 9 < end && slots.transaction[s + 1] === slots.transaction[k] && slots.bus[s + 1] < 2) s++;
+  while (
+    s + 1 < slots.length &&
+    slots.pulse[s] % 9 < end &&
+    slots.transaction[s + 1] === slots.transaction[k] &&
+    slots.bus[s + 1] < 2
+  )
+    s++;
   return s;
 }
 

@@ -15,7 +15,7 @@ import { type LineSource, lineSources, usable } from "./csv/lines";
 import { readBody } from "./csv/read";
 import { surveyLevels, surveyTraces } from "./csv/survey";
 import { type LevelPlan, levelPlan, thresholdsOf } from "./csv/thresholds";
-import type { CaptureHead, OpenCapture, ReadChoices } from "./reader";
+import type { CaptureHead, CaptureTail, EdgeSink, OpenCapture, ReadChoices } from "./reader";
 
 /** Bytes of the file by which the dialect is judged. */
 export const HEAD_BYTES = 65_536;
@@ -33,6 +33,8 @@ export interface CsvView {
 
 export interface OpenedCsv extends OpenCapture {
   readonly view: CsvView;
+  /** Reads without the fast paths: what they are compared with. */
+  readGeneral(sink: EdgeSink): Promise<Result<CaptureTail>>;
 }
 
 export type CsvOutcome = { readonly view: CsvView | null; readonly opened: Result<OpenedCsv> };
@@ -162,7 +164,13 @@ function openFound(
     warnings: [...view.warnings, ...judged.warnings, ...proposal.warnings],
     metadata: body.layout.metadata,
   };
-  return ok({ head, view, read: (sink) => readBody({ body, head, scl, sda, taps: taps.value, levels }, sink) });
+  const job = { body, head, scl, sda, taps: taps.value, levels };
+  return ok({
+    head,
+    view,
+    read: (sink) => readBody(job, sink, true),
+    readGeneral: (sink) => readBody(job, sink, false),
+  });
 }
 
 export interface ResolvedTap {

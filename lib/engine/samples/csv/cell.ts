@@ -63,14 +63,18 @@ const WORDS: Readonly<Record<string, number>> = {
 /** Engineering suffixes; both code points of the micro sign arrive here as "u". */
 const SUFFIX: Readonly<Record<string, number>> = { f: -15, p: -12, n: -9, u: -6, m: -3, k: 3, K: 3, M: 6, G: 9 };
 
-const POWERS: number[] = [];
-for (let power = 0; power <= 22; power += 1) POWERS.push(Number(`1e${power}`));
+/** Powers of ten that are exact doubles. */
+export const POWERS = Float64Array.from({ length: 23 }, (_, power) => Number(`1e${power}`));
 
 /** mantissa x 10^exponent, rounded once where the exponent is within +-22 (powers up to 1e22 are exact doubles). */
 export function scaled(mantissa: number, exponent: number): number {
   if (exponent >= 0) return exponent <= 22 ? mantissa * POWERS[exponent] : mantissa * 10 ** exponent;
   return exponent >= -22 ? mantissa / POWERS[-exponent] : mantissa / 1e22 / 10 ** (-exponent - 22);
 }
+
+/** " µs" with its micro sign in two bytes, and room for blanks. */
+const LONGEST_TAIL = 8;
+const LONGEST_WORD = 52;
 
 /** Digits of a mantissa stay exact below this; further digits only move the exponent. */
 const MANTISSA_ROOM = 900_719_925_474_098;
@@ -132,6 +136,7 @@ export class Cell {
       p = q;
     }
     if (p === to) return true;
+    if (to - p > LONGEST_TAIL) return false;
     let text = "";
     for (; p < to; p += 1) text += String.fromCharCode(bytes[p]);
     text = text.trim().replace(/^(Â?µ|Î¼)/, "u");
@@ -142,7 +147,7 @@ export class Cell {
   }
 
   private word(bytes: Uint8Array, from: number, to: number): number {
-    if (to - from > 40) return BAD;
+    if (to - from > LONGEST_WORD || startsNumber(bytes, from, to)) return BAD;
     let text = "";
     for (let p = from; p < to; p += 1) text += String.fromCharCode(bytes[p]);
     text = text.toLowerCase();
@@ -173,6 +178,14 @@ export class Cell {
 
 function isBlank(byte: number): boolean {
   return byte === 32 || byte === 9 || byte === 0xa0;
+}
+
+/** A digit that begins neither 0x, 0b nor 1.#: no word. */
+function startsNumber(bytes: Uint8Array, from: number, to: number): boolean {
+  const first = bytes[from];
+  if (first < 48 || first > 57 || to - from < 2) return false;
+  const second = bytes[from + 1] | 32;
+  return !(first === 48 && (second === 120 || second === 98)) && !(first === 49 && bytes[from + 2] === 35);
 }
 
 const scratch = new Uint8Array(512);

@@ -72,6 +72,22 @@ export class Comparator {
     }
   }
 
+  /** A sample from `quietLeast` to `quietMost` changes nothing but the mean. */
+  quietLeast(): number {
+    if (this.between || this.level === 2) return Number.POSITIVE_INFINITY;
+    return this.level === 1 ? this.vih : Number.NEGATIVE_INFINITY;
+  }
+
+  quietMost(): number {
+    return this.level === 0 ? this.vil : Number.POSITIVE_INFINITY;
+  }
+
+  /** Notes the previous sample after quiet ones that went past `detect`. */
+  seen(tick: number, v: number): void {
+    this.previous = v;
+    this.previousTick = tick;
+  }
+
   /** Mean of the settled samples since the last call; NaN where there were none. */
   takeMean(): number {
     const mean = this.count === 0 ? Number.NaN : this.sum / this.count;

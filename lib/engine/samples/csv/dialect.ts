@@ -25,6 +25,8 @@ interface Candidate extends HeadTable {
 }
 
 const DELIMITERS: readonly Dialect["delimiter"][] = [",", ";", "\t", "|", " "];
+/** Characters of the head by which the dialect is judged. */
+const JUDGED_CHARACTERS = 8192;
 const cell = new Cell();
 
 /** `whole`: the text is the entire file; otherwise its last, possibly unfinished row is left out. */
@@ -35,18 +37,31 @@ export function findDialect(text: string, name: string, whole: boolean): Result<
   if (hint !== null) body = body.slice(hint[0].length);
   const delimiters =
     hint !== null && DELIMITERS.includes(hint[1] as Dialect["delimiter"]) ? [hint[1] as Dialect["delimiter"]] : DELIMITERS;
-  let best: Candidate | null = null;
-  for (const delimiter of delimiters) {
-    const rows = numbered(splitText(body, delimiter, !whole).rows, skipped);
-    for (const decimal of decimals(delimiter, body)) {
-      const found = candidate(rows, { delimiter, decimal, quoted: false });
-      if (found !== null && (best === null || found.score > best.score * 1.001)) best = found;
-    }
-  }
+  // A few hundred rows tell the dialect; the rest of the head is only split once, in the dialect found.
+  const few = body.slice(0, body.indexOf("\n", JUDGED_CHARACTERS) + 1);
+  const judged = few === "" ? null : bestOf(few, delimiters, skipped, false);
+  const best =
+    judged === null
+      ? bestOf(body, delimiters, skipped, !whole)
+      : candidate(numbered(splitText(body, judged.dialect.delimiter, !whole).rows, skipped), judged.dialect);
   if (best === null) return refuse(noTable(body, name, skipped));
   const doubt = ambiguousComma(best, name);
   if (doubt !== null) return refuse(doubt);
   return ok({ ...best, dialect: { ...best.dialect, quoted: best.dialect.delimiter !== " " && quotedBody(body, best, skipped) } });
+}
+
+function bestOf(text: string, delimiters: readonly Dialect["delimiter"][], skipped: number, partial: boolean): Candidate | null {
+  let best: Candidate | null = null;
+  for (const delimiter of delimiters) {
+    // A delimiter that does not occur makes one column; comma stands for all of those.
+    if (delimiter !== "," && !text.includes(delimiter)) continue;
+    const rows = numbered(splitText(text, delimiter, partial).rows, skipped);
+    for (const decimal of decimals(delimiter, text)) {
+      const found = candidate(rows, { delimiter, decimal, quoted: false });
+      if (found !== null && (best === null || found.score > best.score * 1.001)) best = found;
+    }
+  }
+  return best;
 }
 
 function decimals(delimiter: string, body: string): readonly Dialect["decimal"][] {

@@ -7,8 +7,10 @@ import type { CaptureHead, CaptureTail, EdgeSink } from "../reader";
 import { Aside } from "./aside";
 import { type Body, bodyReader, scanPlan } from "./body";
 import { Comparator, Excursions } from "./comparator";
+import { FastLevels, FastVolts } from "./fast";
 import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
 import { Rows } from "./rows";
+import type { FastPath } from "./scanner";
 import { type LevelSource, LevelTaker, type TapLines, VoltTaker } from "./takers";
 import type { LevelPlan } from "./thresholds";
 import { EdgeWriter } from "./writer";
@@ -27,11 +29,13 @@ const FIRST_FLUSH = 65_536;
 /** A settled sample looks back this far, in seconds (well under the shortest SCL low of Fast-mode, 1.3 us). */
 const SETTLE_SECONDS = 60e-9;
 
-export async function readBody(job: BodyJob, sink: EdgeSink): Promise<Result<CaptureTail>> {
+/** `plain`: whether rows of a common shape may take their fast path. */
+export async function readBody(job: BodyJob, sink: EdgeSink, plain: boolean): Promise<Result<CaptureTail>> {
   const { body } = job;
   const parts = assemble(job, sink);
   const { rows, writers, finish } = parts;
-  const reader = bodyReader(scanPlan(body.layout, body.axis, parts.selection), body.form, rows, null, () => false);
+  const plan = scanPlan(body.layout, body.axis, parts.selection);
+  const reader = bodyReader(plan, body.form, rows, plain ? parts.fast : null, () => rows.regular);
   return guardInflate(body.source.name, async () => {
     let read = 0;
     for await (const chunk of plainChunks(body.source.open(), body.form)) {
@@ -57,6 +61,7 @@ interface Parts {
   readonly writers: readonly EdgeWriter[];
   readonly bus: EdgeWriter;
   readonly excursions: Excursions;
+  readonly fast: FastPath | null;
   finish(): void;
 }
 
@@ -78,10 +83,14 @@ function assemble(job: BodyJob, sink: EdgeSink): Parts {
   const excursions = new Excursions(job.head.vdd_v !== null);
   const window = windowOf(body);
   let finishBus = () => bus.finish();
-  let taker: LevelTaker | VoltTaker;
-  if (!volts) taker = new LevelTaker(new DigitalTap(scl, selection), new DigitalTap(sda, selection), taps, bus);
-  else {
-    const voltTaker = new VoltTaker(
+  let rows: Rows;
+  let fast: FastPath | null;
+  if (!volts) {
+    const taker = new LevelTaker(new DigitalTap(scl, selection), new DigitalTap(sda, selection), taps, bus);
+    rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
+    fast = FastLevels.for(body, scl, sda, rows, taker);
+  } else {
+    const taker = new VoltTaker(
       selection.values,
       selection.slots[scl.column.index],
       selection.slots[sda.column.index],
@@ -91,16 +100,16 @@ function assemble(job: BodyJob, sink: EdgeSink): Parts {
       bus,
       job.head.vdd_v !== null,
     );
-    taker = voltTaker;
-    finishBus = () => voltTaker.finish();
+    rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
+    fast = FastVolts.for(body, selection, scl, sda, rows, taker);
+    finishBus = () => taker.finish();
   }
-  const rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
   const writers = [bus, ...taps.map((tap) => tap.writer)];
   const finish = () => {
     finishBus();
     for (const tap of taps) tap.writer.finish();
   };
-  return { selection, rows, writers, bus, excursions, finish };
+  return { selection, rows, writers, bus, excursions, fast, finish };
 }
 
 function windowOf(body: Body): number {

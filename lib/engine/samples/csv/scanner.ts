@@ -3,6 +3,7 @@
 
 import type { AsideReason } from "./aside";
 import { BITS, Cell, NUMBER, readText, scaled, UNKNOWN } from "./cell";
+import { number, readDigits } from "./digits";
 import type { RowTarget } from "./rows";
 import { type Dialect, splitText } from "./split";
 
@@ -198,51 +199,12 @@ export class Scanner {
           if (column >= width && p > cellStart && !blank(bytes, cellStart, p)) reason = "width";
         } else {
           const cellStart = p;
-          const negative = b === 45;
-          if (negative || b === 43) p += 1;
-          let m = 0;
-          let digits = p;
-          let d = bytes[p] - 48;
-          while (d >= 0 && d <= 9) {
-            m = m * 10 + d;
-            p += 1;
-            d = bytes[p] - 48;
-          }
-          digits = p - digits;
-          let e = 0;
-          if (bytes[p] === decimal) {
-            const point = p + 1;
-            p = point;
-            d = bytes[p] - 48;
-            while (d >= 0 && d <= 9) {
-              m = m * 10 + d;
-              p += 1;
-              d = bytes[p] - 48;
-            }
-            e = point - p;
-            digits -= e;
-          }
-          b = bytes[p];
-          if ((b === 69 || b === 101) && digits > 0) {
-            const minus = bytes[p + 1] === 45;
-            let q = minus || bytes[p + 1] === 43 ? p + 2 : p + 1;
-            const first = q;
-            let power = 0;
-            d = bytes[q] - 48;
-            while (d >= 0 && d <= 9) {
-              power = power * 10 + d;
-              q += 1;
-              d = bytes[q] - 48;
-            }
-            if (q > first && q - first < 5) {
-              e += minus ? -power : power;
-              p = q;
-              b = bytes[p];
-            }
-          }
+          p = readDigits(bytes, cellStart, decimal);
+          b = p < 0 ? 0 : bytes[p];
           let known = true;
-          if (negative) m = -m;
-          if (digits === 0 || digits > 15 || (b !== delimiter && b !== LF && b !== CR)) {
+          let m = number[0];
+          let e = number[1];
+          if (b !== delimiter && b !== LF && b !== CR) {
             p = this.slowCell(bytes, cellStart);
             b = bytes[p];
             const kind = this.cell.kind;

@@ -29,8 +29,10 @@ export async function surveyLevels(body: Body, sources: readonly LineSource[]): 
     },
     orderLost: () => false,
   };
+  let due = LEVEL_ROWS;
   const enough = () => {
-    if (rows < LEVEL_ROWS) return false;
+    if (rows < due) return false;
+    due = rows * 2;
     const seen = histograms.filter((histogram) => histogram.clusters(LEVEL_SAMPLES) !== null).length;
     return seen >= Math.min(2, wanted.length);
   };

@@ -43,7 +43,7 @@ export class LevelTaker implements RowTaker {
   constructor(
     private readonly scl: DigitalTap,
     private readonly sda: DigitalTap,
-    private readonly taps: readonly TapLines[],
+    readonly taps: readonly TapLines[],
     readonly writer: EdgeWriter,
   ) {}
 
@@ -72,7 +72,7 @@ export class VoltTaker implements RowTaker {
     readonly sdaSlot: number,
     readonly scl: Comparator,
     readonly sda: Comparator,
-    private readonly taps: readonly TapLines[],
+    readonly taps: readonly TapLines[],
     readonly writer: EdgeWriter,
     /** False for counts: means are volts, and counts have none. */
     private readonly means: boolean,

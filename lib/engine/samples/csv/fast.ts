@@ -1,0 +1,268 @@
+// In: whole rows of a plain body. Out: the same edges as the scanner's, for the two commonest shapes: a time and one-byte
+// levels, and a time and two voltages. Each row is checked byte by byte; the first one that is not exactly of the shape is
+// left to the scanner, which hands back after it. Nothing here decides anything that Rows or the takers would not.
+
+import type { Body } from "./body";
+import { POWERS, scaled } from "./cell";
+import { number, readDigits } from "./digits";
+import type { LineSource, Selection } from "./lines";
+import type { Rows } from "./rows";
+import type { FastPath, Scanner } from "./scanner";
+import type { LevelTaker, VoltTaker } from "./takers";
+
+const CR = 13;
+const LF = 10;
+
+/** Ticks per unit of the last digit of times with `places` decimals; NaN where that is not a whole number. */
+function multiplierOf(power: number, places: number): number {
+  return power - places >= 0 && power - places <= 22 ? POWERS[power - places] : Number.NaN;
+}
+
+function shapeAllows(body: Body): boolean {
+  const { axis, layout } = body;
+  return (
+    axis.clock.column === 0 &&
+    axis.clock.factor === null &&
+    axis.clock.start === 0 &&
+    !axis.pace.rebuilt &&
+    layout.dialect.delimiter !== " "
+  );
+}
+
+/** Rows like "0.0000125,1,0": the time first, every other column one byte 0 or 1. */
+export class FastLevels implements FastPath {
+  private readonly delimiter: number;
+  private readonly decimal: number;
+  /** Distance from the end of the time to the bytes of SCL, SDA and the row's end. */
+  private readonly toScl: number;
+  private readonly toSda: number;
+  private readonly toEnd: number;
+
+  private constructor(
+    private readonly body: Body,
+    scl: LineSource,
+    sda: LineSource,
+    private readonly rows: Rows,
+    private readonly taker: LevelTaker,
+  ) {
+    this.delimiter = body.layout.dialect.delimiter.charCodeAt(0);
+    this.decimal = body.layout.dialect.decimal.charCodeAt(0);
+    this.toScl = 2 * scl.column.index - 1;
+    this.toSda = 2 * sda.column.index - 1;
+    this.toEnd = 2 * (body.layout.width - 1);
+  }
+
+  static for(body: Body, scl: LineSource, sda: LineSource, rows: Rows, taker: LevelTaker): FastLevels | null {
+    const plain = body.layout.columns.every((column) => column.index === 0 || column.role === "digital");
+    return shapeAllows(body) && plain && taker.taps.length === 0 ? new FastLevels(body, scl, sda, rows, taker) : null;
+  }
+
+  scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number {
+    const { delimiter, decimal, toScl, toSda, toEnd, rows, taker } = this;
+    const { gap } = rows;
+    const timePower = this.body.axis.clock.power;
+    const three = toEnd === 4;
+    let places = -1;
+    let multiplier = Number.NaN;
+    let last = rows.lastTick;
+    let limit = rows.limit;
+    let key = taker.lines === 3 ? 0x3131 : -1;
+    let p = from;
+    let read = 0;
+    while (p < to) {
+      const start = p;
+      let digit = bytes[p] - 48;
+      let negative = false;
+      if (digit === -3) {
+        negative = true;
+        p += 1;
+        digit = bytes[p] - 48;
+      }
+      let whole = 0;
+      const first = p;
+      while (digit >= 0 && digit <= 9) {
+        whole = (Math.imul(whole, 10) + digit) | 0;
+        p += 1;
+        digit = bytes[p] - 48;
+      }
+      const wholeEnd = p;
+      let part = 0;
+      if (bytes[p] === decimal) {
+        p += 1;
+        digit = bytes[p] - 48;
+        while (digit >= 0 && digit <= 9) {
+          part = (Math.imul(part, 10) + digit) | 0;
+          p += 1;
+          digit = bytes[p] - 48;
+        }
+      }
+      const found = p === wholeEnd ? 0 : p - wholeEnd - 1;
+      if (found !== places) {
+        places = found;
+        multiplier = found > 9 ? Number.NaN : multiplierOf(timePower, found);
+      }
+      let tick = (whole * POWERS[places] + part) * multiplier;
+      if (negative) tick = -tick;
+      // NaN fails as well: a shape whose ticks are not whole numbers goes to the scanner.
+      if (!(tick > last && tick < limit) || wholeEnd === first || wholeEnd - first > 9)
+        return this.leave(scanner, start, read, last, limit);
+      const end = p + toEnd;
+      const ending = bytes[end];
+      if (ending !== LF && !(ending === CR && bytes[end + 1] === LF && end + 1 < to))
+        return this.leave(scanner, start, read, last, limit);
+      const scl = bytes[p + toScl];
+      const sda = bytes[p + toSda];
+      const plain = three
+        ? bytes[p] === delimiter && bytes[p + 2] === delimiter && ((scl | sda) & 0xfe) === 48 && (scl & sda & 48) === 48
+        : this.others(bytes, p);
+      if (!plain) return this.leave(scanner, start, read, last, limit);
+      p = ending === LF ? end + 1 : end + 2;
+      const now = (scl << 8) | sda;
+      if (now !== key) {
+        key = now;
+        const lines = (scl & 1) | ((sda & 1) << 1);
+        if (lines !== taker.lines) {
+          taker.lines = lines;
+          taker.writer.put(tick, lines);
+        }
+      }
+      last = tick;
+      limit = tick + gap;
+      read += 1;
+    }
+    return this.leave(scanner, p, read, last, limit);
+  }
+
+  /** The cells after a time that ends at `p`, for a row of any width. */
+  private others(bytes: Uint8Array, p: number): boolean {
+    for (let at = p; at < p + this.toEnd; at += 2) {
+      if (bytes[at] !== this.delimiter || (bytes[at + 1] & 0xfe) !== 48) return false;
+    }
+    return true;
+  }
+
+  private leave(scanner: Scanner, at: number, read: number, last: number, limit: number): number {
+    return handBack(scanner, this.rows, at, read, last, limit);
+  }
+}
+
+/** Brings the scanner and the rows up to where a fast path stopped. */
+function handBack(scanner: Scanner, rows: Rows, at: number, read: number, last: number, limit: number): number {
+  if (read > 0) {
+    rows.count += read;
+    rows.lastTick = last;
+    rows.limit = limit;
+    scanner.line += read;
+    scanner.rowNumber += read;
+    rows.lastLine = scanner.line - 1;
+  }
+  return at;
+}
+
+/** Rows like "0.0000125,3.301,0.118" or with exponents: the time, then the two lines in volts, and nothing else. */
+export class FastVolts implements FastPath {
+  private readonly delimiter: number;
+  private readonly decimal: number;
+  private readonly sclFirst: boolean;
+  private readonly firstPower: number;
+  private readonly secondPower: number;
+
+  private constructor(
+    private readonly body: Body,
+    selection: Selection,
+    scl: LineSource,
+    private readonly rows: Rows,
+    private readonly taker: VoltTaker,
+  ) {
+    this.delimiter = body.layout.dialect.delimiter.charCodeAt(0);
+    this.decimal = body.layout.dialect.decimal.charCodeAt(0);
+    this.sclFirst = scl.column.index === 1;
+    this.firstPower = selection.powers[1];
+    this.secondPower = selection.powers[2];
+  }
+
+  static for(body: Body, selection: Selection, scl: LineSource, sda: LineSource, rows: Rows, taker: VoltTaker): FastVolts | null {
+    const pair =
+      body.layout.width === 3 && scl.bit < 0 && sda.bit < 0 && scl.channel.kind !== "digital" && sda.channel.kind !== "digital";
+    return shapeAllows(body) && pair && taker.taps.length === 0 ? new FastVolts(body, selection, scl, rows, taker) : null;
+  }
+
+  scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number {
+    const { delimiter, decimal, rows, taker, firstPower, secondPower } = this;
+    const { gap } = rows;
+    const power = this.body.axis.clock.power;
+    const a = this.sclFirst ? taker.scl : taker.sda;
+    const b = this.sclFirst ? taker.sda : taker.scl;
+    const aSlot = this.sclFirst ? taker.sclSlot : taker.sdaSlot;
+    const bSlot = this.sclFirst ? taker.sdaSlot : taker.sclSlot;
+    let last = rows.lastTick;
+    let limit = rows.limit;
+    // A quiet sample lies within these and changes nothing but the means.
+    let aLeast = a.quietLeast();
+    let aMost = a.quietMost();
+    let bLeast = b.quietLeast();
+    let bMost = b.quietMost();
+    let va = a.previous;
+    let vb = b.previous;
+    let exponent = Number.NaN;
+    let multiplier = 0;
+    let p = from;
+    let read = 0;
+    while (p < to) {
+      const start = p;
+      p = readDigits(bytes, p, decimal);
+      if (p < 0 || bytes[p] !== delimiter) {
+        p = start;
+        break;
+      }
+      const e = number[1];
+      if (e !== exponent) {
+        exponent = e;
+        multiplier = multiplierOf(power, -e);
+      }
+      const tick = number[0] * multiplier;
+      p = readDigits(bytes, p + 1, decimal);
+      if (!(tick > last && tick < limit) || p < 0 || bytes[p] !== delimiter) {
+        p = start;
+        break;
+      }
+      const x = valueOf(number[0], number[1] + firstPower);
+      p = readDigits(bytes, p + 1, decimal);
+      const ending = p < 0 ? 0 : bytes[p];
+      if (ending !== LF && !(ending === CR && p + 1 < to && bytes[p + 1] === LF)) {
+        p = start;
+        break;
+      }
+      p += ending === LF ? 1 : 2;
+      const y = valueOf(number[0], number[1] + secondPower);
+      if (x >= aLeast && x <= aMost && y >= bLeast && y <= bMost) {
+        a.add(x);
+        b.add(y);
+      } else {
+        a.seen(last, va);
+        b.seen(last, vb);
+        taker.values[aSlot] = x;
+        taker.values[bSlot] = y;
+        taker.take(tick, false);
+        aLeast = a.quietLeast();
+        aMost = a.quietMost();
+        bLeast = b.quietLeast();
+        bMost = b.quietMost();
+      }
+      va = x;
+      vb = y;
+      last = tick;
+      limit = tick + gap;
+      read += 1;
+    }
+    if (read > 0) {
+      a.seen(last, va);
+      b.seen(last, vb);
+    }
+    return handBack(scanner, rows, p, read, last, limit);
+  }
+}
+
+function valueOf(mantissa: number, exponent: number): number {
+  return exponent <= 0 && exponent >= -22 ? mantissa / POWERS[-exponent] : scaled(mantissa, exponent);
+}

@@ -5,6 +5,7 @@ import { judgeable, seconds } from "../base/time";
 import { createDecoder } from "../engine/decode";
 import type { CaptureHead, CaptureTail, Channel, OpenCapture } from "../engine/samples/reader";
 import type { ForensicsOutcome } from "../forensics/contract";
+import { createForensics } from "../forensics/forensics";
 import { createMeasurement } from "../limits/measure";
 import type { Profile } from "../limits/profile";
 import type { MeasurementRow } from "../limits/rows";
@@ -12,7 +13,6 @@ import type { AnalysisListener, AnalysisOutcome, AnalysisSettings } from "./anal
 import { type Chosen, chosenProfile, highSpeedLimits, judgedRows, measurementsOf, triedProfiles, violationsOf } from "./judge";
 import { ledeOf } from "./lede";
 import { levelsOf } from "./levels";
-import { createForensics } from "../forensics/forensics";
 import { resolveProfile } from "./profile-file";
 import { REPORT_SCHEMA, type Summary } from "./report";
 import { RuleBook } from "./rulebook";

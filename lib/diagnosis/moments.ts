@@ -115,10 +115,44 @@ export class Moments {
     const { kind, length } = block;
     for (let i = 0; i < length; i++) {
       const k = kind[i];
-      if (k === BIT) this.bit(block, i);
+      if (k === BIT) i = this.calm(block, i) - 1;
       else if (k === LOST) this.lost();
       else this.condition(block, i, k);
     }
+  }
+
+  // The many: bits in which nothing happens. Does what `bit` does, from locals alone; hands `bit` the first that is not calm.
+  private calm(block: BitBlock, from: number): number {
+    const { kind, flags, value, length, fall, tick, end, sdaLast } = block;
+    if (block.leads !== null || this.clearing >= 0) {
+      this.bit(block, from);
+      return from + 1;
+    }
+    let { period, lastHigh, pulse, read, sdaFell } = this;
+    let i = from;
+    for (; i < length && kind[i] === BIT; i++) {
+      const rose = tick[i];
+      const high = end[i] - rose;
+      const whole = end[i] - fall[i];
+      const calm = high <= HELD_BITS * period && high >= RUNT_SHARE * lastHigh && rose - fall[i] < this.longLow;
+      if (!calm || (flags[i] & OUTSIDE) !== 0) break;
+      if (value[i] === 0 && !Number.isNaN(sdaLast[i])) sdaFell = sdaLast[i];
+      if (pulse === 7) read = value[i] === 1;
+      pulse++;
+      lastHigh = high;
+      period *= whole > period ? 1.02 : 1 / 1.02;
+    }
+    this.period = period;
+    this.lastHigh = lastHigh;
+    this.pulse = pulse;
+    this.read = read;
+    this.sdaFell = sdaFell;
+    if (i > from) this.conditionTick = Number.NaN;
+    if (i < length && kind[i] === BIT) {
+      this.bit(block, i);
+      return i + 1;
+    }
+    return i;
   }
 
   private bit(block: BitBlock, i: number): void {

@@ -13,7 +13,8 @@ export function slowestFitting(fs: ColumnSet, tried: readonly Profile[]): number
   const { count } = fs.period;
   const tolerated = Math.max(Math.min(TOLERATED_FEW, Math.floor(count / 4)), Math.floor(count * TOLERATED));
   for (let k = 0; k < tried.length; k++) {
-    if ((fs.period.judgeOf(k)?.below ?? 0) <= tolerated) return k;
+    const judge = fs.period.judgeOf(k);
+    if (judge?.dropped !== true && (judge?.below ?? 0) <= tolerated) return k;
   }
   return Math.max(0, tried.length - 1);
 }

@@ -19,7 +19,6 @@ export interface Extreme {
 }
 
 export class Column {
-  count = 0;
   min = Number.POSITIVE_INFINITY;
   max = Number.NEGATIVE_INFINITY;
   private minTick = 0;
@@ -28,29 +27,50 @@ export class Column {
   private maxTransaction = -1;
   private lowGate = Number.NEGATIVE_INFINITY;
   private highGate = Number.POSITIVE_INFINITY;
-  private judges: readonly (Judge | null)[] = [];
+  /** A value from `calmLow` to `calmHigh` neither is an extreme nor comes near a limit: it only counts. */
+  private calmLow = Number.POSITIVE_INFINITY;
+  private calmHigh = Number.NEGATIVE_INFINITY;
+  private few = 0;
   private kept = new Float64Array(64);
   private buckets: Uint32Array | null = null;
+  /** One value that fell into each bucket. */
   private seen: Float64Array | null = null;
+  /** Intervals of the block under way, and which entry of it each belongs to. */
+  private waiting = 0;
+  private values = new Float64Array(0);
+  private entries = new Uint32Array(0);
 
   /** `judges` has one place per profile tried; `widest` is the widest uncertainty that `add` will be given, in ticks. */
   constructor(
     readonly symbol: string,
-    judges: readonly (Judge | null)[],
+    private readonly judges: readonly (Judge | null)[],
     private readonly widest: number,
   ) {
-    this.setJudges(judges);
+    this.setGates();
   }
 
-  setJudges(judges: readonly (Judge | null)[]): void {
-    this.judges = judges;
+  get count(): number {
+    if (this.buckets === null) return this.few;
+    let sum = 0;
+    for (const n of this.buckets) sum += n;
+    return sum;
+  }
+
+  /** Sets the gates anew; judges that were dropped are asked no more. */
+  setGates(): void {
     this.lowGate = Number.NEGATIVE_INFINITY;
     this.highGate = Number.POSITIVE_INFINITY;
-    for (const judge of judges) {
-      if (judge === null) continue;
+    for (const judge of this.judges) {
+      if (judge === null || judge.dropped) continue;
       this.lowGate = Math.max(this.lowGate, judge.lowGate(this.widest));
       this.highGate = Math.min(this.highGate, judge.highGate(this.widest));
     }
+    this.setCalm();
+  }
+
+  private setCalm(): void {
+    this.calmLow = Math.max(this.lowGate, this.min);
+    this.calmHigh = Math.min(this.highGate, this.max);
   }
 
   /** The judge of one tried profile. */
@@ -58,60 +78,96 @@ export class Column {
     return this.judges[profile] ?? null;
   }
 
+  /** Makes room for a block of so many entries, each of which may bring one interval. */
+  expect(entries: number): void {
+    if (this.values.length >= entries) return;
+    this.values = new Float64Array(entries);
+    this.entries = new Uint32Array(entries);
+  }
+
+  /** Sets an interval of entry `entry` of the block aside, in ticks, until `drain`. */
+  take(measured: number, entry: number): void {
+    const n = this.waiting++;
+    this.values[n] = measured;
+    this.entries[n] = entry;
+  }
+
+  /** Counts what was set aside. `starts` and `transactions` tell, by entry, when the interval begins and where it belongs. */
+  drain(doubt: number, starts: Float64Array, transactions: Int32Array): void {
+    const { waiting, values, entries, buckets, seen } = this;
+    this.waiting = 0;
+    let i = 0;
+    if (buckets !== null && seen !== null) {
+      let { calmLow, calmHigh } = this;
+      for (; i < waiting; i++) {
+        const measured = values[i];
+        float[0] = measured;
+        const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
+        buckets[bucket]++;
+        seen[bucket] = measured;
+        if (measured >= calmLow && measured <= calmHigh) continue;
+        this.notable(measured, doubt, starts[entries[i]], transactions[entries[i]]);
+        calmLow = this.calmLow;
+        calmHigh = this.calmHigh;
+      }
+      return;
+    }
+    for (; i < waiting; i++) this.add(values[i], doubt, starts[entries[i]], transactions[entries[i]]);
+  }
+
   /** `measured` and `doubt` in ticks; `tick` is where the interval begins. */
   add(measured: number, doubt: number, tick: number, transaction: number): void {
-    const n = this.count++;
+    if (this.buckets === null) this.keep(measured);
+    else this.bucket(measured);
+    if (measured < this.calmLow || measured > this.calmHigh) this.notable(measured, doubt, tick, transaction);
+  }
+
+  private notable(measured: number, doubt: number, tick: number, transaction: number): void {
     if (measured < this.min) {
       this.min = measured;
       this.minTick = tick;
       this.minTransaction = transaction;
+      this.setCalm();
     }
     if (measured > this.max) {
       this.max = measured;
       this.maxTick = tick;
       this.maxTransaction = transaction;
+      this.setCalm();
     }
-    if (n < EXACT) this.keep(measured, n);
-    else if (this.buckets !== null && this.seen !== null) {
-      float[0] = measured;
-      const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
-      this.buckets[bucket]++;
-      this.seen[bucket] = measured;
+    if (measured >= this.lowGate && measured <= this.highGate) return;
+    for (const judge of this.judges) {
+      if (judge !== null && !judge.dropped) judge.judge(measured, doubt, tick, transaction);
     }
-    if (measured < this.lowGate || measured > this.highGate) this.ask(measured, doubt, tick, transaction);
   }
 
-  private ask(measured: number, doubt: number, tick: number, transaction: number): void {
-    for (const judge of this.judges) judge?.judge(measured, doubt, tick, transaction);
+  private bucket(measured: number): void {
+    if (this.buckets === null || this.seen === null) return;
+    float[0] = measured;
+    const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
+    this.buckets[bucket]++;
+    this.seen[bucket] = measured;
   }
 
-  private keep(measured: number, n: number): void {
-    if (n === this.kept.length) {
+  private keep(measured: number): void {
+    if (this.few === this.kept.length) {
       const wider = new Float64Array(this.kept.length * 4);
       wider.set(this.kept);
       this.kept = wider;
     }
-    this.kept[n] = measured;
-    if (n !== EXACT - 1) return;
-    const buckets = new Uint32Array(BUCKETS);
-    const seen = new Float64Array(BUCKETS);
-    for (const value of this.kept) {
-      float[0] = value;
-      const bucket = value > 0 ? bits[0] >>> SHIFT : 0;
-      buckets[bucket]++;
-      seen[bucket] = value;
-    }
-    this.buckets = buckets;
-    this.seen = seen;
+    this.kept[this.few++] = measured;
+    if (this.few < EXACT) return;
+    this.buckets = new Uint32Array(BUCKETS);
+    this.seen = new Float64Array(BUCKETS);
+    for (const value of this.kept) this.bucket(value);
   }
 
   /** The value that `share` of all intervals do not exceed; NaN without any interval. */
   quantile(share: number): number {
-    if (this.count === 0) return Number.NaN;
-    const rank = Math.max(0, Math.ceil(share * this.count) - 1);
-    if (this.buckets === null || this.seen === null || this.count <= EXACT) {
-      return this.kept.slice(0, this.count).sort()[rank];
-    }
+    const { count } = this;
+    if (count === 0) return Number.NaN;
+    const rank = Math.max(0, Math.ceil(share * count) - 1);
+    if (this.buckets === null || this.seen === null) return this.kept.slice(0, count).sort()[rank];
     let passed = 0;
     for (let b = 0; b < BUCKETS; b++) {
       passed += this.buckets[b];
@@ -128,7 +184,7 @@ export class Column {
       const coarse = value > 0 ? (bits[0] >>> SHIFT) >> 3 : 0;
       counts.set(coarse, (counts.get(coarse) ?? 0) + n);
     };
-    if (this.buckets === null || this.seen === null) for (let i = 0; i < this.count; i++) note(this.kept[i], 1);
+    if (this.buckets === null || this.seen === null) for (let i = 0; i < this.few; i++) note(this.kept[i], 1);
     else for (let b = 0; b < BUCKETS; b++) if (this.buckets[b] > 0) note(this.seen[b], this.buckets[b]);
     return [...counts].sort((a, b) => a[0] - b[0]).map(([coarse, n]) => [lowerEdge(coarse), n]);
   }

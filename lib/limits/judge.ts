@@ -26,6 +26,8 @@ export class Judge {
   below = 0;
   above = 0;
   uncertain = 0;
+  /** Asked no more: the profile it belongs to is out of the question. */
+  dropped = false;
   private heap: Worst[] = [];
 
   constructor(

@@ -5,6 +5,7 @@
 import type { Timebase } from "../base/time";
 import { BIT, type BitBlock, IN_HS, LOST, OUTSIDE, type Spike, START, STOP } from "../engine/bits/bits";
 import type { CaptureHead } from "../engine/samples/reader";
+import type { Column } from "./column";
 import { type ColumnSet, columnsFor, columnsOf } from "./columns";
 import { type LevelColumns, levelColumns, noteLevels } from "./levels";
 import type { LimitTable, Profile } from "./profile";
@@ -16,6 +17,8 @@ const STRETCHED = 1.5;
 /** From this many clock periods on, a mode that most of them are too fast for is no longer tried. */
 const SETTLED = 20_000;
 const ACK_SLOT = 8;
+/** Bits that need more than the plain walk. */
+const UNUSUAL = OUTSIDE | IN_HS;
 
 export interface Measured {
   readonly base: Timebase;
@@ -57,20 +60,16 @@ export function createMeasurement(head: MeasureHead, tried: readonly Profile[], 
     false,
   );
   const run = new Run(head, doubt, fs, () => columnsFor(hsTable === null ? [] : [hsTable], head.timebase, doubt, true));
-  const alive = tried.map(() => true);
 
   function dropTooSlow(): void {
-    let changed = false;
     for (let k = 0; k < tried.length - 1; k++) {
-      const tooFast = fs.period.judgeOf(k)?.below ?? 0;
-      if (!alive[k] || tooFast * 2 < fs.period.count) continue;
-      alive[k] = false;
-      changed = true;
+      if ((fs.period.judgeOf(k)?.below ?? 0) * 2 < fs.period.count) continue;
+      for (const column of columnsOf(fs)) {
+        const judge = column.judgeOf(k);
+        if (judge !== null) judge.dropped = true;
+      }
     }
-    if (!changed) return;
-    for (const column of columnsOf(fs)) {
-      if (column !== fs.period) column.setJudges(tried.map((_, k) => (alive[k] ? column.judgeOf(k) : null)));
-    }
+    for (const column of columnsOf(fs)) column.setGates();
   }
 
   let settled = tried.length < 2;
@@ -90,6 +89,12 @@ export function createMeasurement(head: MeasureHead, tried: readonly Profile[], 
   };
 }
 
+/** Columns that may get an interval from every entry; they are counted a block at a time. */
+function frequent(set: ColumnSet): Column[] {
+  const { period, slow, low, timeout, high, suDat, hdDat, vdDat, vdAck } = set;
+  return [period, slow, low, timeout, high, suDat, hdDat, vdDat, vdAck].filter((column): column is Column => column !== null);
+}
+
 /** The walk over the bits. */
 class Run {
   hs: ColumnSet | null = null;
@@ -99,6 +104,8 @@ class Run {
   private slot = 0;
   private shortestLow = Number.POSITIVE_INFINITY;
   private lastStop = Number.NaN;
+  /** Transaction of each entry of the block under way, or -1. */
+  private belongs = new Int32Array(0);
 
   constructor(
     head: MeasureHead,
@@ -115,11 +122,16 @@ class Run {
 
   bits(block: BitBlock): void {
     const { kind, flags, length } = block;
+    this.expect(length);
+    const { belongs } = this;
+    const plain = block.leads === null;
     for (let i = 0; i < length; i++) {
       const k = kind[i];
-      const set = (flags[i] & IN_HS) !== 0 ? this.highSpeed() : this.fs;
+      const set = (flags[i] & IN_HS) !== 0 ? this.highSpeed(length) : this.fs;
+      belongs[i] = this.open ? this.transaction : -1;
       if (k === BIT) {
-        this.bit(block, i, set);
+        if (plain && this.open && set.slow === null && (flags[i] & UNUSUAL) === 0) i = this.plainBits(block, i) - 1;
+        else this.bit(block, i, set);
         continue;
       }
       if (k === LOST) {
@@ -131,11 +143,31 @@ class Run {
       if (k === STOP) this.stop(block, i, set);
       else this.start(block, i, set, k === START);
     }
+    this.drain(block, this.fs);
+    if (this.hs !== null) this.drain(block, this.hs);
   }
 
-  private highSpeed(): ColumnSet {
-    if (this.hs === null) this.hs = this.makeHs();
-    return this.hs;
+  private expect(length: number): void {
+    if (this.belongs.length < length) this.belongs = new Int32Array(length);
+    for (const column of frequent(this.fs)) column.expect(length);
+    if (this.hs !== null) for (const column of frequent(this.hs)) column.expect(length);
+  }
+
+  private drain(block: BitBlock, set: ColumnSet): void {
+    const { doubt, belongs } = this;
+    for (const column of [set.period, set.slow, set.low, set.timeout, set.hdDat, set.vdDat, set.vdAck]) {
+      column?.drain(doubt, block.fall, belongs);
+    }
+    set.high.drain(doubt, block.tick, belongs);
+    set.suDat.drain(doubt, block.sdaLast, belongs);
+  }
+
+  private highSpeed(length: number): ColumnSet {
+    if (this.hs !== null) return this.hs;
+    const made = this.makeHs();
+    for (const column of frequent(made)) column.expect(length);
+    this.hs = made;
+    return made;
   }
 
   // The low before the high that this entry stands in. Returns whether it was stretched.
@@ -145,40 +177,68 @@ class Run {
     const measured = (leads === null ? block.rise[i] : block.rise[i] - leads.rise[i]) - fall;
     // NaN where the record does not hold this low's beginning.
     if (Number.isNaN(measured)) return true;
-    const at = this.open ? this.transaction : -1;
-    set.low.add(measured, this.doubt, fall, at);
-    if (set.timeout !== null) set.timeout.add(measured, this.doubt, fall, at);
+    set.low.take(measured, i);
+    if (set.timeout !== null) set.timeout.take(measured, i);
     if (measured < this.shortestLow) this.shortestLow = measured;
     const first = block.sdaFirst[i];
-    if (!Number.isNaN(first)) {
-      const hold = (leads === null ? first : first - leads.sdaFirst[i]) - fall;
-      set.hdDat.add(hold, this.doubt, fall, at);
-    }
+    if (!Number.isNaN(first)) set.hdDat.take((leads === null ? first : first - leads.sdaFirst[i]) - fall, i);
     return measured > STRETCHED * this.shortestLow + 2 * this.doubt;
   }
 
+  // The many: bits of an open F/S transaction on a one-threshold capture. Does what `bit` does, from locals alone.
+  private plainBits(block: BitBlock, from: number): number {
+    const { kind, flags, length, fall, tick, end, sdaFirst, sdaLast } = block;
+    const { fs, belongs, transaction, doubt } = this;
+    const [period, low, high, suDat, hdDat] = [fs.period, fs.low, fs.high, fs.suDat, fs.hdDat];
+    let { slot, shortestLow } = this;
+    let i = from;
+    for (; i < length && kind[i] === BIT && (flags[i] & UNUSUAL) === 0; i++) {
+      const fell = fall[i];
+      const rose = tick[i];
+      const ended = end[i];
+      const lasted = rose - fell;
+      if (!(lasted >= 0 && ended >= rose)) break;
+      belongs[i] = transaction;
+      if (lasted < shortestLow) shortestLow = lasted;
+      low.take(lasted, i);
+      high.take(ended - rose, i);
+      period.take(ended - fell, i);
+      const last = sdaLast[i];
+      if (last >= fell) {
+        hdDat.take(sdaFirst[i] - fell, i);
+        suDat.take(rose - last, i);
+        if (lasted <= STRETCHED * shortestLow + 2 * doubt) (slot === ACK_SLOT ? fs.vdAck : fs.vdDat).take(last - fell, i);
+      }
+      slot = slot === ACK_SLOT ? 0 : slot + 1;
+    }
+    this.slot = slot;
+    this.shortestLow = shortestLow;
+    if (i > from) return i;
+    this.bit(block, i, fs);
+    return i + 1;
+  }
+
   private bit(block: BitBlock, i: number, set: ColumnSet): void {
-    const { leads, flags } = block;
+    const { leads } = block;
     const stretched = this.low(block, i, set);
-    const at = this.open ? this.transaction : -1;
-    const { doubt, slot } = this;
+    const outside = (block.flags[i] & OUTSIDE) !== 0;
     const fall = block.fall[i];
     const rise = block.tick[i];
     const end = block.end[i];
     if (!Number.isNaN(end)) {
-      set.high.add((leads === null ? end : end - leads.end[i]) - rise, doubt, rise, at);
+      set.high.take((leads === null ? end : end - leads.end[i]) - rise, i);
       if (!Number.isNaN(fall)) {
-        set.period.add(end - fall, doubt, fall, at);
-        if (set.slow !== null && !stretched) set.slow.add(end - fall, doubt, fall, at);
+        set.period.take(end - fall, i);
+        if (set.slow !== null && !stretched) set.slow.take(end - fall, i);
       }
     }
     const last = block.sdaLast[i];
     if (!Number.isNaN(last)) {
-      set.suDat.add((leads === null ? rise : rise - leads.rise[i]) - last, doubt, last, at);
-      if (!stretched && (flags[i] & OUTSIDE) === 0) (slot === ACK_SLOT ? set.vdAck : set.vdDat).add(last - fall, doubt, fall, at);
+      set.suDat.take((leads === null ? rise : rise - leads.rise[i]) - last, i);
+      if (!stretched && !outside) (this.slot === ACK_SLOT ? set.vdAck : set.vdDat).take(last - fall, i);
     }
-    if (leads !== null) this.shapes(block, i, set, at);
-    if ((flags[i] & OUTSIDE) === 0) this.slot = slot === ACK_SLOT ? 0 : slot + 1;
+    if (leads !== null) this.shapes(block, i, set, this.current());
+    if (!outside) this.slot = this.slot === ACK_SLOT ? 0 : this.slot + 1;
   }
 
   // Volts only: edges and levels of one bit. Each SCL edge is taken once, at the bit it rises for or ends.

@@ -12,6 +12,8 @@ export const dataNack: Rule = {
     transaction(row) {
       if (row.kind === KIND.generalCall || row.kind === KIND.startByte || row.kind === KIND.hsCode || row.kind === KIND.busClear)
         return;
+      // Clocks that free a held line frame into bytes that nobody sent.
+      if (row.moments.some((moment) => moment.kind === "recovery")) return;
       const last = row.byteCount - 1;
       for (let n = row.addressBytes; n <= last; n++) {
         const i = row.at + n;

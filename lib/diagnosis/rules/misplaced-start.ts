@@ -9,7 +9,11 @@ export const misplacedStart: Rule = {
   meta: { kind: "misplaced-start", clause: "UM10204 Rev 7 3.1.10 note 4" },
   watch: (findings) => ({
     transaction(row) {
-      if ((row.flags & FLAG.misplacedStart) === 0 || row.moments.some((moment) => moment.kind === "pulse")) return;
+      if (
+        (row.flags & FLAG.misplacedStart) === 0 ||
+        row.moments.some((moment) => moment.kind === "pulse" || moment.kind === "recovery")
+      )
+        return;
       findings.add("misplaced-start", row.endTick, `START ${brokenPlace(row)}`, row.index);
     },
   }),

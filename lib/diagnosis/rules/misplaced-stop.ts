@@ -8,7 +8,11 @@ export const misplacedStop: Rule = {
   meta: { kind: "misplaced-stop", clause: "UM10204 Rev 7 3.1.5" },
   watch: (findings) => ({
     transaction(row) {
-      if ((row.flags & FLAG.misplacedStop) === 0 || row.moments.some((moment) => moment.kind === "pulse")) return;
+      if (
+        (row.flags & FLAG.misplacedStop) === 0 ||
+        row.moments.some((moment) => moment.kind === "pulse" || moment.kind === "recovery")
+      )
+        return;
       findings.add("misplaced-stop", row.endTick, `STOP ${brokenPlace(row)}`, row.index);
     },
   }),

@@ -10,6 +10,7 @@ export const shortByte: Rule = {
   watch: (findings) => ({
     transaction(row) {
       if ((row.flags & FLAG.shortByte) === 0 || row.closes === CLOSE.none) return;
+      if (row.moments.some((moment) => moment.kind === "recovery")) return;
       const last = row.at + row.byteCount - 1;
       if (row.bytes.bits[last] >= 8) return;
       findings.add("short-byte", row.bytes.startTick[last], `a byte broke off ${brokenPlace(row)}`, row.index);

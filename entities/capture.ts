@@ -26,6 +26,8 @@ export const Capture = defineEntity({
     key: p.string().length(500).unique(),
     /** What the person answered to the reader. */
     read: p.json<Read>(),
+    /** Text of the controller log imported with it. */
+    log: p.text().nullable(),
     archiveKey: p.string().length(500).nullable(),
     archiveSize: p.bigint("number").nullable(),
     timebase: p.json<Timebase>().nullable(),

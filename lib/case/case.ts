@@ -9,7 +9,16 @@ export const CASE_FORMAT = "firstlow.case/1";
 export const SETTINGS_VERSION = 1;
 
 /** Longest texts that are kept, in characters. */
-export const TEXT_LIMIT = { title: 200, note: 8_000, finding: 60_000, remark: 500, name: 120, file: 255, view: 4_000 } as const;
+export const TEXT_LIMIT = {
+  title: 200,
+  note: 8_000,
+  finding: 60_000,
+  remark: 500,
+  name: 120,
+  file: 255,
+  view: 4_000,
+  log: 1_000_000,
+} as const;
 
 export const statuses = ["open", "in-work", "answered", "closed"] as const;
 export const StatusSchema = z.enum(statuses);
@@ -43,6 +52,7 @@ export const NameSchema = line(TEXT_LIMIT.name);
 export const FindingSchema = text(TEXT_LIMIT.finding);
 export const NoteTextSchema = text(TEXT_LIMIT.note).refine((value) => value.trim() !== "", "must not be empty");
 export const RemarkSchema = text(TEXT_LIMIT.remark);
+export const LogTextSchema = text(TEXT_LIMIT.log);
 
 const tick = z.number().refine(Number.isSafeInteger, "a whole number of ticks");
 
@@ -135,6 +145,8 @@ export const CaptureFileSchema = z.object({
   uploaded_by: z.string(),
   created_at: z.iso.datetime(),
   read: ReadSchema,
+  /** Controller log imported with it, as text (lib/diagnosis/log.ts reads it). */
+  log: z.string().nullable(),
   timebase: TimebaseSchema.nullable(),
   /** Bytes of the edge archive, or null while there is none. */
   archive_size: z.int().nullable(),

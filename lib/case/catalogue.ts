@@ -58,6 +58,9 @@ export type SaveRoster = z.input<typeof SaveRosterSchema>;
 /** PUT with the version that was read; a roster changed meanwhile answers 409 with `theirs`. */
 export const ReplaceRosterSchema = SaveRosterSchema.extend({ version: z.int().min(1) });
 export type ReplaceRoster = z.input<typeof ReplaceRosterSchema>;
+/** POST /api/rosters/import: a roster out of CSV text; GET /api/rosters/[id]/csv gives one back. */
+export const ImportRosterSchema = z.object({ name: NameSchema, csv: z.string().min(1, "is empty").max(1_000_000) });
+export type ImportRoster = z.input<typeof ImportRosterSchema>;
 export const RosterAnswerSchema = z.object({ roster: RosterViewSchema });
 
 /** A limits profile of the team: `derive(builtIn(base), name, version, changes)` of lib/limits/profile.ts. */
@@ -71,7 +74,11 @@ export const ProfileViewSchema = z.object({
 });
 export type ProfileView = z.infer<typeof ProfileViewSchema>;
 export const ProfileListSchema = z.object({ profiles: z.array(ProfileViewSchema) });
-export const SaveProfileSchema = z.object({ name: NameSchema, base: NameSchema, changes: LimitChangesSchema });
+export const SaveProfileSchema = z.object({
+  name: NameSchema.pipe(z.string().max(80)),
+  base: NameSchema,
+  changes: LimitChangesSchema,
+});
 export type SaveProfile = z.input<typeof SaveProfileSchema>;
 /** Every change is a new version; earlier ones stay, for the cases judged by them. */
 export const ReplaceProfileSchema = SaveProfileSchema.extend({ version: z.int().min(1) });

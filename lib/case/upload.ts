@@ -7,7 +7,8 @@
 //   POST   /api/uploads/[id]/complete      CompleteUpload-> CaptureAnswer  the server checks; only now a capture exists
 //   DELETE /api/uploads/[id]                             -> 204            cancels
 //   POST   /api/captures/[id]/archive      StartArchive  -> SignedArchive  then PUT the edge archive to its address
-//   PUT    /api/captures/[id]/analysis     StoreAnalysis -> CaptureAnswer  the server checks the archive and keeps both
+//   PUT    /api/captures/[id]/analysis     StoreAnalysis -> CaptureAnswer  the server checks, reads and keeps the archive
+//   PUT    /api/captures/[id]/reading      Analyse       -> CaptureAnswer  the same from the original, without a browser
 //   GET    /api/captures/[id]/archive                    -> 307 to storage
 //   GET    /api/captures/[id]/raw                        -> 307 to storage
 //   GET    /api/captures/[id]/report                     -> the report as JSON
@@ -16,7 +17,7 @@
 // A part that is there already, with the checksum of the same slice of the local file, need not be sent again.
 
 import { z } from "zod";
-import { CaptureFileSchema, ReadSchema, SummarySchema, TEXT_LIMIT, TimebaseSchema } from "./case";
+import { CaptureFileSchema, LogTextSchema, ReadSchema, TEXT_LIMIT } from "./case";
 
 const MEBI = 1_048_576;
 
@@ -35,8 +36,6 @@ export const UPLOAD_LIMIT = {
   /** Hours after which an upload nobody touched is swept. */
   stale: 48,
   archive: 512 * MEBI,
-  /** The summary as JSON text. */
-  summary: 16 * MEBI,
 } as const;
 
 const sha256 = z.string().regex(/^[0-9a-f]{64}$/, "a SHA-256 in 64 hexadecimal digits");
@@ -115,13 +114,18 @@ export type StartArchive = z.input<typeof StartArchiveSchema>;
 export const SignedArchiveSchema = z.object({ key: z.string(), url: z.string(), expires_at: z.iso.datetime() });
 export type SignedArchive = z.infer<typeof SignedArchiveSchema>;
 
+/** The server reads the archive itself under the case's settings and stores its own summary: no figure is taken on trust. */
 export const StoreAnalysisSchema = z.object({
   archive: z.object({ key: z.string().min(1).max(500), size: z.int().min(1), sha256 }),
-  summary: SummarySchema,
   read: ReadSchema,
-  timebase: TimebaseSchema,
+  /** Controller log it was judged with. */
+  log: LogTextSchema.nullable().default(null),
 });
 export type StoreAnalysis = z.input<typeof StoreAnalysisSchema>;
+
+/** PUT /api/captures/[id]/reading: the server reads the original itself and makes the archive. */
+export const AnalyseSchema = z.object({ read: ReadSchema.default({}), log: LogTextSchema.nullable().default(null) });
+export type Analyse = z.input<typeof AnalyseSchema>;
 
 /** Part length for a file: 8 MiB, or what keeps it within 10,000 parts. */
 export function partSize(size: number): number {

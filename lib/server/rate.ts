@@ -22,6 +22,8 @@ export const rules = {
   invitation: { max: 60, seconds: 60 * minute },
   "invitation-use": { max: 30, seconds: 60 * minute },
   "sign-up": { max: 60, seconds: 60 * minute },
+  /** Reads a whole capture again. */
+  report: { max: 60, seconds: 5 * minute },
   write: { max: 1200, seconds: 5 * minute },
 } as const satisfies Record<string, { max: number; seconds: number }>;
 

@@ -167,10 +167,10 @@ describe("nothing is accepted unchecked", () => {
     const cases = [
       ["shot.csv", png, "a PNG picture"],
       ["export.csv", zip, "a ZIP archive"],
-      ["dump.vcd", noise, "not a text file"],
+      ["dump.vcd", noise, "is a binary file: byte"],
       ["broken.csv.gz", Buffer.concat([Buffer.from([0x1f, 0x8b]), Buffer.alloc(64, 9)]), "cannot be unpacked"],
       ["inside.gz", gzipSync(png), "a PNG picture"],
-      ["letter.csv", Buffer.from("dear all,\nplease see below\n"), "holds no number"],
+      ["page.csv", Buffer.from("<!DOCTYPE html><title>Sign in</title>"), "is a web page"],
     ] as const;
     for (const [name, bytes, why] of cases) {
       const refused = await steps.whole(number, name, bytes);

@@ -1,4 +1,5 @@
 import { StartUploadSchema } from "@/lib/case/upload";
+import { sweepSometimes } from "@/lib/server/captures/sweep";
 import { listUploads, startUpload } from "@/lib/server/captures/upload";
 import { route } from "@/lib/server/http/route";
 
@@ -13,5 +14,8 @@ export const POST = route({
   action: "capture.upload",
   rate: "write",
   input: StartUploadSchema,
-  handle: async ({ em, viewer, input }) => Response.json({ upload: await startUpload(em, viewer, input) }, { status: 201 }),
+  handle: async ({ em, viewer, input }) => {
+    sweepSometimes();
+    return Response.json({ upload: await startUpload(em, viewer, input) }, { status: 201 });
+  },
 });

@@ -1,21 +1,41 @@
 import "server-only";
-import { createHash } from "node:crypto";
-import type { z } from "zod";
-import type { StoreAnalysisSchema } from "@/lib/case/upload";
-import { Refusal } from "@/lib/server/http/problem";
+import { createArchiveWriter } from "@/lib/engine/archive/writer";
+import type { CaptureTail, OpenCapture } from "@/lib/engine/samples/reader";
+import { host } from "./host";
 
-/** Refuses an archive that is not the bytes announced. */
-export async function checkArchive(
-  bytes: AsyncIterable<Uint8Array>,
-  { archive }: z.output<typeof StoreAnalysisSchema>,
-): Promise<void> {
-  const hash = createHash("sha256");
-  let size = 0;
-  for await (const chunk of bytes) {
-    hash.update(chunk);
-    size += chunk.length;
-  }
-  if (size !== archive.size || hash.digest("hex") !== archive.sha256) {
-    throw new Refusal("upload-mismatch", { words: "The archive in storage is not the one that was announced. Send it again." });
-  }
+/** A capture that writes its edge archive while it is read. */
+export interface Archiving {
+  readonly capture: OpenCapture;
+  /** The archive, once the capture was read to its end. */
+  finish(): Promise<Uint8Array>;
+}
+
+/** The same capture; whoever reads it makes the archive by the way, so that nothing is read twice. */
+export function archiving(opened: OpenCapture): Archiving {
+  const writer = createArchiveWriter(opened.head, host.deflate);
+  let tail: CaptureTail | undefined;
+  return {
+    capture: {
+      head: opened.head,
+      async read(sink) {
+        const outcome = await opened.read({
+          edges(block) {
+            writer.edges(block);
+            sink.edges(block);
+          },
+          tap(index, block) {
+            writer.tap(index, block);
+            sink.tap(index, block);
+          },
+          progress: (bytes) => sink.progress(bytes),
+        });
+        if (outcome.ok) tail = outcome.value;
+        return outcome;
+      },
+    },
+    async finish() {
+      if (tail === undefined) throw new Error("the capture was not read to its end");
+      return Buffer.concat(await writer.finish(tail));
+    },
+  };
 }

@@ -1,6 +1,6 @@
 import "server-only";
 import { createHash } from "node:crypto";
-import { HEAD, type Sniffed, sniff } from "./sniff";
+import { HEAD } from "./sniff";
 
 /** What a stored object really holds. */
 export interface Checked {
@@ -9,7 +9,8 @@ export interface Checked {
   readonly sha256: string;
   /** Of each slice of `slice` bytes, hexadecimal. */
   readonly slices: readonly string[];
-  readonly kind: Sniffed;
+  /** The first bytes, at most 64 KiB. */
+  readonly head: Uint8Array;
 }
 
 /** Reads an object once from end to end, in the memory of one chunk. */
@@ -36,5 +37,5 @@ export async function check(bytes: AsyncIterable<Uint8Array>, slice: number): Pr
     }
   }
   if (filled > 0) slices.push(part.digest("hex"));
-  return { size, sha256: whole.digest("hex"), slices, kind: sniff(head.subarray(0, Math.min(size, HEAD))) };
+  return { size, sha256: whole.digest("hex"), slices, head: head.subarray(0, Math.min(size, HEAD)) };
 }

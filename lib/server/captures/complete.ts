@@ -1,18 +1,16 @@
 import "server-only";
-import { LockMode } from "@mikro-orm/core";
 import type { z } from "zod";
 import { Capture } from "@/entities/capture";
-import { Case } from "@/entities/case";
 import { Upload } from "@/entities/upload";
-import { User } from "@/entities/user";
 import type { CaptureFile } from "@/lib/case/case";
 import type { CompleteUploadSchema } from "@/lib/case/upload";
 import type { MemberViewer } from "@/lib/server/access/viewer";
-import { record } from "@/lib/server/cases/events";
 import { captureFile } from "@/lib/server/cases/file";
 import type { EntityManager } from "@/lib/server/database";
 import { Refusal } from "@/lib/server/http/problem";
+import { addCapture } from "./add";
 import { type Checked, check } from "./check";
+import { typeOf } from "./sniff";
 import { store } from "./store";
 import { findUpload, lengthOf, mustBeOpen } from "./upload";
 
@@ -109,7 +107,8 @@ function refuseDifferent(row: Upload, found: Checked): void {
       words: `Part ${wrong + 1} does not have the checksum that was announced, so the file was not accepted. Upload it again.`,
     });
   }
-  if (!found.kind.ok) throw new Refusal("type-refused", { words: `“${row.name}” was not accepted. ${found.kind.why}` });
+  const type = typeOf(found.head, row.name);
+  if (!type.ok) throw new Refusal("type-refused", { words: `Not accepted: ${type.problem.message} ${type.problem.advice}` });
 }
 
 async function accept(
@@ -120,30 +119,9 @@ async function accept(
   input: z.output<typeof CompleteUploadSchema>,
 ): Promise<CaptureFile> {
   return em.transactional(async (tx) => {
-    // Locks the case, so that two captures that finish at once get different places in it.
-    const inCase = await tx.findOne(Case, { id: upload.case.id }, { lockMode: LockMode.PESSIMISTIC_WRITE });
-    if (!inCase) throw new Refusal("not-found", { detail: "the case was deleted meanwhile" });
-    const [{ next }]: { next: number }[] = await tx.execute(
-      "select coalesce(max(ordinal), 0) + 1 as next from captures where case_id = ?",
-      [inCase.id],
-    );
-    const capture = tx.create(Capture, {
-      case: tx.getReference(Case, inCase.id, { wrapped: true }),
-      ordinal: next,
-      name: upload.name,
-      size: upload.size,
-      sha256,
-      key: upload.key,
-      read: input.read,
-      uploadedBy: tx.getReference(User, viewer.user.id, { wrapped: true }),
-    });
-    await tx.flush();
+    const { name, size, key } = upload;
+    const capture = await addCapture(tx, viewer, upload.case.id, { name, size, sha256, key, read: input.read });
     await tx.nativeUpdate(Upload, { id: upload.id }, { state: "complete", capture: capture.id, touchedAt: new Date() });
-    await record(tx, inCase.id, viewer, {
-      kind: "capture.added",
-      words: `added the capture ${upload.name}`,
-      after: { sha256, size: upload.size },
-    });
     return captureFile(capture, viewer.user.name);
   });
 }

@@ -1,10 +1,22 @@
 import "server-only";
 import { Upload } from "@/entities/upload";
 import { UPLOAD_LIMIT } from "@/lib/case/upload";
-import type { EntityManager } from "@/lib/server/database";
+import { type EntityManager, fork } from "@/lib/server/database";
 import { store } from "./store";
 
 const DAYS_KEPT = 30;
+const MINUTES_BETWEEN = 30;
+let sweptAt = 0;
+
+/** Sweeps in the background when the last time is half an hour past; called wherever an upload begins. */
+export function sweepSometimes(): void {
+  const now = Date.now();
+  if (now - sweptAt < MINUTES_BETWEEN * 60_000) return;
+  sweptAt = now;
+  fork()
+    .then((em) => sweepUploads(em))
+    .catch((error: unknown) => console.error("sweeping uploads failed", error));
+}
 
 /**
  * Drops uploads that nobody touched for two days, with their parts, and forgets ended ones after a month. Safe on several

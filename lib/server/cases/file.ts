@@ -50,6 +50,7 @@ export function captureFile(row: Loaded<Capture>, uploadedBy: string): CaptureFi
     uploaded_by: uploadedBy,
     created_at: row.createdAt.toISOString(),
     read: row.read,
+    log: row.log ?? null,
     timebase: row.timebase ?? null,
     archive_size: row.archiveSize ?? null,
     summary: (row.summary as CaptureFile["summary"]) ?? null,

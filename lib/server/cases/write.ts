@@ -13,13 +13,14 @@ import type { Action } from "@/lib/case/roles";
 import { type CaseField, type CaseView, type CreateCaseSchema, caseFields, type EditCaseSchema } from "@/lib/case/wire";
 import type { MemberViewer } from "@/lib/server/access/viewer";
 import { demand, findCase, visibleCases } from "@/lib/server/access/visible";
+import { rejudge } from "@/lib/server/captures/analysis";
 import { store } from "@/lib/server/captures/store";
-import type { EntityManager } from "@/lib/server/database";
+import { type EntityManager, fork } from "@/lib/server/database";
 import { Refusal } from "@/lib/server/http/problem";
 import { checkSettings } from "./choice";
 import { record } from "./events";
 import { settingsOf } from "./file";
-import { caseView, colleague } from "./read";
+import { caseView, colleague, readCase } from "./read";
 
 /** Opens a new case under the team's next number. */
 export async function createCase(
@@ -78,7 +79,7 @@ export async function editCase(
   if (edit.assignee && !(await colleague(em, viewer, edit.assignee))) {
     throw new Refusal("input-invalid", { fields: { assignee: "is not a member of this team" } });
   }
-  return em.transactional(async (tx) => {
+  const edited = await em.transactional(async (tx) => {
     const row = await tx.findOne(
       Case,
       { $and: [visibleCases(viewer), { number }] },
@@ -89,8 +90,11 @@ export async function editCase(
     const changed = given.filter((field) => !isDeepStrictEqual(now[field], edit[field]));
     await refuseCollision(tx, viewer, row, edit.version, changed);
     if (changed.length > 0) await apply(tx, viewer, row, edit, changed, now);
-    return caseView(tx, viewer, row);
+    return { row, changed };
   });
+  // After the edit is kept: reading the archives anew can take seconds, and no row is locked meanwhile.
+  if (edited.changed.includes("settings")) await rejudge(await fork(), viewer, edited.row.id);
+  return readCase(await fork(), viewer, number);
 }
 
 interface Values {

@@ -34,6 +34,7 @@ const table = {
     status: 422,
     words: "What arrived in storage is not the file that was announced, so it was not accepted. Upload it again.",
   },
+  unreadable: { status: 422, words: "This capture cannot be read. Look at its channels and settings." },
   "upload-ended": { status: 410, words: "This upload was cancelled, refused or left alone for too long. Start it again." },
   "upload-busy": { status: 409, words: "This upload is being checked. Ask again in a moment." },
   "storage-failed": { status: 503, words: "The file storage did not answer. Nothing was lost; try again." },

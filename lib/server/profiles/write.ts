@@ -4,6 +4,7 @@ import { Profile } from "@/entities/profile";
 import { ProfileVersion } from "@/entities/profile-version";
 import { Team } from "@/entities/team";
 import type { ProfileView, ReplaceProfileSchema, SaveProfileSchema } from "@/lib/case/catalogue";
+import { PROFILE_FORMAT, profileFrom } from "@/lib/diagnosis/profile-file";
 import { isProfileName } from "@/lib/limits/profile";
 import type { MemberViewer } from "@/lib/server/access/viewer";
 import { demand } from "@/lib/server/access/visible";
@@ -17,8 +18,11 @@ function taken() {
   return { words: "There is already a limits profile of this name.", fields: { name: "is taken" } };
 }
 
-function checkBase(base: string): void {
+/** A profile that the analysis could not read is refused here, with what is wrong in it. */
+function checkProfile({ name, base, changes }: z.output<typeof SaveProfileSchema>): void {
   if (!isProfileName(base)) throw new Refusal("input-invalid", { fields: { base: "is not a built-in limits profile" } });
+  const read = profileFrom({ format: PROFILE_FORMAT, name, version: 1, base, limits: changes }, null);
+  if (!read.ok) throw new Refusal("input-invalid", { words: read.problem.message, fields: { changes: read.problem.message } });
 }
 
 export async function addProfile(
@@ -27,7 +31,7 @@ export async function addProfile(
   input: z.output<typeof SaveProfileSchema>,
 ): Promise<ProfileView> {
   demand(viewer, "profile.edit");
-  checkBase(input.base);
+  checkProfile(input);
   return em.transactional(async (tx) => {
     const row = tx.create(Profile, { team: tx.getReference(Team, viewer.team.id), ...input });
     recordBy(tx, viewer, "profile.added", row.id, { name: row.name, base: row.base });
@@ -51,7 +55,7 @@ export async function replaceProfile(
   input: z.output<typeof ReplaceProfileSchema>,
 ): Promise<ProfileView> {
   demand(viewer, "profile.edit");
-  checkBase(input.base);
+  checkProfile(input);
   return em.transactional(async (tx) => {
     const row = await findProfile(tx, viewer, id);
     if (row.version !== input.version) throw new Refusal("stale", { theirs: profileView(row) });

@@ -57,7 +57,7 @@ export async function createShare(
     return {
       share: { ...shareView(share), created_by: viewer.user.name },
       secret,
-      url: `${settings().app.url}/s/${secret}`,
+      url: `${settings().app.url}/shared/${secret}`,
       removed: [...redact(await caseFile(tx, row)).removed],
     };
   });

@@ -1,4 +1,4 @@
-import { removeCapture } from "@/lib/server/captures/analysis";
+import { removeCapture } from "@/lib/server/captures/remove";
 import { idParams } from "@/lib/server/http/params";
 import { route } from "@/lib/server/http/route";
 

@@ -1,4 +1,4 @@
-import { StoreAnalysisSchema, UPLOAD_LIMIT } from "@/lib/case/upload";
+import { StoreAnalysisSchema } from "@/lib/case/upload";
 import { storeAnalysis } from "@/lib/server/captures/analysis";
 import { idParams } from "@/lib/server/http/params";
 import { route } from "@/lib/server/http/route";
@@ -9,6 +9,5 @@ export const PUT = route({
   rate: "write",
   params: idParams,
   input: StoreAnalysisSchema,
-  limit: UPLOAD_LIMIT.summary,
   handle: async ({ em, viewer, params, input }) => ({ capture: await storeAnalysis(em, viewer, params.id, input) }),
 });

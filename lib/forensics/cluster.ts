@@ -29,7 +29,9 @@ export function clusters(features: Features): Group[] {
   // A message that does not show every figure could pass for a neighbour of two different controllers.
   const shows = (f: number) => (i: number) => features.count[f][i] > 0;
   const complete = usable.filter(shows(F_FALL)).filter(shows(F_RISE));
-  const groups = dense(features, 2 * complete.length >= usable.length ? complete : usable).map((members) => summary(features, members));
+  const groups = dense(features, 2 * complete.length >= usable.length ? complete : usable).map((members) =>
+    summary(features, members),
+  );
   return withoutMixtures(features, groups);
 }
 

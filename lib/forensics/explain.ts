@@ -16,6 +16,8 @@ export interface Trace {
   readonly scl: Float64Array;
 }
 
+/** Levels of SCL within one message err together, so they count for less than independent ones would. */
+const SCL_WEIGHT = 0.3;
 /** How many slots a freshly started clock filter is followed before the continuous one is used again. */
 const FRESH = 8;
 
@@ -33,8 +35,8 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
     const figure = habit === DATA_FALL || habit === DATA_RISE ? signature.habits[habit] : null;
     if (figure !== null && figure.count > 0) out.data[s] = single(ledger.first[e], figure, sampling.variance);
     if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
-    out.scl[s] = levelDensity(ledger.sclLevel[e], signature.sclLow);
-    if (slots.bus[s] === 0) out.sda[s] = levelDensity(ledger.sdaLevel[e], signature.sdaLow);
+    out.scl[s] = SCL_WEIGHT * levelDensity(ledger.sclLevel[e], signature.sclLow, 0.2);
+    if (slots.bus[s] === 0) out.sda[s] = levelDensity(ledger.sdaLevel[e], signature.sdaLow, 0.03);
   }
   return out;
 }
@@ -47,9 +49,10 @@ function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
   return chain.step(x, habit.mean, habit.jitter, habit.broken);
 }
 
-function levelDensity(v: number, figure: LevelFigure | null): number {
+/** `other`: share of levels that are somebody else's work too (a target may hold SCL at any low). */
+function levelDensity(v: number, figure: LevelFigure | null, other: number): number {
   if (figure === null || Number.isNaN(v)) return 0;
-  return logAdd(Math.log(0.97) + logNormal(v, figure.mean, figure.variance), Math.log(0.03));
+  return logAdd(Math.log(1 - other) + logNormal(v, figure.mean, figure.variance), Math.log(other / Math.max(figure.mean, 0.02)));
 }
 
 /** Fresh clock densities of the slots from `from` on, against the continuous ones: what to add to the sum over the tail. */

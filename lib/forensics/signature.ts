@@ -79,7 +79,7 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
       if (slots.lowHabit[s] === LOW_IN) add(scl, ledger.sclLevel[e]);
     }
   }
-  const base = figure(values[LOW_IN], sampling, false, null);
+  const base = figure(values[LOW_IN], sampling, true, null);
   const habits = values.map((list, habit) => {
     if (habit === LOW_IN) return base;
     const lengthens = habit === LOW_NINTH || habit === LOW_NEXT || habit === LOW_FIRST || habit === LOW_SR || habit === LOW_STOP;
@@ -112,9 +112,10 @@ function filled(habits: readonly (HabitFigure | null)[]): (HabitFigure | null)[]
 function figure(list: readonly number[], sampling: Sampling, lengthens: boolean, kin: HabitFigure | null): HabitFigure | null {
   if (list.length === 0) return null;
   const sorted = Float64Array.from(list).sort();
-  const half = (quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2;
   const middle = quantile(sorted, 0.5);
-  const own = kin === null ? 0 : Math.sqrt(kin.jitter + 2 * sampling.variance);
+  const half = lengthens ? middle - quantile(sorted, 0.16) : (quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2;
+  // Inside bytes the left side of the crowd gives its width; the other lows have about the same.
+  const own = kin === null ? Math.min(half, 0.05 * middle) : Math.sqrt(kin.jitter + 2 * sampling.variance);
   const centre = lengthens ? lowestCrowd(sorted, Math.max(2.2 * sampling.step, 5 * own, 0.002 * middle)) : middle;
   const reach = Math.max(1.3 * sampling.step, 4 * (lengthens ? own : Math.min(half, 0.15 * middle)), 0.001 * middle);
   let n = 0;
@@ -152,6 +153,6 @@ function lowestCrowd(sorted: Float64Array, width: number): number {
 function level(list: readonly number[]): LevelFigure | null {
   if (list.length < 3) return null;
   const sorted = Float64Array.from(list).sort();
-  const half = Math.max((quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2, 5e-4);
+  const half = Math.max((quantile(sorted, 0.84) - quantile(sorted, 0.16)) / 2, 0.0015, 0.015 * Math.abs(quantile(sorted, 0.5)));
   return { mean: quantile(sorted, 0.5), variance: half * half, count: list.length };
 }

@@ -60,8 +60,11 @@ export interface ControllerPlan {
 }
 
 export interface StretchRule {
-  /** ninth: before the acknowledge pulse; after-ack: before the first bit of the next byte; bit: before bit `bit`; every: each low. */
-  readonly where: "ninth" | "after-ack" | "bit" | "every";
+  /**
+   * ninth: before the acknowledge pulse; after-ack: before the first bit of the next byte; bit: before bit `bit`; every: each low
+   * once it is addressed; always: each low of every message, whoever is addressed.
+   */
+  readonly where: "ninth" | "after-ack" | "bit" | "every" | "always";
   readonly bit: number;
   /** Only in this byte (0 = address byte), or any when null. */
   readonly byte: number | null;

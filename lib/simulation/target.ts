@@ -136,9 +136,9 @@ export class Target {
 
   private applies(rule: StretchRule): boolean {
     if (rule.byte !== null && rule.byte !== this.byte) return false;
-    if (rule.where === "every") return true;
-    // While the address runs in, only an addressed target stretches.
+    if (rule.where === "always") return true;
     if (this.state === "address" && this.bits < 8) return false;
+    if (rule.where === "every") return true;
     if (rule.where === "ninth") return this.bits === 8;
     if (rule.where === "after-ack") return this.bits === 0 && this.byte > 0;
     return this.bits === rule.bit;

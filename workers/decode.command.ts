@@ -27,4 +27,8 @@ async function main(): Promise<number> {
   }
 }
 
-process.exitCode = await main();
+// A crash is our fault and must not read as "decoded, something failed".
+process.exitCode = await main().catch((error: unknown) => {
+  process.stderr.write(`The decoder itself failed: ${error instanceof Error ? (error.stack ?? error.message) : String(error)}\n`);
+  return 3;
+});

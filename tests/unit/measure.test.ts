@@ -1,0 +1,239 @@
+import { describe, expect, test } from "vitest";
+import { createMeasurement, type MeasureHead } from "@/lib/limits/measure";
+import { builtIn, type LimitTable, type Profile, type ProfileName } from "@/lib/limits/profile";
+import { type MeasurementRow, measurementRows } from "@/lib/limits/rows";
+import { BitTrain, type Intervals } from "../support/bit-train";
+
+// One tick is a picosecond; change times, so every interval is exact.
+const EXACT: MeasureHead = { timebase: { ticksPerSecond: 1e12, origin: "file" }, levels: "digital", sampleTicks: null };
+const VOLTS: MeasureHead = { ...EXACT, levels: "volts" };
+const PS = 1000;
+
+function rowsOf(train: BitTrain, profile: Profile, head: MeasureHead = EXACT): MeasurementRow[] {
+  const volts = head.levels === "volts";
+  const measurement = createMeasurement(head, [profile], profile.hs);
+  measurement.bits(train.block(volts));
+  return measurementRows(measurement.measured, { profile, index: 0 }, volts);
+}
+
+function row(rows: readonly MeasurementRow[], symbol: string, traffic: "F/S" | "Hs" = "F/S"): MeasurementRow {
+  const found = rows.find((candidate) => candidate.symbol === symbol && candidate.traffic === traffic);
+  if (found === undefined) throw new Error(`no row for ${symbol}`);
+  return found;
+}
+
+/** Intervals well inside every limit of a table, ticks. */
+function comfortable(table: LimitTable): Intervals {
+  const ns = (symbol: string) => table[symbol]?.min ?? 0;
+  const hz = (table.fSCL ?? table.fSMB ?? table.fSCLH).max ?? 1;
+  const slack = 1e9 / hz - ns("tLOW") - ns("tHIGH");
+  const valid = Math.min(table["tVD;DAT"]?.max ?? 1e9, table["tHD;DAT"]?.max ?? 1e9, ns("tLOW") - ns("tSU;DAT"));
+  return {
+    low: Math.ceil((ns("tLOW") + slack) * PS),
+    high: Math.ceil((ns("tHIGH") + slack) * PS),
+    hdSta: ns("tHD;STA") * 2 * PS,
+    suSta: (ns("tSU;STA") + 100) * 2 * PS,
+    suSto: ns("tSU;STO") * 2 * PS,
+    buf: 1_000_000 * PS,
+    hold: (ns("tHD;DAT") + valid) * 0.5 * PS,
+    valid: (ns("tHD;DAT") + valid) * 0.5 * PS,
+  };
+}
+
+/** How to give one bus the interval `v` of one parameter, all others comfortable. */
+type Inject = (train: BitTrain, v: number, usual: Intervals) => void;
+const whole = (train: BitTrain) => train.byte().repeated().byte().stop().start().byte().stop();
+const INJECT: Record<string, Inject> = {
+  fSCL: (t, v, u) => whole(t.start().bit(1, { high: v - u.low })),
+  fSMB: (t, v, u) => whole(t.start().bit(1, { high: v - u.low })),
+  tLOW: (t, v) => whole(t.start().bit(1, { low: v, hold: v / 4, valid: v / 4 })),
+  tHIGH: (t, v) => whole(t.start().bit(1, { high: v })),
+  "tHD;STA": (t, v) => whole(t.start({ hdSta: v })),
+  "tSU;STA": (t, v) => t.start().byte().repeated({ suSta: v }).byte().stop(),
+  "tSU;STO": (t, v) => t.start().byte().stop({ suSto: v }).start().byte().stop(),
+  tBUF: (t, v) => t.start().byte().stop({ buf: v }).start().byte().stop(),
+  "tSU;DAT": (t, v, u) => whole(t.start().bit(1, { hold: u.low - v, valid: u.low - v, low: u.low })),
+  "tHD;DAT": (t, v, u) => whole(t.start().bit(1, { hold: v, valid: Math.max(v, u.valid) })),
+  "tVD;DAT": (t, v, u) => whole(t.start().bit(1, { valid: v, low: Math.max(u.low, v + 1000 * PS) })),
+  "tVD;ACK": (t, v) => t.start().byte({ valid: v }, 8).byte().stop(),
+};
+
+const MODES: readonly ProfileName[] = [
+  "Standard-mode",
+  "Fast-mode",
+  "Fast-mode Plus",
+  "SMBus 2.0",
+  "SMBus 3 100 kHz",
+  "SMBus 3 400 kHz",
+  "SMBus 3 1 MHz",
+];
+// The least period of fSCL is shorter than the comfortable low and high together need, so it is given its own test below.
+const MINIMA = ["tLOW", "tHIGH", "tHD;STA", "tSU;STA", "tSU;STO", "tBUF", "tSU;DAT", "tHD;DAT"];
+
+describe.each(MODES)("one tick either side of each limit, %s", (name) => {
+  const profile = builtIn(name);
+  const usual = comfortable(profile.limits);
+  const measured = (symbol: string, v: number) => {
+    const train = new BitTrain(usual, 5);
+    INJECT[symbol](train, v, usual);
+    return row(rowsOf(train, profile), symbol);
+  };
+
+  test.each(MINIMA.filter((symbol) => (profile.limits[symbol].min ?? 0) > 0))("%s at least", (symbol) => {
+    const limit = (profile.limits[symbol].min ?? 0) * PS;
+    expect(measured(symbol, limit)).toMatchObject({ below: 0, above: 0, uncertain: 0, verdict: "pass" });
+    expect(measured(symbol, limit + 1)).toMatchObject({ below: 0, verdict: "pass" });
+    const broken = measured(symbol, limit - 1);
+    expect(broken).toMatchObject({ below: 1, above: 0, uncertain: 0, verdict: "fail" });
+    expect(broken.violations).toHaveLength(1);
+    expect(broken.violations[0]).toMatchObject({ side: "min", limit: limit / 1e12, measured: (limit - 1) / 1e12 });
+  });
+
+  test("the shortest period", () => {
+    const symbol = profile.spec === "SMBus" ? "fSMB" : "fSCL";
+    const limit = 1e12 / (profile.limits[symbol].max ?? 1);
+    const tight = (v: number) => {
+      const low = usual.low - Math.floor((usual.low + usual.high - limit) / 2);
+      const train = new BitTrain({ ...usual, low, high: usual.high });
+      whole(train.start().bit(1, { high: v - low }));
+      return row(rowsOf(train, profile), symbol);
+    };
+    expect(tight(limit)).toMatchObject({ below: 0, uncertain: 0 });
+    expect(tight(limit - 1)).toMatchObject({ below: 1, verdict: "fail" });
+  });
+
+  test.each(["tVD;DAT", "tVD;ACK", "tHIGH", "fSMB"].filter((symbol) => (profile.limits[symbol]?.max ?? null) !== null))(
+    "%s at most",
+    (symbol) => {
+      const limit = symbol === "fSMB" ? 1e12 / (profile.limits[symbol].min ?? 1) : (profile.limits[symbol].max ?? 0) * PS;
+      expect(measured(symbol, limit)).toMatchObject({ above: 0, uncertain: 0, verdict: "pass" });
+      expect(measured(symbol, limit - 1)).toMatchObject({ above: 0 });
+      expect(measured(symbol, limit + 1)).toMatchObject({ above: 1, verdict: "fail" });
+    },
+  );
+
+  test.each(["tr", "tf"])("%s at most, in volts", (symbol) => {
+    const limit = (profile.limits[symbol].max ?? 0) * PS;
+    const shaped = (v: number) => {
+      const train = new BitTrain({ ...usual, low: usual.low + 2_000 * PS, high: usual.high + 2_000 * PS });
+      const leads = symbol === "tr" ? { rise: v } : { end: v };
+      train.start().bit(1, {}, leads).byte().stop();
+      return row(rowsOf(train, profile, VOLTS), symbol);
+    };
+    expect(shaped(limit)).toMatchObject({ count: 1, above: 0, verdict: "pass" });
+    // Leads are single precision, whose step at 300 000 ps is a thirty-second of a picosecond.
+    expect(shaped(limit + 1)).toMatchObject({ above: 1, verdict: "fail" });
+  });
+});
+
+describe("SMBus time-outs", () => {
+  const profile = builtIn("SMBus 2.0");
+  const usual = comfortable(profile.limits);
+  test.each([
+    [35e9, 0],
+    [35e9 + 1, 1],
+  ])("a low of %d ps", (low, above) => {
+    const train = whole(new BitTrain(usual).start().bit(1, { low }));
+    expect(row(rowsOf(train, profile), "tTIMEOUT")).toMatchObject({ above });
+  });
+});
+
+describe("High-speed", () => {
+  const profile = builtIn("High-speed", 100);
+  const usual = comfortable(builtIn("Fast-mode").limits);
+  const fast = comfortable(profile.hs);
+  function hs(change: Partial<Intervals>): MeasurementRow[] {
+    const train = new BitTrain(usual).start().byte();
+    train.hs = true;
+    train.repeated(fast).byte();
+    for (let i = 0; i < 9; i++) train.bit(1, i === 4 ? { ...fast, ...change } : fast);
+    train.stop({ low: fast.low, suSto: fast.suSto });
+    train.hs = false;
+    return rowsOf(train.start().byte().stop(), profile);
+  }
+
+  test("limits switch in after the controller code and out at STOP", () => {
+    const rows = hs({});
+    expect(row(rows, "tLOW", "Hs")).toMatchObject({ limitMin: 160e-9 });
+    expect(row(rows, "tLOW", "F/S")).toMatchObject({ limitMin: 1300e-9, below: 0, count: 18 + 1 });
+    expect(row(rows, "tBUF", "F/S")).toMatchObject({ count: 1, below: 0, limitMin: 1300e-9 });
+    // High-speed is the profile asked for, so its rows come first.
+    expect(rows[0].traffic).toBe("Hs");
+  });
+
+  test.each([
+    ["tLOW", "low", 160],
+    ["tHIGH", "high", 60],
+  ] as const)("%s one tick either side", (symbol, key, ns) => {
+    const before = row(hs({}), symbol, "Hs").below;
+    expect(row(hs({ [key]: ns * PS }), symbol, "Hs").below).toBe(before);
+    expect(row(hs({ [key]: ns * PS - 1 }), symbol, "Hs").below).toBe(before + 1);
+  });
+
+  test("tHD;DAT has a maximum here", () => {
+    const before = row(hs({}), "tHD;DAT", "Hs").above;
+    expect(row(hs({ hold: 70 * PS, valid: 70 * PS }), "tHD;DAT", "Hs").above).toBe(before);
+    expect(row(hs({ hold: 70 * PS + 1, valid: 71 * PS }), "tHD;DAT", "Hs").above).toBe(before + 1);
+  });
+});
+
+describe("sampling uncertainty", () => {
+  const profile = builtIn("Standard-mode");
+  const usual = comfortable(profile.limits);
+  const sampled: MeasureHead = { ...EXACT, sampleTicks: 100 * PS };
+  const low = (v: number) =>
+    row(rowsOf(whole(new BitTrain(usual).start().bit(1, { low: v, hold: 0, valid: 0 })), profile, sampled), "tLOW");
+
+  test.each([
+    [4600, { below: 1, uncertain: 0 }],
+    [4700, { below: 0, uncertain: 1 }],
+    [4800, { below: 0, uncertain: 0 }],
+  ])("tLOW of %d ns at 100 ns a sample", (ns, expected) => {
+    expect(low(ns * PS)).toMatchObject(expected);
+  });
+
+  test("a limit that the sampling cannot judge says which rate would", () => {
+    const slow: MeasureHead = { ...EXACT, sampleTicks: 1000 * PS };
+    const rows = rowsOf(whole(new BitTrain(usual).start()), profile, slow);
+    expect(row(rows, "tSU;DAT").needsRate).toBeCloseTo(10 / 250e-9, 3);
+    expect(row(rows, "tBUF").needsRate).toBeNull();
+  });
+
+  test("edges of a logic-level capture cannot be measured", () => {
+    const rows = rowsOf(whole(new BitTrain(usual).start()), profile);
+    expect(row(rows, "tr")).toMatchObject({ count: 0, verdict: "not-measurable", min: null });
+    expect(row(rows, "tf").note).toContain("record volts");
+  });
+});
+
+test("a stretched low is not judged for tVD, its neighbours are", () => {
+  const profile = builtIn("Standard-mode");
+  const usual = comfortable(profile.limits);
+  const late = { valid: 20_000 * PS, low: 30_000 * PS };
+  const rows = rowsOf(new BitTrain(usual).start().byte().byte(late, 0).stop(), profile);
+  expect(row(rows, "tVD;DAT")).toMatchObject({ count: 15, above: 0 });
+  expect(row(rows, "tSU;DAT").count).toBe(18);
+});
+
+test("quantiles of a long capture stay within a sixty-fourth of an octave, and extremes are exact with their places", () => {
+  const profile = builtIn("Standard-mode");
+  const usual = comfortable(profile.limits);
+  const measurement = createMeasurement(EXACT, [profile], profile.hs);
+  const train = new BitTrain(usual).start();
+  const lows: number[] = [];
+  for (let i = 0; i < 9_000; i++) {
+    const low = usual.low + ((i * 7919) % 9000) * PS;
+    lows.push(low);
+    train.bit(1, { low });
+  }
+  measurement.bits(train.block());
+  const found = row(measurementRows(measurement.measured, { profile, index: 0 }, false), "tLOW");
+  lows.sort((a, b) => a - b);
+  expect(found.count).toBe(9000);
+  expect(found.min).toBe(lows[0] / 1e12);
+  expect(found.max).toBe(lows[8999] / 1e12);
+  const median = lows[4499] / 1e12;
+  expect(Math.abs((found.p50 ?? 0) - median) / median).toBeLessThan(1 / 64);
+  expect(found.smallest).toMatchObject({ transaction: 0, measured: lows[0] / 1e12 });
+  expect(found.distribution.reduce((sum, [, n]) => sum + n, 0)).toBe(9000);
+});

@@ -1,6 +1,7 @@
-// In: nothing. Out: what the page may ask of the decode worker and what it is told. Blocks are transferred, never copied: the
+// In: nothing. Out: what the page may ask of the decode worker and what it is told. Edges are transferred, never copied: the
 // worker's own arrays are gone once they were sent. "Refused" is the user's file; a call that throws is our own fault.
 
+import type { Result } from "@/lib/base/result";
 import type { AnalysisListener, AnalysisOutcome, AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
@@ -17,6 +18,11 @@ export interface DecodeApi {
   preview(source: Source, choices: ReadChoices): Promise<CapturePreview>;
   /** Reads and analyses the whole capture; the listener is a comlink proxy. */
   analyse(source: Source, settings: AnalysisSettings, listener: AnalysisListener): Promise<AnalysisOutcome>;
+}
+
+export interface ArchiveApi {
+  /** The edge archive of a file, or why the file cannot be read. */
+  archive(source: Source, choices: ReadChoices): Promise<Result<Uint8Array<ArrayBuffer>>>;
 }
 
 /** The buffers of a struct of arrays, to be transferred with it. */

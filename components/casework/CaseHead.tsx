@@ -1,7 +1,10 @@
 "use client";
 
-import { useState } from "react";
+import { type FormEvent, useState } from "react";
 import useSWR from "swr";
+import { Button } from "@/components/ui/Button";
+import { Dialog } from "@/components/ui/Dialog";
+import { Field } from "@/components/ui/Field";
 import { Select } from "@/components/ui/Select";
 import { statuses, statusWords, TEXT_LIMIT } from "@/lib/case/case";
 import { PeopleSchema } from "@/lib/case/catalogue";
@@ -17,7 +20,7 @@ export interface CaseHeadProps {
 
 const statusOptions = statuses.map((value) => ({ value, text: statusWords[value] }));
 
-/** Title, status and assignee, each edited where it stands and saved on leaving it. */
+/** Status and assignee, changed where they stand, and the way to another title. */
 export function CaseHead({ view, edit }: CaseHeadProps) {
   const may = (action: Action) => view.may.includes(action);
   const people = useSWR(may("case.assign") ? "/api/people" : null, (path) => ask({ path, answer: PeopleSchema }));
@@ -26,61 +29,62 @@ export function CaseHead({ view, edit }: CaseHeadProps) {
     text: name,
   }));
   return (
-    <div>
-      {may("case.edit") ? (
-        <Title key={view.title} title={view.title} save={(title) => edit({ title })} />
+    <div className="flex flex-wrap items-baseline gap-x-6 gap-y-1">
+      {may("case.status") ? (
+        <Select
+          inline
+          label="Status"
+          options={statusOptions}
+          value={view.status}
+          onChange={(event) => void edit({ status: statuses.find((status) => status === event.target.value) })}
+        />
       ) : (
-        <h1 className="font-serif text-head">{view.title}</h1>
+        <p className="font-sans text-label text-quiet">{statusWords[view.status]}</p>
       )}
-      <div className="screen-only mt-1 flex flex-wrap items-baseline gap-x-6 gap-y-1">
-        {may("case.status") ? (
-          <Select
-            inline
-            label="Status"
-            options={statusOptions}
-            value={view.status}
-            onChange={(event) => void edit({ status: statuses.find((status) => status === event.target.value) })}
-          />
-        ) : (
-          <p className="font-sans text-label text-quiet">{statusWords[view.status]}</p>
-        )}
-        {may("case.assign") ? (
-          <Select
-            inline
-            label="With"
-            options={[{ value: "", text: "nobody" }, ...options]}
-            value={view.assignee?.id ?? ""}
-            onChange={(event) => void edit({ assignee: event.target.value === "" ? null : event.target.value })}
-          />
-        ) : (
-          <p className="font-sans text-label text-quiet">with {view.assignee?.name ?? "nobody"}</p>
-        )}
-      </div>
+      {may("case.assign") ? (
+        <Select
+          inline
+          label="With"
+          options={[{ value: "", text: "nobody" }, ...options]}
+          value={view.assignee?.id ?? ""}
+          onChange={(event) => void edit({ assignee: event.target.value === "" ? null : event.target.value })}
+        />
+      ) : (
+        <p className="font-sans text-label text-quiet">with {view.assignee?.name ?? "nobody"}</p>
+      )}
+      {may("case.edit") && <Rename key={view.title} title={view.title} save={(title) => edit({ title })} />}
     </div>
   );
 }
 
-function Title({ title, save }: { title: string; save: (title: string) => Promise<boolean> }) {
+function Rename({ title, save }: { title: string; save: (title: string) => Promise<boolean> }) {
+  const [open, setOpen] = useState(false);
   const [text, setText] = useState(title);
-  const leave = async () => {
-    const next = text.trim();
-    if (next === title || next === "") setText(title);
-    else if (!(await save(next))) setText(next);
+  const submit = async (event: FormEvent) => {
+    event.preventDefault();
+    if (text.trim() === title || (await save(text.trim()))) setOpen(false);
   };
   return (
-    <h1 className="font-serif text-head">
-      <input
-        aria-label="Title"
-        value={text}
-        maxLength={TEXT_LIMIT.title}
-        onChange={(event) => setText(event.target.value)}
-        onBlur={() => void leave()}
-        onKeyDown={(event) => {
-          if (event.key === "Enter") event.currentTarget.blur();
-          if (event.key === "Escape") setText(title);
-        }}
-        className="w-full border-b border-transparent bg-transparent font-serif text-head hover:border-field focus-visible:border-accent"
-      />
-    </h1>
+    <>
+      <Button look="word" onClick={() => setOpen(true)}>
+        Rename
+      </Button>
+      <Dialog open={open} onOpenChange={setOpen} title="Rename this case">
+        <form onSubmit={(event) => void submit(event)} className="grid gap-5">
+          <Field
+            label="Title"
+            value={text}
+            maxLength={TEXT_LIMIT.title}
+            required
+            onChange={(event) => setText(event.target.value)}
+          />
+          <div>
+            <Button look="solid" type="submit" disabled={text.trim() === ""}>
+              Save
+            </Button>
+          </div>
+        </form>
+      </Dialog>
+    </>
   );
 }

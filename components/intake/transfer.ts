@@ -1,8 +1,8 @@
 // One file on its way to storage: in parts, straight there with signed requests, able to pause, to outlive a lost
 // connection, and to go on after a reload when the same file is picked again. No React here; a page subscribes.
 
-import type { Read } from "@/lib/case/case";
 import { type CaptureAnswer, CaptureAnswerSchema, SignedPartsSchema, type Upload, UploadAnswerSchema } from "@/lib/case/upload";
+import type { ReadChoices } from "@/lib/engine/samples/reader";
 import { ApiProblem, ask, wordsOf } from "../casework/api";
 
 export type TransferState = "waiting" | "sending" | "paused" | "offline" | "checking" | "done" | "failed" | "cancelled";
@@ -18,6 +18,7 @@ export interface TransferView {
   readonly capture: CaptureAnswer["capture"] | null;
 }
 
+let count = 0;
 const PARALLEL = 2;
 /** Seconds between tries while the connection is gone; the browser's "online" event cuts the wait short. */
 const WAITS_S = [1, 2, 4, 8, 15];
@@ -28,8 +29,10 @@ export class Transfer {
   private readonly etags = new Map<number, string>();
   private readonly underWay = new Map<number, { request: XMLHttpRequest | null; sent: number }>();
   private running = false;
+  /** Tells transfers of this page apart. */
+  readonly key = `transfer-${++count}`;
   /** How the person has the file read by now; kept with the capture. */
-  read: Read = {};
+  read: ReadChoices = {};
   private now: TransferView;
 
   constructor(

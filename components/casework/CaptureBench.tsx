@@ -1,0 +1,208 @@
+"use client";
+
+import { type ReactNode, useCallback, useEffect, useMemo, useRef, useState } from "react";
+import { Bench } from "@/components/bench/Bench";
+import { Button } from "@/components/ui/Button";
+import { Notice } from "@/components/ui/Notice";
+import { analysisSettings } from "@/lib/case/analysis";
+import type { FaultTagFile, LimitsChoice } from "@/lib/case/case";
+import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
+import type { ReadChoices } from "@/lib/engine/samples/reader";
+import type { Source } from "@/workers/protocol";
+import { editable } from "./annotations";
+import { wordsOf } from "./api";
+import { readOnServer, storeAnalysis } from "./archive";
+import { type Item, localSource } from "./items";
+import { useArchive } from "./useArchive";
+import type { CaseHandle } from "./useCase";
+
+export interface CaptureBenchProps {
+  item: Item;
+  handle: CaseHandle;
+  me: string;
+  catalogue: readonly FaultTagFile[];
+  above: ReactNode;
+  onShare: () => void;
+}
+
+/** One capture of a case on the bench: from the local file while that is at hand, else from its archive in storage. */
+export function CaptureBench({ item, handle, me, catalogue, above, onShare }: CaptureBenchProps) {
+  const { view, refresh } = handle;
+  const { capture, transfer } = item;
+  const local = transfer ? localSource(transfer) : null;
+  const kept = useArchive(local ? null : capture, `/api/captures/${capture?.id}/archive`);
+  const settings = useStable(analysisSettings(view, { read: capture?.read ?? transfer?.read ?? {}, log: capture?.log ?? null }));
+  const [read, setRead] = useState<ReadChoices | null>(null);
+  const { trouble, store } = useStoring(item, local, read ?? settings.read, refresh);
+  const shown = useStable(read === null ? settings : { ...settings, read });
+
+  const change = async (next: AnalysisSettings) => {
+    const limits: LimitsChoice | null =
+      next.limits === settings.limits
+        ? null
+        : typeof next.limits === "string"
+          ? { kind: "built-in", name: next.limits }
+          : { kind: "automatic" };
+    const judged = limits !== null || next.cb_pf !== settings.cb_pf;
+    const reread = JSON.stringify(next.read) !== JSON.stringify(shown.read);
+    if (judged) await handle.edit({ settings: { ...view.settings, ...(limits && { limits }), cb_pf: next.cb_pf } });
+    if (transfer) {
+      transfer.read = next.read;
+      setRead(next.read);
+    } else if (capture && (reread || judged)) {
+      await readOnServer(capture.id, next.read);
+      await refresh();
+    }
+  };
+
+  const source = local ?? kept.source;
+  if (source === null) {
+    return (
+      <div className="mx-auto max-w-[90rem] px-4 py-5 sm:px-10">
+        {above}
+        <h1 className="font-serif text-head">{view.title}</h1>
+        <div className="mt-4">
+          <Waiting
+            item={item}
+            trouble={kept.trouble}
+            mayRead={view.may.includes("capture.upload")}
+            refresh={refresh}
+            again={kept.again}
+          />
+        </div>
+      </div>
+    );
+  }
+  return (
+    <Bench
+      source={source}
+      title={view.title}
+      settings={shown}
+      onSettings={view.may.includes("case.edit") || transfer ? (next) => void change(next) : undefined}
+      confirmed={transfer === null}
+      of={editable(handle, capture?.id ?? null, me, catalogue)}
+      onDone={store}
+      above={
+        <>
+          {above}
+          {trouble !== null && (
+            <Notice kind="broken" title="The edge archive could not be kept">
+              {trouble}
+            </Notice>
+          )}
+        </>
+      }
+      actions={<Actions item={item} handle={handle} onShare={onShare} />}
+    />
+  );
+}
+
+function Actions({ item, handle, onShare }: Pick<CaptureBenchProps, "item" | "handle" | "onShare">) {
+  const { may } = handle.view;
+  const { capture } = item;
+  return (
+    <>
+      {may.includes("brief.print") && (
+        <Button look="word" onClick={() => window.print()}>
+          Brief
+        </Button>
+      )}
+      {capture?.summary && (
+        <a href={`/api/captures/${capture.id}/report`} className="font-sans text-label">
+          Report
+        </a>
+      )}
+      {capture && may.includes("capture.download") && (
+        <a href={`/api/captures/${capture.id}/raw`} className="font-sans text-label">
+          Original
+        </a>
+      )}
+      {may.includes("share.create") && (
+        <Button look="word" onClick={onShare}>
+          Share
+        </Button>
+      )}
+    </>
+  );
+}
+
+function Waiting({
+  item,
+  trouble,
+  mayRead,
+  refresh,
+  again,
+}: {
+  item: Item;
+  trouble: string | null;
+  mayRead: boolean;
+  refresh: () => Promise<void>;
+  again: () => void;
+}) {
+  const [busy, setBusy] = useState(false);
+  const [refused, setRefused] = useState<string | null>(null);
+  const { capture } = item;
+  if (trouble !== null) {
+    return (
+      <Notice kind="broken" title="The capture could not be fetched" actions={<Button onClick={again}>Try again</Button>}>
+        {trouble}
+      </Notice>
+    );
+  }
+  if (capture === null || capture.archive_size !== null) {
+    return <p className="font-serif text-body text-quiet">Fetching the capture …</p>;
+  }
+  const read = async () => {
+    setBusy(true);
+    try {
+      await readOnServer(capture.id, capture.read);
+      await refresh();
+    } catch (error) {
+      setRefused(wordsOf(error));
+    }
+    setBusy(false);
+  };
+  return (
+    <Notice
+      title="This capture is kept, but was not decoded to its end"
+      actions={
+        mayRead && (
+          <Button look="solid" busy={busy} onClick={() => void read()}>
+            Decode it now
+          </Button>
+        )
+      }
+    >
+      {refused ?? "The page that uploaded it was left before it had finished."}
+    </Notice>
+  );
+}
+
+/** Stores the analysis once both have happened: the local file was read to its end, and it arrived in storage. */
+function useStoring(item: Item, local: Source | null, read: ReadChoices, refresh: () => Promise<void>) {
+  const [done, setDone] = useState(0);
+  const [trouble, setTrouble] = useState<string | null>(null);
+  const stored = useRef("");
+  const id = item.capture?.id ?? null;
+  useEffect(() => {
+    const mark = `${id} ${JSON.stringify(read)}`;
+    if (done === 0 || id === null || local === null || stored.current === mark) return;
+    stored.current = mark;
+    storeAnalysis(id, local, read).then(
+      () => {
+        setTrouble(null);
+        return refresh();
+      },
+      (error) => setTrouble(wordsOf(error)),
+    );
+  }, [done, id, local, read, refresh]);
+  const store = useCallback(() => setDone((now) => now + 1), []);
+  return { trouble, store };
+}
+
+/** The same object as before while it says the same, so that nothing is read anew for it. */
+function useStable<T>(value: T): T {
+  const text = JSON.stringify(value);
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the text stands for the value
+  return useMemo(() => value, [text]);
+}

@@ -1,0 +1,64 @@
+"use client";
+
+import { useEffect, useState } from "react";
+import type { CaptureFile } from "@/lib/case/case";
+import type { Source } from "@/workers/protocol";
+import { useShelf } from "../intake/shelf";
+import type { Transfer } from "../intake/transfer";
+
+/** One capture of the case on this page: kept, or still on its way with the file at hand, or both. */
+export interface Item {
+  /** Stays the same while a transfer becomes a capture. */
+  readonly key: string;
+  readonly name: string;
+  readonly capture: CaptureFile | null;
+  readonly transfer: Transfer | null;
+}
+
+const localSources = new WeakMap<Transfer, Source>();
+
+/** The picked file as a source, the same object every time, so that it is not read anew. */
+export function localSource(transfer: Transfer): Source {
+  const known = localSources.get(transfer);
+  if (known) return known;
+  const made: Source = { kind: "file", blob: transfer.file, name: transfer.file.name };
+  localSources.set(transfer, made);
+  return made;
+}
+
+/** The captures of a case and what is on its way to it. `onArrival` is called when a transfer has become a capture. */
+export function useItems(caseNumber: number, captures: readonly CaptureFile[], onArrival: () => void): readonly Item[] {
+  const transfers = useShelf(caseNumber);
+  const [, setRound] = useState(0);
+  useEffect(() => {
+    const states = new Map(transfers.map((transfer) => [transfer, transfer.view().state]));
+    const ends = transfers.map((transfer) =>
+      transfer.subscribe(() => {
+        const { state } = transfer.view();
+        if (states.get(transfer) === state) return;
+        states.set(transfer, state);
+        setRound((now) => now + 1);
+        if (state === "done") onArrival();
+      }),
+    );
+    return () => {
+      for (const end of ends) end();
+    };
+  }, [transfers, onArrival]);
+
+  const arrived = new Map<string, Transfer>();
+  for (const transfer of transfers) {
+    const capture = transfer.view().capture;
+    if (capture) arrived.set(capture.id, transfer);
+  }
+  const kept = captures.map((capture) => {
+    const transfer = arrived.get(capture.id) ?? null;
+    return { key: transfer?.key ?? capture.id, name: capture.name, capture, transfer };
+  });
+  const known = new Set(captures.map((capture) => capture.id));
+  const coming = transfers.filter((transfer) => {
+    const { state, capture } = transfer.view();
+    return state !== "cancelled" && !(capture && known.has(capture.id));
+  });
+  return [...kept, ...coming.map((transfer) => ({ key: transfer.key, name: transfer.file.name, capture: null, transfer }))];
+}

@@ -1,6 +1,7 @@
 import Link from "next/link";
 import { Masthead } from "@/components/account/Masthead";
 import { FrontDoor } from "@/components/bench/FrontDoor";
+import { buttonClass } from "@/components/ui/Button";
 import { pageViewer } from "@/lib/server/access/page";
 import { nameplate } from "@/lib/server/access/viewer";
 
@@ -13,9 +14,13 @@ export default async function FrontPage() {
         <FrontDoor
           keep={
             viewer.kind === "member" ? (
-              <Link href="/cases/new">keep it in a case</Link>
+              <Link href="/cases/new" className={buttonClass("word")}>
+                keep it in a case
+              </Link>
             ) : (
-              <Link href="/sign-in">sign in to keep it</Link>
+              <Link href="/sign-in" className={buttonClass("word")}>
+                sign in to keep it
+              </Link>
             )
           }
         />

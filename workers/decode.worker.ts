@@ -1,5 +1,5 @@
-// The browser's decode worker: glue alone. It opens what it is given, calls the analysis, and hands every block over to the
-// page without a copy.
+// The browser's decode worker: glue alone. It opens what it is given, calls the analysis, and hands every block of edges over
+// to the page without a copy.
 
 import { expose, transfer } from "comlink";
 import { analyze } from "@/lib/diagnosis/analyze";
@@ -17,9 +17,8 @@ const api: DecodeApi = {
       head: (head) => void listener.head(head),
       edges: (block) => void listener.edges(transfer(block, buffersOf(block, block.volts))),
       tap: (index, block) => void listener.tap(index, transfer(block, buffersOf(block))),
-      transactions(block, bytes) {
-        void listener.transactions(transfer(block, buffersOf(block)), transfer(bytes, buffersOf(bytes)));
-      },
+      // Copied: the analysis itself goes on reading its transactions until it has concluded. They are few beside the edges.
+      transactions: (block, bytes) => void listener.transactions(block, bytes),
       progress: (bytes) => void listener.progress(bytes),
     });
     return outcome.ok ? transfer(outcome, buffersOf(outcome)) : outcome;

@@ -3,62 +3,80 @@
 import { type ReactNode, useEffect, useRef, useState } from "react";
 import { Button } from "@/components/ui/Button";
 import { Notice } from "@/components/ui/Notice";
+import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { Source } from "@/workers/protocol";
-import { Bench } from "./Bench";
+import { Bench, FRESH_SETTINGS } from "./Bench";
 import { Cautions } from "./Cautions";
 import { Drop } from "./Drop";
+import { SAMPLE_NAME, SAMPLE_SETTINGS, SAMPLE_TITLE, SAMPLE_URL } from "./sample";
 
 export interface FrontDoorProps {
   /** Links beside an opened capture: to keep it in a case, or to sign in. */
   keep?: ReactNode;
 }
 
+/** What lies on the bench. */
+interface Laid {
+  readonly source: Source;
+  readonly title: string;
+  readonly settings: AnalysisSettings;
+  readonly confirmed: boolean;
+}
+
 /** Reads a capture in the browser for anybody. Nothing leaves the browser here. */
 export function FrontDoor({ keep }: FrontDoorProps) {
-  const [source, setSource] = useState<Source | null>(null);
-  const [confirmed, setConfirmed] = useState(false);
+  const [laid, setLaid] = useState<Laid | null>(null);
   const [trouble, setTrouble] = useState<string | null>(null);
   const [busy, setBusy] = useState(false);
   const top = useRef<HTMLDivElement>(null);
 
   useEffect(() => {
-    if (source) top.current?.focus();
-  }, [source]);
+    if (laid) top.current?.focus({ preventScroll: true });
+  }, [laid]);
 
-  function take(files: readonly File[]) {
-    const [file] = files;
+  function take([file]: readonly File[]) {
     if (!file) return;
     setTrouble(null);
-    setConfirmed(false);
-    setSource({ kind: "file", blob: file, name: file.name });
+    setLaid({
+      source: { kind: "file", blob: file, name: file.name },
+      title: file.name,
+      settings: FRESH_SETTINGS,
+      confirmed: false,
+    });
   }
 
   async function sample() {
     setBusy(true);
     setTrouble(null);
     try {
-      const answer = await fetch(new URL("./sample.csv.gz", import.meta.url));
-      if (!answer.ok) throw new Error(`the server answered ${answer.status}`);
-      setConfirmed(true);
-      setSource({ kind: "file", blob: await answer.blob(), name: "tank4-valve-write.csv.gz" });
+      const answer = await fetch(SAMPLE_URL);
+      if (!answer.ok) throw new Error(`The server answered ${answer.status}.`);
+      const source: Source = { kind: "file", blob: await answer.blob(), name: SAMPLE_NAME };
+      setLaid({ source, title: SAMPLE_TITLE, settings: SAMPLE_SETTINGS, confirmed: true });
     } catch (error) {
       setTrouble(error instanceof Error ? error.message : String(error));
     }
     setBusy(false);
   }
 
-  if (source) {
+  function clear() {
+    window.history.replaceState(window.history.state, "", window.location.pathname);
+    setLaid(null);
+  }
+
+  if (laid) {
     return (
       <div ref={top} tabIndex={-1} className="focus-visible:outline-none">
         <Bench
-          key={source.name}
-          source={source}
-          title={source.name}
-          confirmed={confirmed}
+          source={laid.source}
+          title={laid.title}
+          settings={laid.settings}
+          onSettings={(settings) => setLaid({ ...laid, settings })}
+          confirmed={laid.confirmed}
           actions={
             <>
               {keep}
-              <Button look="word" onClick={() => setSource(null)}>
+              <Button look="word" onClick={clear}>
                 another capture
               </Button>
             </>

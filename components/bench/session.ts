@@ -74,22 +74,40 @@ interface Told {
 }
 
 async function run(worker: DecodeClient, source: Source, settings: AnalysisSettings, told: Told): Promise<void> {
-  const unlessStopped = (act: () => void) => {
-    if (!worker.stopped) act();
+  const frames = new Frames();
+  const end = (stage: Stage) => {
+    frames.close();
+    if (!worker.stopped) told.setStage(stage);
   };
   try {
     if (source.kind === "file") {
       const preview = await worker.preview(source, settings.read);
-      unlessStopped(() => told.setPreview(preview));
-      if (preview.problem) {
-        const { problem } = preview;
-        unlessStopped(() => told.setStage({ is: "refused", problem }));
-        return;
-      }
+      if (worker.stopped) return;
+      told.setPreview(preview);
+      if (preview.problem) return end({ is: "refused", problem: preview.problem });
     }
-    await read(worker, source, settings, told, unlessStopped);
+    end(await read(worker, source, settings, told, frames));
   } catch (error) {
-    unlessStopped(() => told.setStage({ is: "crashed", message: error instanceof Error ? error.message : String(error) }));
+    end({ is: "crashed", message: error instanceof Error ? error.message : String(error) });
+  }
+}
+
+/** Runs the newest of many calls once per frame, and none after it was closed. */
+class Frames {
+  #asked = 0;
+  #closed = false;
+
+  ask(act: () => void): void {
+    if (this.#closed || this.#asked !== 0) return;
+    this.#asked = requestAnimationFrame(() => {
+      this.#asked = 0;
+      act();
+    });
+  }
+
+  close(): void {
+    this.#closed = true;
+    cancelAnimationFrame(this.#asked);
   }
 }
 
@@ -98,34 +116,28 @@ async function read(
   source: Source,
   settings: AnalysisSettings,
   told: Told,
-  unlessStopped: (act: () => void) => void,
-): Promise<void> {
-  let capture: Capture | null = null;
+  frames: Frames,
+): Promise<Stage> {
+  const held: { capture: Capture | null } = { capture: null };
   let bytes = 0;
-  let frame = 0;
-  const changed = () => {
-    if (frame !== 0) return;
-    frame = requestAnimationFrame(() => {
-      frame = 0;
-      unlessStopped(() => {
-        told.grown();
-        told.setStage({ is: "reading", bytes });
-      });
+  const changed = () =>
+    frames.ask(() => {
+      if (worker.stopped) return;
+      told.grown();
+      told.setStage({ is: "reading", bytes });
     });
-  };
   const outcome = await worker.analyse(source, settings, {
     head(head) {
-      const made = new Capture(head);
-      capture = made;
-      unlessStopped(() => told.setCapture(made));
+      held.capture = new Capture(head);
+      if (!worker.stopped) told.setCapture(held.capture);
     },
     edges(block) {
-      capture?.appendEdges(block);
+      held.capture?.appendEdges(block);
       changed();
     },
-    tap: (index, block) => capture?.appendTap(index, block),
+    tap: (index, block) => held.capture?.appendTap(index, block),
     transactions(block, rows) {
-      capture?.appendTransactions(block, rows);
+      held.capture?.appendTransactions(block, rows);
       changed();
     },
     progress(now) {
@@ -133,15 +145,8 @@ async function read(
       changed();
     },
   });
-  cancelAnimationFrame(frame);
-  frame = -1;
-  unlessStopped(() => {
-    if (!outcome.ok) {
-      told.setStage({ is: "refused", problem: outcome.problem });
-      return;
-    }
-    (capture as Capture | null)?.conclude(outcome);
-    told.grown();
-    told.setStage({ is: "done" });
-  });
+  if (!outcome.ok) return { is: "refused", problem: outcome.problem };
+  held.capture?.conclude(outcome);
+  if (!worker.stopped) told.grown();
+  return { is: "done" };
 }

@@ -144,9 +144,9 @@ function Score({ scene, frame, width }: { scene: RowScene; frame: PathFrame; wid
           <text
             key={`${letter.text}${letter.at}`}
             x={letter.at * frame.scale + frame.shift}
-            y={letter.kind === "condition" ? LETTER_LINE + 2 : LETTER_LINE}
+            y={letter.kind === "condition" ? LETTER_LINE + 1 : LETTER_LINE}
             textAnchor="middle"
-            className={`${letter.kind === "condition" ? "condition text-[17px]" : "font-mono text-[11px]"} ${TONES[letter.kind]} ${letter.kind === "nack" ? "font-semibold" : ""}`}
+            className={`${letter.kind === "condition" ? "condition text-[15px]" : "font-mono text-[11px]"} ${TONES[letter.kind]} ${letter.kind === "nack" ? "font-semibold" : ""}`}
           >
             {letter.text}
           </text>

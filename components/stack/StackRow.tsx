@@ -125,7 +125,7 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
           {trace}
         </div>
       ) : (
-        <div className="grid grid-cols-[3.75rem_7.25rem_7rem_1.75rem_1fr_9.25rem] pl-2">
+        <div className="grid grid-cols-[3.25rem_6.9rem_6.9rem_1.5rem_1fr_8.5rem] pl-2">
           <div className="pt-1.5">{number}</div>
           <div className="pt-2">{time}</div>
           <div className="min-w-0 pt-2">
@@ -142,4 +142,4 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
 });
 
 /** Pixels that the words beside a trace take, by the grid above with 16 px to the rem. */
-export const BESIDE = (3.75 + 7.25 + 7 + 1.75 + 9.25) * 16 + 8;
+export const BESIDE = (3.25 + 6.9 + 6.9 + 1.5 + 8.5) * 16 + 8;

@@ -26,8 +26,22 @@ export class Capture {
     this.taps = head.taps.map(() => new EdgeColumns());
   }
 
+  /** The decoder tells of transactions before their edges have come over; they wait here until they can be drawn. */
+  #waiting: { readonly block: TransactionBlock; readonly bytes: ByteBlock }[] = [];
+
   appendEdges(block: EdgeBlock): void {
     this.edges.append(block);
+    this.#admit(this.edges.length);
+  }
+
+  #admit(edges: number): void {
+    let admitted = 0;
+    for (const { block, bytes } of this.#waiting) {
+      if (block.length > 0 && block.endEdge[block.length - 1] >= edges) break;
+      this.ledger.append(block, bytes);
+      admitted++;
+    }
+    if (admitted > 0) this.#waiting = this.#waiting.slice(admitted);
   }
 
   appendTap(index: number, block: EdgeBlock): void {
@@ -35,10 +49,12 @@ export class Capture {
   }
 
   appendTransactions(block: TransactionBlock, bytes: ByteBlock): void {
-    this.ledger.append(block, bytes);
+    this.#waiting.push({ block, bytes });
+    this.#admit(this.edges.length);
   }
 
   conclude(outcome: Extract<AnalysisOutcome, { ok: true }>): void {
+    this.#admit(Number.POSITIVE_INFINITY);
     this.summary = outcome.summary;
     this.attribution = outcome.attribution;
     this.marks = marksOf(outcome.summary);

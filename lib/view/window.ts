@@ -66,10 +66,17 @@ export function rowSpan(extent: Extent, position: Position, spare: number): RowS
   return { first, end, top: position.top + first * extent.rowHeight - position.offset };
 }
 
-/** The offset that brings a row into view with the least movement. */
+/**
+ * The offset that brings a row into view: a row just outside comes in with its neighbour, a far one is put at a third of the
+ * view, so that what follows it (a retry, say) is seen too. `above` pixels of the view are taken by what stands before the list.
+ */
 export function revealing(extent: Extent, offset: number, row: number, above: number): number {
-  const from = row * extent.rowHeight;
-  if (from < offset + above) return Math.max(0, from - above);
-  if (from + extent.rowHeight > offset + extent.view) return from + extent.rowHeight - extent.view;
-  return offset;
+  const { rowHeight, view } = extent;
+  const from = row * rowHeight;
+  const first = offset + above;
+  const last = offset + view - rowHeight;
+  if (from >= first && from + rowHeight <= last + rowHeight * 0.25) return offset;
+  if (from < first && from > first - 2 * rowHeight) return from - above;
+  if (from > last - rowHeight && from < last + 2 * rowHeight) return from + 2 * rowHeight - view;
+  return Math.max(0, from - view / 3);
 }

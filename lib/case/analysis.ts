@@ -4,12 +4,16 @@
 import type { AnalysisSettings } from "../diagnosis/analysis";
 import { readLog } from "../diagnosis/log";
 import { PROFILE_FORMAT } from "../diagnosis/profile-file";
-import type { CaptureFile, CaseFile } from "./case";
+import type { ReadChoices } from "../engine/samples/reader";
+import type { CaseFile } from "./case";
 
 type Judged = Pick<CaseFile, "settings" | "roster" | "profile">;
 
 /** What the case says about how this capture is read and judged. */
-export function analysisSettings(file: Judged, capture: Pick<CaptureFile, "read" | "log">): AnalysisSettings {
+export function analysisSettings(
+  file: Judged,
+  capture: { readonly read: ReadChoices; readonly log: string | null },
+): AnalysisSettings {
   const log = capture.log === null ? null : readLog(capture.log);
   return {
     read: capture.read,

@@ -117,7 +117,10 @@ function figure(list: readonly number[], sampling: Sampling, lengthens: boolean,
   // Inside bytes the left side of the crowd gives its width; the other lows have about the same.
   const own = kin === null ? Math.min(half, 0.05 * middle) : Math.sqrt(kin.jitter + 2 * sampling.variance);
   const centre = lengthens ? lowestCrowd(sorted, Math.max(2.2 * sampling.step, 5 * own, 0.002 * middle)) : middle;
-  const reach = Math.max(1.3 * sampling.step, 4 * (lengthens ? own : Math.min(half, 0.15 * middle)), 0.001 * middle);
+  let reach = Math.max(1.3 * sampling.step, 4 * (lengthens ? own : Math.min(half, 0.15 * middle)), 0.001 * middle);
+  // With few values the middle may lie between two of them, out of reach of both.
+  const nearest = sorted.reduce((least, x) => Math.min(least, Math.abs(x - centre)), Number.POSITIVE_INFINITY);
+  reach = Math.max(reach, nearest);
   let n = 0;
   let sum = 0;
   let square = 0;

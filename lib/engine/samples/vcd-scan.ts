@@ -188,6 +188,10 @@ export class ChangeScanner {
     const { slots, mask } = table;
     const start = this.at - from;
     let i = this.resume(bytes, from, to, start);
+    let changes = 0;
+    // Own copies of two fields: the loop runs once per word of the file.
+    let { tick: latest, dirty } = this;
+    let quiet = !dirty && !this.aside;
     while (i < to && this.problem === null) {
       const c = bytes[i];
       if (c <= 32) {
@@ -196,23 +200,46 @@ export class ChangeScanner {
         let j = i + 1;
         let tick = 0;
         for (let d = bytes[j] - 48; d >= 0 && d < 10; d = bytes[++j] - 48) tick = tick * 10 + d;
-        if (bytes[j] > 32 || j === i + 1) this.badTime(bytes, i, start);
-        else if (tick > this.tick && !this.dirty && !this.aside) this.tick = tick;
-        else this.advance(tick, start + i);
+        if (quiet && tick > latest && bytes[j] <= 32 && j > i + 1) latest = tick;
+        else {
+          this.tick = latest;
+          this.dirty = dirty;
+          if (bytes[j] > 32 || j === i + 1) this.badTime(bytes, i, start);
+          else this.advance(tick, start + i);
+          latest = this.tick;
+          dirty = this.dirty;
+          quiet = !dirty && !this.aside;
+        }
         i = j;
       } else if (KIND[c] === SCALAR) {
         let hash = 0;
         let j = i + 1;
         for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
-        this.changes++;
+        changes++;
         const net = slots[hash & mask] === 0 ? -1 : table.find(bytes, i + 1, j, hash);
         if (net >= 0) {
           sink.scalar(net, c);
-          this.dirty = true;
+          dirty = true;
+          quiet = false;
         } else if (all || j === i + 1) this.strange(c, j === i + 1, start + i);
         i = j;
-      } else i = this.other(bytes, i, to, start);
+      } else {
+        const after = c === 98 && !all ? unwatched(bytes, i, to, slots, mask) : 0;
+        if (after > 0) {
+          changes++;
+          i = after;
+          continue;
+        }
+        this.tick = latest;
+        this.dirty = dirty;
+        i = this.other(bytes, i, to, start);
+        dirty = this.dirty;
+        quiet = !dirty && !this.aside;
+      }
     }
+    this.tick = latest;
+    this.dirty = dirty;
+    this.changes += changes;
     if (this.pending !== BAD) {
       this.value = this.value.slice(this.valueFrom, this.valueTo);
       this.valueTo -= this.valueFrom;
@@ -344,6 +371,17 @@ export class ChangeScanner {
       place: { byte },
     };
   }
+}
+
+/** Index after a vector change that certainly nobody watches, or 0: most vectors of a dump need no further look. */
+function unwatched(bytes: Uint8Array, i: number, to: number, slots: Int32Array, mask: number): number {
+  let j = i + 2;
+  while (bytes[j] > 32) j++;
+  // Only the usual single space: anything else, or a code in the next chunk, takes the careful way.
+  if (++j >= to || bytes[j] <= 32) return 0;
+  let hash = 0;
+  for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
+  return slots[hash & mask] === 0 ? j : 0;
 }
 
 function word(bytes: Uint8Array, from: number): string {

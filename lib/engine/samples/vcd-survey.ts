@@ -10,11 +10,14 @@ const KEPT = 8192;
 
 interface Track {
   ticks: Float64Array;
-  values: Float64Array;
+  /** Levels of a digital line, volts of a real one. */
+  values: Uint8Array | Float64Array;
   length: number;
   last: number;
   full: boolean;
 }
+
+const FIRST = 128;
 
 /** Follows every channel until told to stop. A line released (z) is taken as high. */
 export class Survey implements InstantListener {
@@ -36,9 +39,9 @@ export class Survey implements InstantListener {
       known.set(key, slot);
       return slot;
     });
-    this.tracks = slots.map(() => ({
-      ticks: new Float64Array(8),
-      values: new Float64Array(8),
+    this.tracks = slots.map(({ real }) => ({
+      ticks: new Float64Array(FIRST),
+      values: real ? new Float64Array(FIRST) : new Uint8Array(FIRST),
       length: 0,
       last: Number.NaN,
       full: false,
@@ -59,8 +62,7 @@ export class Survey implements InstantListener {
         continue;
       }
       if (track.length === track.ticks.length) {
-        track.ticks = wider(track.ticks);
-        track.values = wider(track.values);
+        grow(track);
       }
       track.ticks[track.length] = tick;
       track.values[track.length++] = value;
@@ -81,7 +83,7 @@ export class Survey implements InstantListener {
   /** Thresholds that a real channel's own values suggest. */
   limits(offer: Offer): Limits | null {
     const track = this.trackOf(offer);
-    return track ? estimate(track.values.slice(0, track.length)) : null;
+    return track?.values instanceof Float64Array ? estimate(track.values.slice(0, track.length)) : null;
   }
 
   traces(): LineTrace[] {
@@ -104,35 +106,36 @@ export class Survey implements InstantListener {
 
   private trace(slot: number, offer: Offer): LineTrace {
     const track = this.tracks[slot];
-    const values = track.values.slice(0, track.length);
-    const limits = offer.real ? estimate(values) : null;
-    const raw = offer.real ? (limits ? levelsOf(values, limits) : new Uint8Array(track.length).fill(2)) : Uint8Array.from(values);
-    const ticks: number[] = [];
-    const levels: number[] = [];
-    let last = -1;
-    raw.forEach((value, i) => {
-      const level = value === RELEASED || value === HIGH ? 1 : value === LOW ? 0 : 2;
-      if (level === last) return;
-      last = level;
-      ticks.push(track.ticks[i]);
-      levels.push(level);
-    });
+    const limits = offer.real ? this.limits(offer) : null;
+    const raw = track.values instanceof Float64Array ? levelsOf(track.values.subarray(0, track.length), limits) : track.values;
+    const ticks = new Float64Array(track.length);
+    const levels = new Uint8Array(track.length);
+    let length = 0;
+    for (let i = 0; i < track.length; i++) {
+      const level = raw[i] === RELEASED || raw[i] === HIGH ? 1 : raw[i] === LOW ? 0 : 2;
+      if (length > 0 && level === levels[length - 1]) continue;
+      ticks[length] = track.ticks[i];
+      levels[length++] = level;
+    }
     // The first entry is the initial state, not a change.
-    const initial = levels.length > 0 ? (levels[0] as 0 | 1 | 2) : 2;
+    const initial = length === 0 || levels[0] === 2 ? 2 : levels[0] === 1 ? 1 : 0;
     return {
       id: "",
       name: "",
       initial,
-      length: Math.max(0, ticks.length - 1),
-      ticks: Float64Array.from(ticks.slice(1)),
-      levels: Uint8Array.from(levels.slice(1)),
+      length: Math.max(0, length - 1),
+      ticks: ticks.subarray(1, Math.max(1, length)),
+      levels: levels.subarray(1, Math.max(1, length)),
       ...(track.full ? { until: track.ticks[track.length - 1] } : {}),
     };
   }
 }
 
-function wider(column: Float64Array): Float64Array {
-  const next = new Float64Array(column.length * 2);
-  next.set(column);
-  return next;
+function grow(track: Track): void {
+  const ticks = new Float64Array(track.length * 4);
+  ticks.set(track.ticks);
+  const values = track.values instanceof Uint8Array ? new Uint8Array(ticks.length) : new Float64Array(ticks.length);
+  values.set(track.values);
+  track.ticks = ticks;
+  track.values = values;
 }

@@ -20,15 +20,18 @@ export function estimate(values: Float64Array): Limits | null {
   return { vdd, vil: 0.3 * vdd, vih: 0.7 * vdd };
 }
 
-/** Levels of a recorded line, with hysteresis; for the survey. */
-export function levelsOf(values: Float64Array, limits: Limits): Uint8Array {
+/** Levels of a recorded line, with hysteresis; for the survey. All unknown where there are no thresholds. */
+export function levelsOf(values: Float64Array, limits: Limits | null): Uint8Array {
+  if (limits === null) return new Uint8Array(values.length).fill(2);
   let level = 2;
-  return Uint8Array.from(values, (value) => {
-    if (Number.isNaN(value)) level = 2;
-    else if (value >= limits.vih) level = 1;
-    else if (value <= limits.vil) level = 0;
-    return level;
-  });
+  const levels = new Uint8Array(values.length);
+  for (let i = 0; i < values.length; i++) {
+    if (Number.isNaN(values[i])) level = 2;
+    else if (values[i] >= limits.vih) level = 1;
+    else if (values[i] <= limits.vil) level = 0;
+    levels[i] = level;
+  }
+  return levels;
 }
 
 /** The comparator fed with values that hold: each change is preceded by the old value at the same tick. */

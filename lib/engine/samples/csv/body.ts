@@ -27,6 +27,7 @@ export function scanPlan(layout: Layout, axis: Axis, selection: Selection): Scan
   return {
     dialect: layout.dialect,
     width: layout.width,
+    namedWidth: layout.namedWidth,
     firstLine: layout.firstLine,
     clock: axis.clock,
     modes,

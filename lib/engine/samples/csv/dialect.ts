@@ -18,6 +18,7 @@ export interface HeadTable {
   readonly first: number;
   /** Cells in a row of readings, trailing empty ones left out. */
   readonly width: number;
+  readonly texts: TextColumns;
 }
 
 interface Candidate extends HeadTable {
@@ -43,7 +44,7 @@ export function findDialect(text: string, name: string, whole: boolean): Result<
   const best =
     judged === null
       ? bestOf(body, delimiters, skipped, !whole)
-      : candidate(numbered(splitText(body, judged.dialect.delimiter, !whole).rows, skipped), judged.dialect);
+      : candidate(numbered(splitText(body, judged.dialect.delimiter, !whole).rows, skipped), judged.dialect, judged.texts);
   if (best === null) return refuse(noTable(body, name, skipped));
   const doubt = ambiguousComma(best, name);
   if (doubt !== null) return refuse(doubt);
@@ -57,8 +58,10 @@ function bestOf(text: string, delimiters: readonly Dialect["delimiter"][], skipp
     if (delimiter !== "," && !text.includes(delimiter)) continue;
     const rows = numbered(splitText(text, delimiter, partial).rows, skipped);
     for (const decimal of decimals(delimiter, text)) {
-      const found = candidate(rows, { delimiter, decimal, quoted: false });
-      if (found !== null && (best === null || found.score > best.score * 1.001)) best = found;
+      const dialect: Dialect = { delimiter, decimal, quoted: false };
+      for (const found of [candidate(rows, dialect), besideText(rows, dialect)]) {
+        if (found !== null && (best === null || found.score > best.score * 1.001)) best = found;
+      }
     }
   }
   return best;
@@ -84,25 +87,39 @@ export function trimmed(cells: readonly string[]): readonly string[] {
   return length === cells.length ? cells : cells.slice(0, length);
 }
 
-/** A row of readings: every cell says a number, a logic word or "no reading", and at least one says more than the last. */
-export function isReadings(cells: readonly string[], decimal: Dialect["decimal"]): boolean {
+/** Columns of text (notes, wall clock times) that a row of readings may carry. */
+export type TextColumns = ReadonlySet<number>;
+const NO_TEXT: TextColumns = new Set();
+
+/** A row of readings: every cell says a number, a logic word or "no reading", text columns aside, and one says more than the last. */
+export function isReadings(cells: readonly string[], decimal: Dialect["decimal"], texts: TextColumns = NO_TEXT): boolean {
   let readings = 0;
-  for (const text of cells) {
-    const kind = readText(cell, text, decimal.charCodeAt(0));
+  for (let i = 0; i < cells.length; i += 1) {
+    if (texts.has(i)) continue;
+    const kind = readText(cell, cells[i], decimal.charCodeAt(0));
     if (kind === BAD) return false;
     if (kind !== UNKNOWN) readings += 1;
   }
   return readings > 0;
 }
 
-function candidate(rows: readonly HeadRow[], dialect: Dialect): Candidate | null {
+function candidate(rows: readonly HeadRow[], dialect: Dialect, texts: TextColumns = NO_TEXT): Candidate | null {
   const widths = new Map<number, number>();
   const flags: number[] = rows.map((row) => {
     const cells = trimmed(row.cells);
-    if (cells.length === 0 || !isReadings(cells, dialect.decimal)) return 0;
+    if (cells.length === 0 || !isReadings(cells, dialect.decimal, texts)) return 0;
     widths.set(cells.length, (widths.get(cells.length) ?? 0) + 1);
     return cells.length;
   });
+  const width = widthOf(widths, rows, flags);
+  if (width === 0) return null;
+  const count = flags.filter((flag) => flag > 0 && flag <= width).length;
+  // One column fits any delimiter, so a table of several columns wins over it.
+  return { dialect, rows, first: firstOfRun(flags, rows, width), width, texts, score: count * (width > 1 ? 2 : 1) };
+}
+
+/** The commonest width; or a wider one, where the narrower rows only lack a reading in their last cells. */
+function widthOf(widths: ReadonlyMap<number, number>, rows: readonly HeadRow[], flags: readonly number[]): number {
   let width = 0;
   let count = 0;
   for (const [key, value] of widths) {
@@ -111,21 +128,41 @@ function candidate(rows: readonly HeadRow[], dialect: Dialect): Candidate | null
       count = value;
     }
   }
-  if (count === 0) return null;
-  const first = firstOfRun(flags, rows, width);
-  // One column fits any delimiter, so a table of several columns wins over it.
-  return { dialect, rows, first, width, score: count * (width > 1 ? 2 : 1) };
+  for (const [key, value] of widths) {
+    const padded = key > width && value * 50 >= count && rows.every((row, i) => flags[i] !== width || row.cells.length >= key);
+    if (padded) width = key;
+  }
+  return width;
+}
+
+/** Share of rows in which a column may hold text before it counts as a text column. */
+const TEXT_SHARE = 0.1;
+
+/** A table with columns of text beside at least two of readings. Runs of spaces are left out: prose would pass. */
+function besideText(rows: readonly HeadRow[], dialect: Dialect): Candidate | null {
+  if (dialect.delimiter === " ") return null;
+  const decimal = dialect.decimal.charCodeAt(0);
+  const kinds = rows.map((row) => trimmed(row.cells).map((text) => readText(cell, text, decimal)));
+  const filled = kinds.filter((row) => row.filter((kind) => kind !== BAD && kind !== UNKNOWN).length >= 2);
+  if (filled.length < 3) return null;
+  const width = Math.max(...filled.map((row) => row.length));
+  const texts = new Set<number>();
+  for (let i = 0; i < width; i += 1) {
+    if (filled.filter((row) => row[i] === BAD).length > filled.length * TEXT_SHARE) texts.add(i);
+  }
+  const found = texts.size === 0 || width - texts.size < 2 ? null : candidate(rows, dialect, texts);
+  return found === null ? null : { ...found, score: (found.score * 0.5 * (width - texts.size)) / width };
 }
 
 /** The first row of readings that is followed by another one (blank lines aside), or the first at all. */
 function firstOfRun(flags: readonly number[], rows: readonly HeadRow[], width: number): number {
   for (let i = 0; i < flags.length; i += 1) {
-    if (flags[i] !== width) continue;
+    if (flags[i] === 0 || flags[i] > width || rows[i].cells.length < width) continue;
     let next = i + 1;
     while (next < flags.length && trimmed(rows[next].cells).length === 0) next += 1;
     if (next < flags.length && flags[next] > 0) return i;
   }
-  return flags.indexOf(width);
+  return flags.findIndex((flag) => flag > 0 && flag <= width);
 }
 
 function quotedBody(body: string, table: HeadTable, skipped: number): boolean {

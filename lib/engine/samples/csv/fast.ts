@@ -226,7 +226,7 @@ export class FastVolts implements FastPath {
         p = start;
         break;
       }
-      const x = valueOf(number[0], number[1] + firstPower);
+      const x = unscaled(number[0], number[1] + firstPower);
       p = readDigits(bytes, p + 1, decimal);
       const ending = p < 0 ? 0 : bytes[p];
       if (ending !== LF && !(ending === CR && p + 1 < to && bytes[p + 1] === LF)) {
@@ -234,7 +234,7 @@ export class FastVolts implements FastPath {
         break;
       }
       p += ending === LF ? 1 : 2;
-      const y = valueOf(number[0], number[1] + secondPower);
+      const y = unscaled(number[0], number[1] + secondPower);
       if (x >= aLeast && x <= aMost && y >= bLeast && y <= bMost) {
         a.add(x);
         b.add(y);
@@ -263,6 +263,6 @@ export class FastVolts implements FastPath {
   }
 }
 
-function valueOf(mantissa: number, exponent: number): number {
+function unscaled(mantissa: number, exponent: number): number {
   return exponent <= 0 && exponent >= -22 ? mantissa / POWERS[-exponent] : scaled(mantissa, exponent);
 }

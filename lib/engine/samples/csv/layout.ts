@@ -25,6 +25,8 @@ export interface Layout {
   readonly firstLine: number;
   /** Cells that a row of readings must have; empty ones after them are tolerated. */
   readonly width: number;
+  /** Cells that the header names; text in those past `width` (a note on some rows) is tolerated. */
+  readonly namedWidth: number;
   readonly columns: readonly Column[];
   readonly metadata: Metadata;
   /** False where the file has no header row. */
@@ -39,13 +41,19 @@ export function layoutOf(table: HeadTable): Layout {
   const first = headerAmongReadings(table) ? nextFilled(rows, table.first + 1) : table.first;
   const before = rows.slice(0, first).filter((row) => trimmed(row.cells).length > 0);
   const header = takeHeader(before, width, dialect);
-  const judged = rows.slice(first, first + JUDGED_ROWS).filter((row) => isReadings(trimmed(row.cells), dialect.decimal));
+  const judged = rows
+    .slice(first, first + JUDGED_ROWS)
+    .filter((row) => isReadings(trimmed(row.cells), dialect.decimal, table.texts));
   const facts = Array.from({ length: width }, (_, index) => factsOf(judged, index, dialect));
-  const columns = facts.map((fact, index) => columnOf(index, header.names[index] ?? "", header.units[index] ?? "", fact));
+  const columns = facts.map((fact, index) => {
+    const column = columnOf(index, header.names[index] ?? "", header.units[index] ?? "", fact);
+    return table.texts.has(index) ? { ...column, role: "other" as const, bits: 0 } : column;
+  });
   return {
     dialect,
     firstLine: rows[first].line,
     width,
+    namedWidth: Math.max(width, trimmed(header.names).length),
     columns: settleSole(settleTime(columns, facts), facts),
     metadata: metadataOf(header.preamble),
     named: header.named,
@@ -64,7 +72,7 @@ function headerAmongReadings(table: HeadTable): boolean {
   const following = rows
     .slice(first + 1, first + 200)
     .map((row) => trimmed(row.cells))
-    .filter((cells) => cells.length === width && isReadings(cells, dialect.decimal));
+    .filter((cells) => cells.length === width && isReadings(cells, dialect.decimal, table.texts));
   if (following.length === 0) return false;
   const top = trimmed(rows[first].cells);
   let foreign = 0;
@@ -95,10 +103,8 @@ function takeHeader(before: readonly HeadRow[], width: number, dialect: Dialect)
   const rows = [...before];
   let units: readonly string[] = [];
   let names: readonly string[] = [];
-  const fits = (row: HeadRow | undefined) =>
-    row !== undefined &&
-    trimmed(row.cells).length <= Math.max(width, row.cells.length) &&
-    trimmed(row.cells).length >= Math.max(1, width - 1);
+  const fits = (row: HeadRow | undefined): row is HeadRow =>
+    row !== undefined && Math.max(row.cells.length, trimmed(row.cells).length) >= Math.max(1, width - 1);
   let last = rows[rows.length - 1];
   if (fits(last) && isUnitsRow(last.cells) && width > 1) {
     units = last.cells.map((text) => text.replace(/^#\s*/, ""));
@@ -174,26 +180,39 @@ function roleOf(name: string, unit: Unit | null, facts: Facts, ranged: boolean):
   if (isTimeName(name) && rises(numbers)) return facts.integer ? "ordinal" : "time";
   if (ranged && facts.integer) return "bits";
   if (texts.length > 1 && texts.every((text) => /^[01]{2,32}$/.test(text) && text.length === texts[0].length)) return "pattern";
-  if (numbers.every((value) => value === 0 || value === 1) && texts.every((text) => /^[+-]?[01](?:[.,]0?)?$/.test(text)))
-    return "digital";
+  // One stray number does not make a column of levels into counts: its row is set aside.
+  const levels = texts.filter((text) => /^[+-]?[01](?:[.,]0?)?$/.test(text)).length;
+  if (levels === texts.length || (levels >= 8 && levels >= texts.length * LEVEL_SHARE)) return "digital";
   return facts.integer ? "counts" : "volts";
 }
 
+/** Share of its numbers that must be 0 or 1 in a column of levels. */
+const LEVEL_SHARE = 0.98;
+
+/** Goes up and hardly ever down; a few rows out of order are set aside later. */
 function rises(numbers: readonly number[]): boolean {
-  return numbers.length < 2 || numbers[numbers.length - 1] > numbers[0];
+  const { up, down } = moves(numbers);
+  return numbers.length < 2 || (up > 0 && down * 20 <= up);
 }
 
-/** A column without a time name is the time where it never falls and rises in most rows; only the first such one. */
+function moves(numbers: readonly number[]): { readonly up: number; readonly down: number } {
+  let up = 0;
+  let down = 0;
+  for (let i = 1; i < numbers.length; i += 1) {
+    if (numbers[i] > numbers[i - 1]) up += 1;
+    else if (numbers[i] < numbers[i - 1]) down += 1;
+  }
+  return { up, down };
+}
+
+/** A column without a time name is the time where it goes up in many rows and hardly ever down; only the first such one. */
 function settleTime(columns: readonly Column[], facts: readonly Facts[]): Column[] {
   if (columns.some((column) => column.role === "time" || column.role === "ordinal")) return [...columns];
   const at = columns.findIndex((column) => {
     const { numbers } = facts[column.index];
     if ((column.role !== "volts" && column.role !== "counts") || column.unit !== null || numbers.length < 2) return false;
-    let up = 0;
-    for (let i = 1; i < numbers.length; i += 1) {
-      if (numbers[i] < numbers[i - 1]) return false;
-      if (numbers[i] > numbers[i - 1]) up += 1;
-    }
+    if (!rises(numbers)) return false;
+    const { up } = moves(numbers);
     return numbers.length < 8 ? up === numbers.length - 1 : up > numbers.length / 20;
   });
   return columns.map((column, i) => (i === at ? { ...column, role: facts[i].integer ? "ordinal" : "time" } : column));

@@ -26,6 +26,8 @@ export interface Clockwork {
 export interface ScanPlan {
   readonly dialect: Dialect;
   readonly width: number;
+  /** Cells from here on must be empty. */
+  readonly namedWidth: number;
   readonly firstLine: number;
   readonly clock: Clockwork;
   /** Per column: SKIP, LEVEL, VALUE or INSTANT. */
@@ -153,7 +155,7 @@ export class Scanner {
 
   /** Reads up to `limit` rows; returns the position after them. */
   private scan(bytes: Uint8Array, from: number, to: number, limit: number): number {
-    const { modes, slots, powers, values, width, clock } = this.plan;
+    const { modes, slots, powers, values, width, namedWidth, clock } = this.plan;
     const { delimiter, decimal, spaces } = this;
     let left = limit;
     let p = from;
@@ -187,8 +189,8 @@ export class Scanner {
             p = this.slowCell(bytes, p);
             b = bytes[p];
             const level = this.cell.level();
-            if (level < 0) reason = "cell";
-            else values[slots[column]] = level;
+            if (level >= 0) values[slots[column]] = level;
+            else if (reason === "") reason = "cell";
           }
         } else if (mode === SKIP) {
           const cellStart = p;
@@ -196,7 +198,7 @@ export class Scanner {
             p += 1;
             b = bytes[p];
           }
-          if (column >= width && p > cellStart && !blank(bytes, cellStart, p)) reason = "width";
+          if (column >= namedWidth && p > cellStart && !blank(bytes, cellStart, p)) reason = "width";
         } else {
           const cellStart = p;
           p = readDigits(bytes, cellStart, decimal);
@@ -211,7 +213,7 @@ export class Scanner {
             known = kind === NUMBER || (mode === VALUE && kind === BITS);
             m = this.cell.mantissa;
             e = this.cell.exponent;
-            if (!known && (mode === INSTANT || kind !== UNKNOWN)) reason = mode === INSTANT ? "time" : "cell";
+            if (!known && reason === "" && (mode === INSTANT || kind !== UNKNOWN)) reason = mode === INSTANT ? "time" : "cell";
           }
           if (mode === INSTANT) {
             mantissa = m;
@@ -281,13 +283,13 @@ export class Scanner {
 
   /** A row that was split elsewhere: the same cells, read by the same grammar. */
   cells(row: readonly string[]): void {
-    const { modes, slots, powers, values, width, clock } = this.plan;
-    let reason: AsideReason | null = row.length < width ? "width" : null;
+    const { modes, slots, powers, values, width, namedWidth, clock } = this.plan;
+    const extra = row.slice(namedWidth).some((text) => text.trim() !== "");
+    let reason: AsideReason | null = row.length < width || extra ? "width" : null;
     let mantissa = 0;
     let exponent = 0;
-    for (let column = 0; column < row.length && reason === null; column += 1) {
-      const mode = column < width ? modes[column] : SKIP;
-      if (column >= width && row[column].trim() !== "") reason = "width";
+    for (let column = 0; column < width && reason === null; column += 1) {
+      const mode = modes[column];
       if (mode === SKIP) continue;
       const kind = readText(this.cell, row[column], this.decimal);
       if (mode === LEVEL) {

@@ -11,6 +11,8 @@ import { Rows, type RowTaker } from "./rows";
 
 /** Rows that the level survey reads at least. */
 const LEVEL_ROWS = 20_000;
+/** Volts between the two levels of a line, at least; less is noise. */
+const LEAST_VOLTS = 0.05;
 /** Samples that a level must have before it counts as seen. */
 const LEVEL_SAMPLES = 24;
 
@@ -41,10 +43,18 @@ export async function surveyLevels(body: Body, sources: readonly LineSource[]): 
   const widest = Math.max(0, ...clusters.map((one) => (one === null ? 0 : one.high - one.low)));
   for (let i = 0; i < wanted.length; i += 1) {
     const one = clusters[i];
-    // Noise on a quiet line has two clusters too, a tiny part of a real swing apart.
-    found.set(wanted[i].column.index, one !== null && one.high - one.low >= widest * 0.15 ? one : null);
+    found.set(wanted[i].column.index, one !== null && swings(one, wanted[i], widest) ? one : null);
   }
   return found;
+}
+
+/** Noise on a quiet line has two clusters too, but a tiny part of a real swing or of its own level apart. */
+function swings(one: Clusters, source: LineSource, widest: number): boolean {
+  const swing = one.high - one.low;
+  const level = Math.max(Math.abs(one.high), Math.abs(one.low));
+  const volts = source.channel.kind === "volts";
+  if (volts && source.column.unit !== null && swing < LEAST_VOLTS) return false;
+  return swing >= widest * 0.15 && swing >= level * (volts ? 0.1 : 0.02);
 }
 
 /** Changes that a survey keeps of one line. */

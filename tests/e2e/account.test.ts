@@ -54,6 +54,8 @@ test("a form names each wrong field, goes to the first, and keeps what was typed
 });
 
 test("a lead invites, changes a role and removes; the other follows along", async ({ page, browser, complaints }) => {
+  // Two browsers and three looks for accessibility.
+  test.slow();
   complaints.expectComplaint("/team/audit");
   await foundTeam(page, "Outflow works");
   const email = address("tor");

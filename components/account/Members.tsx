@@ -75,7 +75,7 @@ function RoleChoice({ row }: { row: MemberRow }) {
 
 function Remove({ row }: { row: MemberRow }) {
   return (
-    <details className="ml-auto w-fit max-w-[34ch]">
+    <details className="ml-auto w-fit max-w-[34ch] open:min-w-52">
       <summary>Remove</summary>
       <p className="mt-2 mb-2 text-left font-serif text-body">
         {row.name} loses access to every case of the team. Notes, tags and findings stay.
@@ -93,7 +93,7 @@ function Remove({ row }: { row: MemberRow }) {
 
 function Leave() {
   return (
-    <details className="ml-auto w-fit max-w-[34ch]">
+    <details className="ml-auto w-fit max-w-[34ch] open:min-w-52">
       <summary>Leave</summary>
       <p className="mt-2 mb-2 text-left font-serif text-body">
         You lose access to every case of the team until somebody invites you again.

@@ -2,6 +2,7 @@
 
 import { duration, instant, rate } from "./format";
 import type { FaultKind, Measurement, Summary } from "./report";
+import { settledByFraming } from "./verdict";
 import { FAULT_WORDS } from "./wording";
 
 export function ledeOf(summary: Omit<Summary, "lede">): string[] {
@@ -70,7 +71,9 @@ function howItStands(summary: Omit<Summary, "lede">): string {
   const { capture, limits, verdict, measurements } = summary;
   if (capture.time_base === "assumed") return "No time base is known, so no limit was judged: give the sample interval.";
   if (verdict === "fail") return `By ${limits.profile} this capture fails.`;
-  const close = measurements.filter((row) => row.verdict === "too-close");
+  const close = measurements.filter(
+    (row) => row.verdict === "too-close" && !settledByFraming({ limitMin: row.limit_min_s, min: row.min_s }),
+  );
   if (close.length > 0) return tooClose(close, limits.profile);
   if (verdict === "undecided") return "There is nothing here to judge.";
   return `Everything that could be measured is within ${limits.profile}.`;

@@ -16,5 +16,13 @@ export function verdictOf(
   if (rows.some((row) => row.verdict === "fail")) return "fail";
   for (const [kind, count] of faults) if (count > 0 && FAULT_WORDS[kind].fails) return "fail";
   if (!judged || transactions === 0) return "undecided";
-  return rows.some((row) => row.verdict === "too-close") ? "undecided" : "pass";
+  return rows.some((row) => row.verdict === "too-close" && !settledByFraming(row)) ? "undecided" : "pass";
+}
+
+/**
+ * A hold time of 0 within the sampling is too close to call as a figure, yet the bus itself settles it: had SDA moved before SCL
+ * fell, it would have been a START or a STOP, and the bytes would not frame (UM10204 3.1.3, 3.1.4).
+ */
+export function settledByFraming(row: { readonly limitMin: number | null; readonly min: number | null }): boolean {
+  return row.limitMin === 0 && row.min !== null && row.min >= 0;
 }

@@ -65,6 +65,7 @@ async function work(people: DemoPeople, inCase: CaseView, capture: CaptureFile, 
   const [contest] = summary.contests;
   if (contest) await noteContest(people.engineer, number, capture, contest);
   else if (summary.faults.length > 0) await noteFault(people.engineer, number, capture, summary.faults[0]);
+  if (at === 0) await askAndShare(people, number);
   const status: Status = contest
     ? "in-work"
     : summary.verdict === "pass"
@@ -78,7 +79,9 @@ async function work(people: DemoPeople, inCase: CaseView, capture: CaptureFile, 
     assignee: status === "closed" ? null : people.engineer.user.id,
     finding: findingOf(summary),
   });
-  if (at > 0) return;
+}
+
+async function askAndShare(people: DemoPeople, number: number): Promise<void> {
   await addNote(await fork(), people.support, number, {
     capture: null,
     anchor: { kind: "whole" },

@@ -65,10 +65,10 @@ export async function listShares(em: EntityManager, viewer: MemberViewer, number
   demand(viewer, "case.read");
   const row = await findCase(em, viewer, number);
   const shares = await em.find(Share, { case: row.id }, { orderBy: { createdAt: "desc" }, populate: ["createdBy"] });
-  return shares.map(shareView);
+  return shares.map((share) => shareView(share, share.createdBy?.getEntity().name ?? "a former member"));
 }
 
-export function shareView(share: Share): ShareView {
+export function shareView(share: Share, createdBy: string): ShareView {
   return {
     id: share.id,
     label: share.label,
@@ -78,7 +78,7 @@ export function shareView(share: Share): ShareView {
     has_passphrase: Boolean(share.passphraseHash),
     raw_allowed: share.rawAllowed,
     view: share.view,
-    created_by: share.createdBy?.getEntity().name ?? "a former member",
+    created_by: createdBy,
     created_at: share.createdAt.toISOString(),
     opened: share.opened,
     last_opened_at: share.lastOpenedAt?.toISOString() ?? null,

@@ -55,7 +55,7 @@ export async function createShare(
       },
     });
     return {
-      share: { ...shareView(share), created_by: viewer.user.name },
+      share: shareView(share, viewer.user.name),
       secret,
       url: `${settings().app.url}/shared/${secret}`,
       removed: [...redact(await caseFile(tx, row)).removed],
@@ -95,7 +95,7 @@ export async function editShare(
       after: { share: share.id, ...told, ...(passphrase === undefined ? {} : { passphrase: passphrase !== null }) },
     });
   });
-  return shareView(share);
+  return shareView(share, share.createdBy?.getEntity().name ?? "a former member");
 }
 
 /** Ends a link at once, for everybody who has it. */
@@ -113,7 +113,7 @@ export async function revokeShare(
       await record(tx, share.case.id, viewer, { kind: "share.revoked", words: "revoked a link", after: { share: share.id } });
     });
   }
-  return shareView(share);
+  return shareView(share, share.createdBy?.getEntity().name ?? "a former member");
 }
 
 /** Checks a link's passphrase and returns the Set-Cookie line that proves it. Tries are counted per link. */

@@ -168,7 +168,6 @@ function StackReading({ capture, version, state, onState, rows, of, tagged, name
           rows={rows}
           selected={state.selected}
           onSelect={(selected) => onState({ selected })}
-          onOpen={(index) => onState(spanAround(capture, index))}
           ticksPerPixel={scale}
           shift={shift}
           onTraceWidth={setTraceWidth}

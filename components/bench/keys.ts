@@ -40,9 +40,9 @@ function writing(target: EventTarget | null): boolean {
   return target instanceof HTMLElement && (target.isContentEditable || /^(INPUT|TEXTAREA|SELECT)$/.test(target.tagName));
 }
 
-/** Whether the arrow keys belong to the stack: it has the focus, or nothing has. */
-function arrows(target: EventTarget | null): boolean {
-  return target === document.body || (target instanceof HTMLElement && target.closest("[role=listbox]") !== null);
+/** Arrow keys, Home, End and Enter belong to the stack unless the focus is on something that has its own use for them. */
+function free(target: EventTarget | null): boolean {
+  return !(target instanceof HTMLElement && target.closest("button, a, summary, [role=slider], [role=application], [role=tab]"));
 }
 
 function actionOf(event: KeyboardEvent, actions: KeyActions): (() => void) | null {
@@ -52,13 +52,13 @@ function actionOf(event: KeyboardEvent, actions: KeyActions): (() => void) | nul
     case "k":
       return actions.previous;
     case "ArrowDown":
-      return arrows(event.target) ? actions.next : null;
+      return free(event.target) ? actions.next : null;
     case "ArrowUp":
-      return arrows(event.target) ? actions.previous : null;
+      return free(event.target) ? actions.previous : null;
     case "Home":
-      return arrows(event.target) ? actions.first : null;
+      return free(event.target) ? actions.first : null;
     case "End":
-      return arrows(event.target) ? actions.last : null;
+      return free(event.target) ? actions.last : null;
     case "n":
       return () => actions.fault(1);
     case "p":
@@ -68,7 +68,7 @@ function actionOf(event: KeyboardEvent, actions: KeyActions): (() => void) | nul
     case "[":
       return () => actions.contest(-1);
     case "Enter":
-      return arrows(event.target) ? actions.open : null;
+      return free(event.target) ? actions.open : null;
     case "s":
       return actions.reading;
     case "t":

@@ -1,4 +1,6 @@
 import type { ReactNode } from "react";
+import type { FaultKind, Summary } from "@/lib/diagnosis/report";
+import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { Capture } from "@/lib/view/capture";
 import { count, duration, span } from "@/lib/view/format";
 
@@ -10,13 +12,34 @@ function Figure({ children }: { children: ReactNode }) {
   return <span className="tabular text-hex text-ink">{children}</span>;
 }
 
+function totals(summary: Summary | null): [FaultKind, number][] {
+  const counted = new Map<FaultKind, number>();
+  for (const fault of summary?.faults ?? []) counted.set(fault.kind, (counted.get(fault.kind) ?? 0) + 1);
+  // The list is bounded, the totals are not.
+  for (const kind of counted.keys()) counted.set(kind, summary?.fault_totals?.[kind] ?? counted.get(kind) ?? 0);
+  return [...counted];
+}
+
+function sum(entries: readonly [FaultKind, number][]): number {
+  return entries.reduce((total, [, number]) => total + number, 0);
+}
+
+function failing(summary: Summary | null): number {
+  return sum(totals(summary).filter(([kind]) => FAULT_WORDS[kind].fails));
+}
+
+function all(summary: Summary | null): number {
+  return sum(totals(summary));
+}
+
 const VERDICT_WORDS = { pass: "within limits", fail: "outside limits", undecided: "not decided" } as const;
 
 /** The capture in figures, one line. */
 export function Facts({ capture }: { capture: Capture }) {
   const { head, summary, ledger } = capture;
   const { record } = capture;
-  const faults = summary ? summary.faults.length : 0;
+  const faults = failing(summary);
+  const remarks = all(summary) - faults;
   const contests = summary ? summary.contests.length : 0;
   return (
     <ul className="flex flex-wrap gap-x-6 gap-y-1 font-sans text-label text-quiet">
@@ -34,6 +57,11 @@ export function Facts({ capture }: { capture: Capture }) {
           <Fact>
             <Figure>{count(faults)}</Figure> {faults === 1 ? "fault" : "faults"}
           </Fact>
+          {remarks > 0 && (
+            <Fact>
+              <Figure>{count(remarks)}</Figure> worth knowing
+            </Fact>
+          )}
           <Fact>
             judged by <Figure>{summary.limits.profile}</Figure>
             {summary.limits.source && `, ${summary.limits.source}`}: {VERDICT_WORDS[summary.verdict]}

@@ -45,7 +45,7 @@ export function TransactionPart({ capture, index, device }: TransactionPartProps
         <dd className="tabular text-hex">{instant(row.startTick, base, timeDigits(base, head.sampleTicks))}</dd>
         <dt className="text-quiet">lasts</dt>
         <dd className="tabular text-hex">{span(row.endTick - row.startTick, base)}</dd>
-        {index > 0 && (
+        {index > 0 && row.opens === "S" && (
           <>
             <dt className="text-quiet">after {count(index - 1)}</dt>
             <dd className="tabular text-hex">{span(row.startTick - ledger.endTick(index - 1), base)}</dd>
@@ -67,7 +67,8 @@ export function TransactionPart({ capture, index, device }: TransactionPartProps
       <ul className="mt-2 space-y-2 font-serif text-body">
         {own.faults.map((fault) => (
           <li key={`${fault.kind}${fault.time_s}`}>
-            <span className="italic text-broken">{faultWords(fault.kind)}</span> {fault.detail}
+            <span className={`italic ${FAULT_WORDS[fault.kind].fails ? "text-broken" : ""}`}>{faultWords(fault.kind)}</span>{" "}
+            {fault.detail}
             <span className="block text-quiet">{FAULT_WORDS[fault.kind].advice}</span>
           </li>
         ))}

@@ -1,6 +1,6 @@
 "use client";
 
-import { type KeyboardEvent, useCallback, useEffect, useLayoutEffect, useRef, useState } from "react";
+import { useCallback, useEffect, useLayoutEffect, useRef, useState } from "react";
 import type { BenchNote, BenchTag, TagKind } from "@/components/bench/annotations";
 import { TRACE_HEIGHT } from "@/components/score/RowTrace";
 import type { Capture } from "@/lib/view/capture";
@@ -15,8 +15,6 @@ export interface StackProps {
   rows: Uint32Array | null;
   selected: number | null;
   onSelect: (index: number) => void;
-  /** Enter on a row: look at it in the strip. */
-  onOpen: (index: number) => void;
   ticksPerPixel: number;
   /** Pixels by which every trace is moved to the left. */
   shift: number;
@@ -149,13 +147,6 @@ export function Stack(props: StackProps) {
     [onSelect],
   );
 
-  function onKeyDown(event: KeyboardEvent<HTMLDivElement>) {
-    if (event.key === "Enter" && selected !== null) {
-      event.preventDefault();
-      props.onOpen(selected);
-    }
-  }
-
   const { onZoom, onShift } = props;
   useEffect(() => {
     const element = list.current;
@@ -193,7 +184,6 @@ export function Stack(props: StackProps) {
       tabIndex={0}
       aria-label="Transactions"
       aria-activedescendant={selected === null ? undefined : `transaction-${selected}`}
-      onKeyDown={onKeyDown}
       className="screen-only relative border-t border-ink"
       style={{ height: Math.max(layout.rowHeight, trackHeight(extent)) }}
     >

@@ -161,7 +161,7 @@ export function Overview(props: OverviewProps) {
   const faults = capture.summary?.faults.length ?? 0;
   const contests = capture.summary?.contests.length ?? 0;
   return (
-    <div className="border-y border-hairline">
+    <div className="sticky top-0 z-10 border-y border-hairline bg-paper print:static">
       <canvas
         ref={canvas}
         role="slider"

@@ -2,6 +2,7 @@
 
 import { type KeyboardEvent, useEffect, useRef, useState } from "react";
 import type uPlot from "uplot";
+import "uplot/dist/uPlot.min.css";
 import type { Capture } from "@/lib/view/capture";
 import { duration, instant, span as spanWords, timeDigits } from "@/lib/view/format";
 import { type Bounds, endOf, fitted, panned, type TimeScale, zoomed } from "@/lib/view/scale";
@@ -44,7 +45,6 @@ export function StripTrace(props: StripTraceProps) {
   latest.current = { shown, bounds };
 
   // The plot is made again for another capture or theme; everything else is told to it.
-  // biome-ignore lint/correctness/useExhaustiveDependencies: made for a capture and an ink, not for each span
   useEffect(() => {
     const element = host.current;
     if (!element || !ink) return;

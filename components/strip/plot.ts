@@ -21,7 +21,9 @@ const GUTTER = 56;
 const LANE = 30;
 const PITCH = 46;
 const SCORE = 34;
-const ANALOG = 130;
+/** Height of one voltage lane, and the space above it. */
+const ANALOG = 84;
+const ANALOG_GAP = 14;
 const AXIS = 34;
 
 function lanesOf(capture: Capture): Lane[] {
@@ -52,86 +54,98 @@ export interface Live {
   readonly ink: Ink;
 }
 
+/** Heights of everything in the plot, pixels from its top. */
+interface Plan {
+  readonly lanes: readonly Lane[];
+  readonly score: number;
+  readonly digital: number;
+  /** Tops of the voltage lanes of SCL and SDA; none for a digital capture. */
+  readonly levels: readonly number[];
+  readonly height: number;
+}
+
+function planOf(capture: Capture): Plan {
+  const { lanes, score, digital } = place(lanesOf(capture));
+  const analog = capture.head.levels === "volts" && capture.head.vdd_v !== null;
+  const levels = analog ? [0, 1].map((lane) => digital + ANALOG_GAP + lane * (ANALOG + ANALOG_GAP)) : [];
+  return { lanes, score, digital, levels, height: digital + levels.length * (ANALOG + ANALOG_GAP) };
+}
+
+/** Volts shown in a voltage lane. */
+function voltSpan(capture: Capture): { readonly bottom: number; readonly top: number } {
+  const vdd = capture.head.vdd_v ?? 1;
+  return { bottom: -0.08 * vdd, top: 1.12 * vdd };
+}
+
+/** The range of a whole plot axis that puts the lane's volts between the lane's top and its foot. */
+function laneRange(plan: Plan, lane: number, capture: Capture): [number, number] {
+  const { bottom, top } = voltSpan(capture);
+  const above = plan.levels[lane] ?? 0;
+  const perPixel = (top - bottom) / ANALOG;
+  return [bottom - (plan.height - above - ANALOG) * perPixel, top + above * perPixel];
+}
+
 /** The plot draws axis, cursor and levels; the lanes are painted into it from the edges themselves. */
 export function makePlot(host: HTMLElement, width: number, live: () => Live, onCursor: (tick: number | null) => void): uPlot {
   const { capture } = live().props;
-  const { ink } = live();
-  const { lanes, score, digital } = place(lanesOf(capture));
-  const analog = capture.head.levels === "volts" && capture.head.vdd_v !== null;
-  const height = digital + (analog ? ANALOG : 0) + AXIS;
-  const vdd = capture.head.vdd_v ?? 1;
-  const [bottom, top] = [-0.08 * vdd, 1.12 * vdd];
-  const share = analog ? ANALOG / (digital + ANALOG) : 1;
+  const plan = planOf(capture);
   const scaleNow = (plot: uPlot): TimeScale => {
     const { min = 0, max = 1 } = plot.scales.x;
     return fitted({ from: min, to: max }, plot.over.clientWidth);
   };
   const stroke = () => live().ink.quiet;
-  const font = `12px ${ink.mono}`;
-  return new uPlot(
-    {
-      width,
-      height,
-      legend: { show: false },
-      cursor: { y: false, drag: { x: true, y: false, setScale: false }, points: { show: false } },
-      scales: {
-        x: { time: false, auto: false, range: (_, min, max) => [min, max] },
-        v: { auto: false, range: () => [bottom, bottom + (top - bottom) / share] },
-      },
-      axes: [
-        {
-          scale: "x",
-          stroke,
-          font,
-          size: AXIS,
-          grid: { show: false },
-          ticks: { stroke, width: 1, size: 5 },
-          splits: (plot) => splits(scaleNow(plot), live().props.capture),
-          values: (plot, values) => {
-            const base = live().props.capture.head.timebase;
-            const step = stepOf(scaleNow(plot), base.ticksPerSecond);
-            return values.map((value) => axisTime(value / base.ticksPerSecond, step, base));
-          },
-        },
-        {
-          scale: "v",
-          show: true,
-          stroke,
-          font,
-          size: GUTTER,
-          grid: { show: false },
-          ticks: { show: false },
-          splits: () => (analog ? [0, vdd / 2, vdd] : []),
-          values: (_, values) => values.map((value) => volts(value)),
-        },
-      ],
-      series: [
-        {},
-        { scale: "v", stroke: () => live().ink.ink, width: 1, points: { show: false }, spanGaps: false },
-        { scale: "v", stroke: () => live().ink.ink, width: 2, points: { show: false }, spanGaps: false },
-      ],
-      hooks: {
-        draw: [(plot) => drawLanes(plot, { lanes, score, digital, analog, share, bottom, top }, live(), scaleNow(plot))],
-        setCursor: [
-          (plot) =>
-            onCursor(plot.cursor.left === undefined || plot.cursor.left < 0 ? null : plot.posToVal(plot.cursor.left, "x")),
-        ],
-        setSelect: [
-          (plot) => {
-            const { left, width: wide } = plot.select;
-            if (wide > 5) live().props.onSpan({ from: plot.posToVal(left, "x"), to: plot.posToVal(left + wide, "x") });
-            plot.setSelect({ left: 0, top: 0, width: 0, height: 0 }, false);
-          },
-        ],
-      },
+  const bare = { show: true, size: GUTTER, grid: { show: false }, ticks: { show: false }, splits: () => [] };
+  const options: uPlot.Options = {
+    width,
+    height: plan.height + AXIS,
+    legend: { show: false },
+    padding: [0, 0, 0, 0],
+    cursor: { y: false, drag: { x: true, y: false, setScale: false }, points: { show: false } },
+    scales: {
+      x: { time: false, auto: false, range: (_, min, max) => [min, max] },
+      scl: { auto: false, range: () => laneRange(plan, 0, capture) },
+      sda: { auto: false, range: () => laneRange(plan, 1, capture) },
     },
-    [
-      [0, 1],
-      [null, null],
-      [null, null],
+    axes: [
+      {
+        scale: "x",
+        stroke,
+        font: `12px ${live().ink.mono}`,
+        size: AXIS,
+        grid: { show: false },
+        ticks: { stroke, width: 1, size: 5 },
+        splits: (plot) => splits(scaleNow(plot), capture),
+        values: (plot, values) => {
+          const base = capture.head.timebase;
+          const step = stepOf(scaleNow(plot), base.ticksPerSecond);
+          return values.map((value) => axisTime(value / base.ticksPerSecond, step, base));
+        },
+      },
+      { ...bare, scale: "scl" },
     ],
-    host,
-  );
+    series: [
+      {},
+      { scale: "scl", stroke: () => live().ink.ink, width: 1, points: { show: false }, spanGaps: false },
+      { scale: "sda", stroke: () => live().ink.ink, width: 2, points: { show: false }, spanGaps: false },
+    ],
+    hooks: {
+      draw: [(plot) => drawLanes(plot, plan, live(), scaleNow(plot))],
+      setCursor: [(plot) => onCursor((plot.cursor.left ?? -1) < 0 ? null : plot.posToVal(plot.cursor.left ?? 0, "x"))],
+      setSelect: [
+        (plot) => {
+          const { left, width: wide } = plot.select;
+          if (wide > 5) live().props.onSpan({ from: plot.posToVal(left, "x"), to: plot.posToVal(left + wide, "x") });
+          plot.setSelect({ left: 0, top: 0, width: 0, height: 0 }, false);
+        },
+      ],
+    },
+  };
+  const nothing: uPlot.AlignedData = [
+    [0, 1],
+    [null, null],
+    [null, null],
+  ];
+  return new uPlot(options, nothing, host);
 }
 
 function stepOf(scale: TimeScale, perSecond: number): number {
@@ -147,17 +161,7 @@ function splits(scale: TimeScale, capture: Capture): number[] {
   return list;
 }
 
-interface Drawn {
-  readonly lanes: readonly Lane[];
-  readonly score: number;
-  readonly digital: number;
-  readonly analog: boolean;
-  readonly share: number;
-  readonly bottom: number;
-  readonly top: number;
-}
-
-function drawLanes(plot: uPlot, drawn: Drawn, { props, ink }: Live, scale: TimeScale): void {
+function drawLanes(plot: uPlot, plan: Plan, { props, ink }: Live, scale: TimeScale): void {
   const context = plot.ctx;
   const ratio = uPlot.pxRatio;
   context.save();
@@ -166,38 +170,45 @@ function drawLanes(plot: uPlot, drawn: Drawn, { props, ink }: Live, scale: TimeS
   context.fillStyle = ink.quiet;
   context.font = `12px ${ink.sans}`;
   context.textAlign = "right";
-  for (const lane of drawn.lanes) context.fillText(lane.label, -8, (lane.high + lane.low) / 2 + 4);
+  for (const lane of plan.lanes) context.fillText(lane.label, -8, (lane.high + lane.low) / 2 + 4);
+  plan.levels.forEach((top, lane) => {
+    paintLevels(context, props.capture, top, scale, ink);
+    context.fillText(lane === 0 ? "SCL" : "SDA", -8, top + 10);
+  });
   context.beginPath();
   context.rect(0, 0, scale.width, plot.bbox.height / ratio);
   context.clip();
-  paintLanes(context, drawn.lanes, scale, props.capture.record, ink);
-  paintScore(context, props.capture, scale, drawn.score, ink);
-  paintMarks(context, props.capture, scale, props.selected, drawn.digital - 4, ink);
-  if (drawn.analog) paintThresholds(context, plot, props.capture, scale, ink);
+  paintLanes(context, plan.lanes, scale, props.capture.record, ink);
+  paintScore(context, props.capture, scale, plan.score, ink);
+  paintMarks(context, props.capture, scale, props.selected, plan.digital - 4, ink);
   context.restore();
 }
 
-/** VIL and VIH as hairlines across the levels. */
-function paintThresholds(context: CanvasRenderingContext2D, plot: uPlot, capture: Capture, scale: TimeScale, ink: Ink): void {
+/** 0 V, VIL, VIH and VDD as faint lines across one voltage lane, named in the gutter. */
+function paintLevels(context: CanvasRenderingContext2D, capture: Capture, laneTop: number, scale: TimeScale, ink: Ink): void {
+  const { bottom, top } = voltSpan(capture);
+  const { vil_v, vih_v, vdd_v } = capture.head;
   context.strokeStyle = ink.hairline;
   context.lineWidth = 1;
-  context.setLineDash([6, 4]);
-  context.font = `11px ${ink.sans}`;
-  context.fillStyle = ink.quiet;
-  context.textAlign = "left";
-  for (const [level, label] of [
-    [capture.head.vil_v, "VIL"],
-    [capture.head.vih_v, "VIH"],
+  context.textAlign = "right";
+  for (const [level, dashed] of [
+    [0, false],
+    [vil_v, true],
+    [vih_v, true],
+    [vdd_v, false],
   ] as const) {
     if (level === null) continue;
-    const y = Math.round(plot.valToPos(level, "v")) + 0.5;
+    const y = Math.round(laneTop + ((top - level) / (top - bottom)) * ANALOG) + 0.5;
+    context.setLineDash(dashed ? [6, 4] : []);
     context.beginPath();
-    context.moveTo(26, y);
+    context.moveTo(0, y);
     context.lineTo(scale.width, y);
     context.stroke();
-    context.fillText(label, 2, y + 4);
+    context.font = `11px ${ink.mono}`;
+    context.fillText(level === vdd_v ? "" : volts(level), -8, y + 4);
   }
   context.setLineDash([]);
+  context.font = `12px ${ink.sans}`;
 }
 
 export function show(plot: uPlot, capture: Capture, shown: Bounds): void {

@@ -2,6 +2,7 @@
 // faults and contests. Built once when the summary arrives.
 
 import type { Contest, Fault, Stretch, Summary, Violation } from "../diagnosis/report";
+import { FAULT_WORDS } from "../diagnosis/wording";
 
 /** What is known about one transaction beyond its own bits. */
 export interface RowMarks {
@@ -27,6 +28,7 @@ export interface Marks {
   readonly of: (transaction: number) => RowMarks;
   /** Transactions, ascending, each once. */
   readonly contested: readonly number[];
+  /** With a fault that fails the capture, or outside a limit. Remarks (a spike that was filtered out, say) are not among them. */
   readonly faulty: readonly number[];
   readonly stretched: readonly number[];
   readonly unanswered: readonly number[];
@@ -66,7 +68,7 @@ export function marksOf(summary: Summary | null): Marks {
   for (const fault of summary?.faults ?? []) {
     if (fault.transaction === null) continue;
     at(fault.transaction).faults.push(fault);
-    faulty.add(fault.transaction);
+    if (FAULT_WORDS[fault.kind].fails) faulty.add(fault.transaction);
     if (fault.kind === "address-nack") unanswered.add(fault.transaction);
   }
   for (const violation of summary?.violations ?? []) {

@@ -2,6 +2,7 @@
 // pixels of the whole recording, and where faults, contests, tags and notes stand.
 
 import type { Summary } from "../diagnosis/report";
+import { FAULT_WORDS } from "../diagnosis/wording";
 import type { EdgeColumns } from "./edges";
 import type { Ledger } from "./ledger";
 import { type Bounds, fitted, type TimeScale, tickAt, xOf } from "./scale";
@@ -84,6 +85,7 @@ export function overviewScene(input: OverviewInput, width: number): OverviewScen
     places.push({ kind: "contest", tick: contest.decided_s * input.ticksPerSecond, transaction: contest.transaction });
   }
   for (const fault of input.summary?.faults ?? []) {
+    if (!FAULT_WORDS[fault.kind].fails) continue;
     places.push({ kind: "fault", tick: fault.time_s * input.ticksPerSecond, transaction: fault.transaction });
   }
   for (const violation of input.summary?.violations ?? []) {

@@ -199,6 +199,30 @@ describe("time axis", () => {
     );
   });
 
+  test("a time column for each channel, of different times and lengths", async () => {
+    const scl = steps.filter((step, i) => i === 0 || step.scl !== steps[i - 1].scl);
+    const sda = steps.filter((step, i) => i === 0 || step.sda !== steps[i - 1].sda);
+    const lines = scl.map(
+      (step, i) => `${seconds(step.at)},${step.scl},${i < sda.length ? `${seconds(sda[i].at)},${sda[i].sda}` : ","}`,
+    );
+    const read = await readText(`T1 [s],SCL,T2 [s],SDA\n${lines.join("\n")}\n`);
+    same(read);
+    expect(codes(read)).toContain("own-times");
+    const volts = rows.map(
+      (s, i) => `${seconds(s.at)},${(s.scl * 3.3).toFixed(2)},${seconds(s.at + 120)},${(rows[i].sda * 3.3).toFixed(2)}`,
+    );
+    const skewed = await readText(`T1 [s],SCL [V],T2 [s],SDA [V]\n${volts.join("\n")}\n`);
+    expect(skewed.tail.sdaEdges).toBe(36);
+    expect(skewed.tail.sclEdges).toBe(168);
+    expect(skewed.ticks.every((tick, i) => i === 0 || tick > skewed.ticks[i - 1])).toBe(true);
+  });
+
+  test("few digits with exponents: fine at first, coarser than the step later", async () => {
+    const read = await readText(`Time [s],SCL,SDA\n${table(rows, (s) => `${(s.at * 1e-9).toExponential(2)},${s.scl},${s.sda}`)}`);
+    expect(codes(read)).toContain("time-rebuilt");
+    same(read);
+  });
+
   test("times past 2^53 ps are kept in coarser steps, and said", async () => {
     const read = await readText(
       `Time [s],SCL,SDA\n${table(rows, (s) => `${(20_000 + s.at * 1e-9).toFixed(7)},${s.scl},${s.sda}`)}`,

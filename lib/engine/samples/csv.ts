@@ -154,7 +154,7 @@ function openFound(
     gzip,
     timebase: body.axis.timebase,
     startTick,
-    sampleTicks: body.axis.pace.step === null ? null : Math.round(body.axis.pace.step),
+    sampleTicks: body.axis.sampleTicks,
     channels: sources.map((source) => source.channel),
     proposal: { scl: proposal.scl, sda: proposal.sda, basis: proposal.basis, reason: proposal.reason },
     taps: choices.taps ?? [],

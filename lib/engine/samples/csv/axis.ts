@@ -15,6 +15,8 @@ export interface Axis {
   readonly timebase: Timebase;
   readonly clock: Clockwork;
   readonly pace: Pace;
+  /** Ticks between samples for the head; null for change times only. */
+  readonly sampleTicks: number | null;
   readonly warnings: readonly Warning[];
 }
 
@@ -28,7 +30,26 @@ export function axisOf(layout: Layout, rows: readonly HeadRow[], choices: ReadCh
   const stated = statedTiming(layout.metadata, layout.dialect.decimal);
   const readings = rows.filter((row) => row.line >= layout.firstLine && trimmed(row.cells).length >= layout.width);
   if (column === null || column.role === "ordinal") return countedAxis(layout, column, readings, stated, choices);
-  return timedAxis(layout, column, readings, choices, growth);
+  const axis = timedAxis(layout, column, readings, choices, growth);
+  return layout.ownTimes ? ownAxis(axis) : axis;
+}
+
+/** Rows of channels with their own times are only numbered; each line keeps its own instants. */
+function ownAxis(axis: Axis): Axis {
+  const warning: Warning = {
+    code: "own-times",
+    message: "Each channel has a time column of its own; their samples were merged by time.",
+  };
+  return {
+    ...axis,
+    clock: { column: -1, power: 0, factor: 1, start: 0 },
+    pace: { step: null, rebuilt: false, grain: 1, relative: 0 },
+    warnings: [...axis.warnings, warning],
+  };
+}
+
+function sampleTicksOf(pace: Pace): number | null {
+  return pace.step === null ? null : Math.round(pace.step);
 }
 
 interface Instants {
@@ -71,8 +92,7 @@ function timedAxis(layout: Layout, column: Column, rows: readonly HeadRow[], cho
   const last = found.mantissas.length - 1;
   let power = 12;
   if (last >= 0) {
-    const at = (i: number) => scaled(found.mantissas[i], found.exponents[i] + unitPower);
-    const reach = Math.max(Math.abs(at(0)), Math.abs(at(0)) + Math.abs(at(last) - at(0)) * growth);
+    const reach = reachOf(found, unitPower, growth);
     while (power > 0 && scaled(reach, power) > TICK_ROOM) power -= 1;
     if (power < 12) {
       warnings.push({
@@ -87,19 +107,48 @@ function timedAxis(layout: Layout, column: Column, rows: readonly HeadRow[], cho
     1,
     ...found.mantissas.map((mantissa, i) => (mantissa === 0 ? 0 : scaled(1, found.exponents[i] + total))),
   );
-  const pace = paceOf(ticks, grain, changing(layout, found.rows));
+  const relative = fixedDigits(found);
+  const reach = reachOf(found, unitPower, growth);
+  const pace = withDigits(paceOf(ticks, grain, changing(layout, found.rows)), relative, scaled(reach, power));
   if (pace.rebuilt) {
+    const coarsest = Math.max(grain, scaled(reach, power) * relative);
     warnings.push({
       code: "time-rebuilt",
-      message: `The times are rounded to ${secondsText(grain, power)}, too coarse for the sample interval; a uniform axis of ${secondsText(pace.step ?? 0, power)} per sample was rebuilt from them.`,
+      message: `The times are rounded to ${secondsText(coarsest, power)}, too coarse for the sample interval; a uniform axis of ${secondsText(pace.step ?? 0, power)} per sample was rebuilt from them.`,
     });
   }
   return {
     timebase: { ticksPerSecond: scaled(1, power), origin: "file" },
     clock: { column: column.index, power: total, factor: null, start: 0 },
     pace,
+    sampleTicks: sampleTicksOf(pace),
     warnings,
   };
+}
+
+/** Largest time of the file in seconds, estimated from how far the head gets. */
+function reachOf(found: Instants, unitPower: number, growth: number): number {
+  if (found.mantissas.length === 0) return 0;
+  const at = (i: number) => scaled(found.mantissas[i], found.exponents[i] + unitPower);
+  const span = at(found.mantissas.length - 1) - at(0);
+  return Math.max(Math.abs(at(0)), Math.abs(at(0) + span * growth));
+}
+
+/** Times of a fixed number of digits with exponents (9.99E-06, 1.00E-05): one unit of the last digit, as part of the time. */
+function fixedDigits(found: Instants): number {
+  const filled = found.mantissas
+    .map((mantissa, i) => ({ mantissa, exponent: found.exponents[i] }))
+    .filter((one) => one.mantissa !== 0);
+  if (filled.length < 3 || filled.every((one) => one.exponent === filled[0].exponent)) return 0;
+  const digits = Math.max(...filled.map((one) => String(Math.abs(one.mantissa)).length));
+  const fixed = filled.filter((one) => String(Math.abs(one.mantissa)).length === digits).length;
+  return fixed >= filled.length * 0.9 ? scaled(1, 1 - digits) : 0;
+}
+
+/** Times that start fine and grow coarser than the step are rebuilt from the first row on. */
+function withDigits(pace: Pace, relative: number, reach: number): Pace {
+  if (relative === 0 || pace.step === null) return pace;
+  return { ...pace, relative, rebuilt: pace.rebuilt || reach * relative > pace.step * 0.25 };
 }
 
 function secondsText(ticks: number, power: number): string {
@@ -142,16 +191,18 @@ function countedAxis(
   }
   const clock: Clockwork = { column: column?.index ?? -1, power: 0, factor, start };
   if (column === null) {
-    return { timebase: { ticksPerSecond: perSecond, origin }, clock, pace: { step: factor, rebuilt: false, grain: 1 }, warnings };
+    return {
+      timebase: { ticksPerSecond: perSecond, origin },
+      clock,
+      pace: { step: factor, rebuilt: false, grain: 1, relative: 0 },
+      sampleTicks: Math.round(factor),
+      warnings,
+    };
   }
   const found = instants(column, layout, rows);
   const ticks = found.mantissas.map((mantissa, i) => Math.round(scaled(mantissa, found.exponents[i]) * factor) + start);
-  return {
-    timebase: { ticksPerSecond: perSecond, origin },
-    clock,
-    pace: paceOf(ticks, factor, changing(layout, found.rows)),
-    warnings,
-  };
+  const pace = paceOf(ticks, factor, changing(layout, found.rows));
+  return { timebase: { ticksPerSecond: perSecond, origin }, clock, pace, sampleTicks: sampleTicksOf(pace), warnings };
 }
 
 /** 1e-7 s in picoseconds is 100000, not 99999.99999999999. */
@@ -176,10 +227,12 @@ const CHANGE_SHARE = 0.9;
 const STEADY_SHARE = 0.9;
 
 export function paceOf(ticks: readonly number[], grain: number, changed: number): Pace {
-  const changesOnly: Pace = { step: null, rebuilt: false, grain };
+  const changesOnly: Pace = { step: null, rebuilt: false, grain, relative: 0 };
   const n = ticks.length;
   if (n < 3)
-    return n === 2 && changed === 0 && ticks[1] > ticks[0] ? { step: ticks[1] - ticks[0], rebuilt: false, grain } : changesOnly;
+    return n === 2 && changed === 0 && ticks[1] > ticks[0]
+      ? { step: ticks[1] - ticks[0], rebuilt: false, grain, relative: 0 }
+      : changesOnly;
   if (changed >= CHANGE_SHARE) return changesOnly;
   const mean = (ticks[n - 1] - ticks[0]) / (n - 1);
   const fits = mean > 0 && ticks.every((tick, i) => Math.abs(tick - ticks[0] - i * mean) <= grain * 1.01);
@@ -193,14 +246,14 @@ export function paceOf(ticks: readonly number[], grain: number, changed: number)
   // A repeated or doubled step within the grain is rounding, met here beside a gap that spoils the straight fit.
   const near = steps.filter((step) => Math.abs(step - median) <= Math.max(grain * 1.01, median * 0.02));
   const average = near.reduce((sum, step) => sum + step, 0) / near.length;
-  return { step: grain > median * 0.25 ? average : median, rebuilt: false, grain };
+  return { step: grain > median * 0.25 ? average : median, rebuilt: false, grain, relative: 0 };
 }
 
 function fitted(ticks: readonly number[], mean: number, grain: number): Pace {
   const n = ticks.length;
   const doubt = grain / (n - 1);
   const uneven = grain > mean * 0.25 && ticks.some((tick, i) => i > 0 && Math.abs(tick - ticks[i - 1] - mean) > mean * 0.25);
-  return { step: simplest(mean, doubt), rebuilt: uneven, grain };
+  return { step: simplest(mean, doubt), rebuilt: uneven, grain, relative: 0 };
 }
 
 /** The number of fewest digits within `doubt` of `value`: a sample interval is seldom 99.9998 ns. */

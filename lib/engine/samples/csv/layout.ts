@@ -31,6 +31,14 @@ export interface Layout {
   readonly metadata: Metadata;
   /** False where the file has no header row. */
   readonly named: boolean;
+  /** Channels have time columns of their own whose times differ; a channel's is the nearest one to its left. */
+  readonly ownTimes: boolean;
+}
+
+/** The time column that a channel's column goes by. */
+export function timeColumnOf(layout: Layout, column: Column): Column | null {
+  const times = layout.columns.filter((one) => one.role === "time");
+  return times.findLast((one) => one.index < column.index) ?? times[0] ?? null;
 }
 
 /** Rows of the head by which columns are judged. */
@@ -49,15 +57,25 @@ export function layoutOf(table: HeadTable): Layout {
     const column = columnOf(index, header.names[index] ?? "", header.units[index] ?? "", fact);
     return table.texts.has(index) ? { ...column, role: "other" as const, bits: 0 } : column;
   });
+  const settled = settleSole(settleTime(columns, facts), facts);
   return {
     dialect,
     firstLine: rows[first].line,
     width,
     namedWidth: Math.max(width, trimmed(header.names).length),
-    columns: settleSole(settleTime(columns, facts), facts),
+    columns: settled,
     metadata: metadataOf(header.preamble),
     named: header.named,
+    ownTimes: timesDiffer(settled, judged),
   };
+}
+
+function timesDiffer(columns: readonly Column[], rows: readonly HeadRow[]): boolean {
+  const times = columns.filter((column) => column.role === "time");
+  if (times.length < 2) return false;
+  return rows.some((row) =>
+    times.some((column) => (row.cells[column.index] ?? "").trim() !== (row.cells[times[0].index] ?? "").trim()),
+  );
 }
 
 function nextFilled(rows: readonly HeadRow[], from: number): number {

@@ -1,7 +1,7 @@
 // In: the layout. Out: the channels it offers and where in a row each one's level stands.
 
 import type { Channel } from "../reader";
-import type { Column, Layout } from "./layout";
+import { type Column, type Layout, timeColumnOf } from "./layout";
 import { LEVEL, SKIP, VALUE } from "./scanner";
 
 /** One channel in the values of a row. */
@@ -46,15 +46,19 @@ export interface Selection {
 }
 
 export function select(layout: Layout, sources: readonly LineSource[]): Selection {
+  const times = layout.ownTimes
+    ? sources.map((source) => timeColumnOf(layout, source.column)).filter((column) => column !== null)
+    : [];
+  const wanted = [...sources.map((source) => source.column), ...times];
   const modes = new Uint8Array(layout.width).fill(SKIP);
   const slots = new Int32Array(layout.width).fill(-1);
   const powers = new Int32Array(layout.width);
   let count = 0;
-  for (const { column } of sources) {
+  for (const column of wanted) {
     if (slots[column.index] >= 0) continue;
     slots[column.index] = count;
     modes[column.index] = column.role === "digital" ? LEVEL : VALUE;
-    if (column.role === "volts") powers[column.index] = column.unit?.power ?? 0;
+    if (column.role === "volts" || column.role === "time") powers[column.index] = column.unit?.power ?? 0;
     count += 1;
   }
   return { modes, slots, powers, values: new Float64Array(count).fill(Number.NaN) };

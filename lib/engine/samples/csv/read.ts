@@ -8,11 +8,13 @@ import { Aside } from "./aside";
 import { type Body, bodyReader, scanPlan } from "./body";
 import { Comparator, Excursions } from "./comparator";
 import { FastLevels, FastVolts } from "./fast";
+import { timeColumnOf } from "./layout";
 import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
-import { Rows } from "./rows";
+import { OwnTimeLine, OwnTimesTaker } from "./own-times";
+import { Rows, type RowTaker } from "./rows";
 import type { FastPath } from "./scanner";
 import { type LevelSource, LevelTaker, type TapLines, VoltTaker } from "./takers";
-import type { LevelPlan } from "./thresholds";
+import type { JudgedLevels, LevelPlan } from "./thresholds";
 import { EdgeWriter } from "./writer";
 
 export interface BodyJob {
@@ -55,14 +57,11 @@ export async function readBody(job: BodyJob, sink: EdgeSink, plain: boolean): Pr
   });
 }
 
-interface Parts {
+interface Parts extends Bound {
   readonly selection: Selection;
-  readonly rows: Rows;
   readonly writers: readonly EdgeWriter[];
   readonly bus: EdgeWriter;
   readonly excursions: Excursions;
-  readonly fast: FastPath | null;
-  finish(): void;
 }
 
 function assemble(job: BodyJob, sink: EdgeSink): Parts {
@@ -81,35 +80,76 @@ function assemble(job: BodyJob, sink: EdgeSink): Parts {
     }),
   );
   const excursions = new Excursions(job.head.vdd_v !== null);
-  const window = windowOf(body);
-  let finishBus = () => bus.finish();
-  let rows: Rows;
-  let fast: FastPath | null;
-  if (!volts) {
-    const taker = new LevelTaker(new DigitalTap(scl, selection), new DigitalTap(sda, selection), taps, bus);
-    rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
-    fast = FastLevels.for(body, scl, sda, rows, taker);
-  } else {
-    const taker = new VoltTaker(
-      selection.values,
-      selection.slots[scl.column.index],
-      selection.slots[sda.column.index],
-      new Comparator(judged.scl, window, excursions.visitor("scl")),
-      new Comparator(judged.sda, window, excursions.visitor("sda")),
-      taps,
-      bus,
-      job.head.vdd_v !== null,
-    );
-    rows = new Rows(taker, selection.values, body.axis.pace, new Aside());
-    fast = FastVolts.for(body, selection, scl, sda, rows, taker);
-    finishBus = () => taker.finish();
-  }
-  const writers = [bus, ...taps.map((tap) => tap.writer)];
+  const line = busLine(job, selection, judged, excursions);
+  const bound = body.layout.ownTimes ? ownTimes(line, bus) : volts ? inVolts(line, taps, bus) : inLevels(line, taps, bus);
   const finish = () => {
-    finishBus();
+    bound.finish();
     for (const tap of taps) tap.writer.finish();
   };
-  return { selection, rows, writers, bus, excursions, fast, finish };
+  return { ...bound, selection, writers: [bus, ...taps.map((tap) => tap.writer)], bus, excursions, finish };
+}
+
+/** What turns rows into the bus's edges, by the kind of file. */
+interface Bound {
+  readonly rows: Rows;
+  readonly fast: FastPath | null;
+  /** Where it is not the instant of the last row. */
+  readonly endTick: () => number;
+  readonly warnings: () => readonly Warning[];
+  finish(): void;
+}
+
+interface BusLine {
+  readonly job: BodyJob;
+  readonly selection: Selection;
+  readonly comparator: (which: "scl" | "sda") => Comparator;
+}
+
+function busLine(job: BodyJob, selection: Selection, judged: JudgedLevels, excursions: Excursions): BusLine {
+  const window = windowOf(job.body);
+  return { job, selection, comparator: (which) => new Comparator(judged[which], window, excursions.visitor(which)) };
+}
+
+function bind(line: BusLine, taker: RowTaker & { finish(): void }, fast: (rows: Rows) => FastPath | null): Bound {
+  const rows = new Rows(taker, line.selection.values, line.job.body.axis.pace, new Aside());
+  return { rows, fast: fast(rows), endTick: () => rows.lastTick, warnings: () => [], finish: () => taker.finish() };
+}
+
+function inLevels(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bound {
+  const { selection, job } = line;
+  const { body, scl, sda } = job;
+  const taker = new LevelTaker(new DigitalTap(scl, selection), new DigitalTap(sda, selection), taps, bus);
+  return bind(line, taker, (rows) => FastLevels.for(body, scl, sda, rows, taker));
+}
+
+function inVolts(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bound {
+  const { selection, job, comparator } = line;
+  const { body, scl, sda } = job;
+  const slot = (source: LineSource) => selection.slots[source.column.index];
+  const means = job.head.vdd_v !== null;
+  const taker = new VoltTaker(selection.values, slot(scl), slot(sda), comparator("scl"), comparator("sda"), taps, bus, means);
+  return bind(line, taker, (rows) => FastVolts.for(body, selection, scl, sda, rows, taker));
+}
+
+function ownTimes(line: BusLine, bus: EdgeWriter): Bound {
+  const { selection, job, comparator } = line;
+  const { layout, axis } = job.body;
+  const of = (source: LineSource, which: "scl" | "sda") => {
+    const time = timeColumnOf(layout, source.column);
+    const digital = isDigital(source) ? new DigitalTap(source, selection) : null;
+    const valueSlot = selection.slots[source.column.index];
+    const compared = digital === null ? comparator(which) : null;
+    return new OwnTimeLine(
+      selection.values,
+      selection.slots[time?.index ?? 0],
+      valueSlot,
+      digital,
+      compared,
+      axis.timebase.ticksPerSecond,
+    );
+  };
+  const taker = new OwnTimesTaker(of(job.scl, "scl"), of(job.sda, "sda"), bus);
+  return { ...bind(line, taker, () => null), endTick: () => taker.endTick, warnings: () => taker.warnings() };
 }
 
 function windowOf(body: Body): number {
@@ -144,10 +184,10 @@ function tailOf(job: BodyJob, rows: Rows, parts: Parts): Result<CaptureTail> {
       place: first === null ? {} : { line: first.line },
     });
   }
-  const warnings: Warning[] = asides.warnings();
+  const warnings: Warning[] = [...asides.warnings(), ...parts.warnings()];
   if (rows.cuts > 0) warnings.push(cutWarning(rows, job.head.timebase.ticksPerSecond, job.head.timebase.origin === "assumed"));
   return ok({
-    endTick: rows.lastTick,
+    endTick: parts.endTick(),
     samples: rows.count,
     sclEdges: parts.bus.sclEdges,
     sdaEdges: parts.bus.sdaEdges,

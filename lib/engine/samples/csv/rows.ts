@@ -18,6 +18,8 @@ export interface Pace {
   readonly rebuilt: boolean;
   /** Ticks of one unit of the last digit of the times, with `rebuilt`. */
   readonly grain: number;
+  /** The same as a part of the time itself, where times have a fixed number of digits (1.23E-03); otherwise 0. */
+  readonly relative: number;
 }
 
 /** Takes rows in order. `cut`: rows are missing just before this one. */
@@ -149,14 +151,15 @@ export class Rows implements RowTarget {
     this.counted += 1;
     const expected = Math.round(this.base + this.counted * step);
     const off = written - expected;
-    if (Math.abs(off) <= this.pace.grain) return expected;
-    if (off > 0 && off < this.pace.grain + step * 0.5) {
+    const grain = Math.max(this.pace.grain, Math.abs(written) * this.pace.relative);
+    if (Math.abs(off) <= grain) return expected;
+    if (off > 0 && off < grain + step * 0.5) {
       // The step is known to a few digits only; the axis follows the file.
       this.base = written;
       this.counted = 0;
       return written;
     }
-    if (off < 0 && -off < this.pace.grain + step * 0.5) return expected;
+    if (off < 0 && -off < grain + step * 0.5) return expected;
     if (off > 0) {
       this.base = written;
       this.counted = 0;

@@ -5,8 +5,10 @@ import type { LineTrace } from "../../channels/trace";
 import { Aside } from "./aside";
 import type { Body } from "./body";
 import { Comparator, type Thresholds } from "./comparator";
+import { timeColumnOf } from "./layout";
 import { type Clusters, Histogram } from "./levels";
 import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
+import { tickOf } from "./own-times";
 import { Rows, type RowTaker } from "./rows";
 
 /** Rows that the level survey reads at least. */
@@ -63,9 +65,13 @@ const TRACE_LIMIT = 1 << 20;
 class TraceLine {
   initial: 0 | 1 | 2 = 2;
   length = 0;
+  firstTick = Number.POSITIVE_INFINITY;
   private level = -1;
   private ticks = new Float64Array(1024);
   private levels = new Uint8Array(1024);
+  private timeSlot = -1;
+  private ticksPerSecond = 1;
+  private newest = Number.NEGATIVE_INFINITY;
 
   constructor(
     readonly source: LineSource,
@@ -74,8 +80,19 @@ class TraceLine {
     private readonly selection: Selection,
   ) {}
 
-  take(tick: number, cut: boolean): void {
+  /** The line goes by a time column of its own. */
+  by(timeSlot: number, ticksPerSecond: number): this {
+    this.timeSlot = timeSlot;
+    this.ticksPerSecond = ticksPerSecond;
+    return this;
+  }
+
+  take(row: number, cut: boolean): void {
     let level = 2;
+    const tick = this.timeSlot < 0 ? row : tickOf(this.selection.values[this.timeSlot], this.ticksPerSecond);
+    if (Number.isNaN(tick) || tick < this.newest) return;
+    if (this.newest === Number.NEGATIVE_INFINITY) this.firstTick = tick;
+    this.newest = tick;
     let at = tick;
     if (this.digital !== null) level = this.digital.level();
     else if (this.comparator !== null) {
@@ -142,10 +159,14 @@ export async function surveyTraces(
   settled: (traces: readonly LineTrace[]) => boolean,
 ): Promise<Surveyed> {
   const selection = select(body.layout, sources);
-  const lines = sources.map((source) => {
+  const lineOf = (source: LineSource) => {
     if (isDigital(source)) return new TraceLine(source, new DigitalTap(source, selection), null, selection);
     const levels = thresholds.get(source.column.index);
     return new TraceLine(source, null, levels === undefined ? null : new Comparator(levels, 1, () => undefined), selection);
+  };
+  const lines = sources.map((source) => {
+    const time = body.layout.ownTimes ? timeColumnOf(body.layout, source.column) : null;
+    return lineOf(source).by(time === null ? -1 : selection.slots[time.index], body.axis.timebase.ticksPerSecond);
   });
   const taker: RowTaker = {
     take(tick, cut) {
@@ -168,5 +189,9 @@ export async function surveyTraces(
   const rows = new Rows(taker, selection.values, body.axis.pace, asides);
   await body.walk(selection, rows, enough);
   if (!last) settled(traces());
-  return { rows: rows.count, firstTick: rows.firstTick, asides };
+  return {
+    rows: rows.count,
+    firstTick: Math.min(...lines.map((line) => line.firstTick), rows.count === 0 ? 0 : Number.POSITIVE_INFINITY),
+    asides,
+  };
 }

@@ -56,6 +56,10 @@ export class LevelTaker implements RowTaker {
     if (this.taps.length > 0) takeTaps(this.taps, tick, cut);
   }
 
+  finish(): void {
+    this.writer.finish();
+  }
+
   orderLost(): boolean {
     const changed = (SCL_BITS[this.scl.level()] | SDA_BITS[this.sda.level()]) ^ this.lines;
     return (changed & (SCL | SCL_UNKNOWN)) !== 0 && (changed & (SDA | SDA_UNKNOWN)) !== 0;

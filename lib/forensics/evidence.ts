@@ -2,7 +2,7 @@
 // states what stands on the lines and no more.
 
 import type { Contest } from "../diagnosis/report";
-import { holdAlone, holdTogether, trace } from "./explain";
+import { holdAlone, holdTogether } from "./explain";
 import { DATA_FALL, DATA_RISE, HIGH_IN, HOLD_START, LOW_IN } from "./message";
 import type { Habitual, RetryRates } from "./retry";
 import { visibility } from "./together";
@@ -29,19 +29,27 @@ export function evidenceOf(
 ): Evidence[] {
   const { ledger, signatures, sampling } = scales;
   const slots = scales.read(m);
-  const single = trace(ledger, slots, signatures[alone], sampling);
-  const one = trace(ledger, slots, signatures[option.a], sampling);
-  const both = trace(ledger, slots, scales.pair(option.a, option.b), sampling);
+  const traces = scales.traces(slots);
+  const single = traces(1 << alone);
+  const one = traces(1 << option.a);
   const g = lastTogether(slots, option.at, option.mode);
+  const { early } = option;
+  const gEarly = early === null ? -1 : lastTogether(slots, early.at, early.mode);
+  // Who clocks, and who drives SDA, in slot s.
+  const clocking = (s: number): number =>
+    (1 << option.a) | (s <= g ? 1 << option.b : 0) | (early !== null && s <= gEarly ? 1 << early.b : 0);
+  const driving = (s: number): number =>
+    (1 << option.a) | (s < option.at ? 1 << option.b : 0) | (early !== null && s < early.at ? 1 << early.b : 0);
   let clock = 0;
   let data = 0;
   let level = 0;
   for (let s = 0; s < slots.length; s++) {
-    const contested = s <= g;
-    clock += (contested ? both.low[s] : one.low[s]) - single.low[s];
-    clock += (s < g ? both.high[s] : s === g ? Math.max(both.high[s], one.high[s]) : one.high[s]) - single.high[s];
-    data += (s < option.at ? both.data[s] : one.data[s]) - single.data[s];
-    level += (s < option.at ? both.sda[s] : one.sda[s]) - single.sda[s] + (contested ? both.scl[s] : one.scl[s]) - single.scl[s];
+    const c = traces(clocking(s));
+    const d = traces(driving(s));
+    clock += c.low[s] - single.low[s];
+    clock += (s === g ? Math.max(c.high[s], one.high[s]) : c.high[s]) - single.high[s];
+    data += d.data[s] - single.data[s];
+    level += d.sda[s] - single.sda[s] + c.scl[s] - single.scl[s];
   }
   const hold = ledger.hold[scales.messages.first[m]];
   const start =
@@ -78,7 +86,7 @@ export function evidenceOf(
       `The next message of ${b} equals this one up to there and ${words}; ${share} % of its messages would by chance.`,
     );
   } else add("retry", rival.elsewhereGain, `No message of ${b} that would be its retry follows.`);
-  if (visibility(signatures[option.a], scales.pair(option.a, option.b), sampling.variance) < 1) {
+  if (visibility(signatures[option.a], scales.signature((1 << option.a) | (1 << option.b)), sampling.variance) < 1) {
     out.push({
       kind: "clock-sync",
       bits: 0,

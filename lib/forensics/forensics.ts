@@ -16,7 +16,6 @@ import { Habitual } from "./retry";
 import type { Sampling, Signature } from "./signature";
 import { stretchesOf } from "./stretch";
 import { readTaps, type TapFindings, TapTrace } from "./taps";
-import { together } from "./together";
 import { lastTogether, Scales } from "./weigh";
 
 /** What a bystander of a simulation may know beforehand: who made the uncontested messages. For calibration only. */
@@ -184,8 +183,7 @@ function inferContests(
   const { ledger, messages, sampling } = capture;
   const { signatures } = census;
   if (signatures.length < 2) return;
-  const pairs = signatures.map((a) => signatures.map((b) => together(a, b, capture.vdd)));
-  const scales = new Scales(ledger, messages, signatures, sampling, pairs);
+  const scales = new Scales(ledger, messages, signatures, sampling, capture.vdd);
   const ends = new Float64Array(messages.count);
   for (let m = 0; m < messages.count; m++) ends[m] = capture.endTick[messages.first[m + 1] - 1];
   const habitual = new Habitual(ledger, messages, census, ends);
@@ -207,29 +205,45 @@ function inferContests(
     else if (j.tie < 0.5 && census.margin[j.message] > Math.log(9)) by[j.message] = j.alone;
     if (j.probability < FLOOR) continue;
     const slots = scales.read(j.message);
-    const s = j.best.at;
-    const g = lastTogether(slots, s, j.best.mode);
-    if (j.probability >= 0.5) contestedUntil[j.message] = slots.entry[g];
-    const t = slots.transaction[s];
-    const pulse = slots.pulse[s];
-    const perSecond = capture.timebase.ticksPerSecond;
-    const rival = habitual.rival(j.message, j.best.b, rates);
-    contests.push({
-      transaction: t,
-      start_s: ledger.openTick[t] / perSecond,
-      decided_s: ledger.riseTick(t, pulse) / perSecond,
-      byte: Math.floor(pulse / 9),
-      bit: pulse % 9,
-      bit_index: pulse,
-      kept: j.pairShare > 0.6 ? naming.id(j.best.a) : null,
-      yielded: j.pairShare > 0.6 ? naming.id(j.best.b) : null,
-      retry: rival.retry >= 0 && rival.retrySlot === s ? messages.first[rival.retry] : null,
-      probability: Math.min(j.probability, 0.999),
-      grade: gradeOf(j.probability, false),
-      evidence: evidenceOf(scales, j.message, j.best, j.alone, habitual, rates, naming),
-      look_alikes: [],
-    });
+    if (j.probability >= 0.5) contestedUntil[j.message] = slots.entry[lastTogether(slots, j.best.at, j.best.mode)];
+    const evidence = evidenceOf(scales, j.message, j.best, j.alone, habitual, rates, naming);
+    scales.read(j.message);
+    const parties = j.pairShare > 0.6;
+    const claim = (b: number, s: number, probability: number): Contest => {
+      const t = slots.transaction[s];
+      const rival = habitual.rival(j.message, b, rates);
+      scales.read(j.message);
+      return {
+        ...placed(capture, t, slots.pulse[s]),
+        kept: parties ? naming.id(j.best?.a ?? 0) : null,
+        yielded: parties ? naming.id(b) : null,
+        retry: rival.retry >= 0 && rival.retrySlot === s ? messages.first[rival.retry] : null,
+        probability: Math.min(probability, 0.999),
+        grade: gradeOf(probability, false),
+        evidence,
+        look_alikes: [],
+      };
+    };
+    contests.push(claim(j.best.b, j.best.at, j.probability));
+    if (j.best.early !== null) contests.push(claim(j.best.early.b, j.best.early.at, j.third));
   }
+}
+
+/** Where a contest stands, as the report writes it. */
+function placed(
+  capture: Capture,
+  t: number,
+  pulse: number,
+): Pick<Contest, "transaction" | "start_s" | "decided_s" | "byte" | "bit" | "bit_index"> {
+  const perSecond = capture.timebase.ticksPerSecond;
+  return {
+    transaction: t,
+    start_s: capture.ledger.openTick[t] / perSecond,
+    decided_s: capture.ledger.riseTick(t, pulse) / perSecond,
+    byte: Math.floor(pulse / 9),
+    bit: pulse % 9,
+    bit_index: pulse,
+  };
 }
 
 function untappedNeeded(j: Judged, tapped: TapFindings, taps: number): boolean {
@@ -246,8 +260,8 @@ function tapContests(
   contestedUntil: Float64Array,
   by: Int16Array,
 ): void {
-  const { ledger, messages, timebase } = capture;
-  const scales = new Scales(ledger, messages, census.signatures, capture.sampling, []);
+  const { ledger, messages } = capture;
+  const scales = new Scales(ledger, messages, census.signatures, capture.sampling, capture.vdd);
   const index = ranks(census);
   for (const loss of tapped.losses) {
     const slots = scales.read(loss.message);
@@ -262,12 +276,7 @@ function tapContests(
     const pulse = slots.pulse[loss.slot];
     const next = nextOf(tapped, loss.message, loss.tap);
     contests.push({
-      transaction: t,
-      start_s: ledger.openTick[t] / timebase.ticksPerSecond,
-      decided_s: ledger.riseTick(t, pulse) / timebase.ticksPerSecond,
-      byte: Math.floor(pulse / 9),
-      bit: pulse % 9,
-      bit_index: pulse,
+      ...placed(capture, t, pulse),
       kept: kept >= 0 ? `C${index[kept] + 1}` : null,
       yielded: `C${index[loss.tap] + 1}`,
       retry: next >= 0 ? messages.first[next] : null,

@@ -14,6 +14,8 @@ const ROUNDS = 3;
 
 export interface Rates extends RetryRates {
   contest: number;
+  /** Of the contests, those with a third contender. */
+  third: number;
   /** Per controller: how likely it leaves at once, at the eighth, at the ninth pulse. */
   readonly modes: number[][];
   readonly share: number[];
@@ -29,6 +31,8 @@ export interface Judged {
   readonly alone: number;
   /** Given a contest with a yield: best pair and its share, best slot and its share. */
   readonly best: Option | null;
+  /** Probability that a third yielded too. */
+  readonly third: number;
   readonly pairShare: number;
   readonly slotShare: number;
   readonly logAlone: number;
@@ -44,6 +48,7 @@ export function judge(
   const kinds = scales.signatures.length;
   const rates: Rates = {
     contest: PRIOR_CONTEST,
+    third: 0.1,
     again: 0.7,
     prompt: 0.7,
     modes: Array.from({ length: kinds }, () => [0.5, 0.15, 0.35]),
@@ -67,8 +72,12 @@ function pairLog(rates: Rates, a: number, b: number): number {
 
 function optionLog(option: Option, rates: Rates): number {
   const mode = option.at < 0 ? 0 : Math.log(rates.modes[option.b][option.mode]);
+  const early =
+    option.early === null
+      ? 0
+      : Math.log(rates.third) + Math.log(rates.share[option.early.b]) + Math.log(rates.modes[option.early.b][option.early.mode]);
   // A tie is counted for both orders.
-  return Math.log(rates.contest) + pairLog(rates, option.a, option.b) + mode + option.log;
+  return Math.log(rates.contest) + pairLog(rates, option.a, option.b) + mode + early + option.log;
 }
 
 function conclude(weighed: Weighed, rates: Rates): Judged {
@@ -86,6 +95,7 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
   const slowed = weighed.slowed + Math.log(PRIOR_SLOWED);
   let yields = Number.NEGATIVE_INFINITY;
   let tie = Number.NEGATIVE_INFINITY;
+  let triples = Number.NEGATIVE_INFINITY;
   const pairs = new Map<number, number>();
   const slots = new Map<number, number>();
   let best: Option | null = null;
@@ -97,6 +107,7 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
       continue;
     }
     yields = logAdd(yields, log);
+    if (option.early !== null) triples = logAdd(triples, log);
     const pair = option.a * 64 + option.b;
     pairs.set(pair, logAdd(pairs.get(pair) ?? Number.NEGATIVE_INFINITY, log));
     slots.set(option.at, logAdd(slots.get(option.at) ?? Number.NEGATIVE_INFINITY, log));
@@ -106,7 +117,8 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
     }
   }
   const all = logAdd(logAdd(none, slowed), logAdd(yields, tie));
-  const chosen = best === null ? null : pick(weighed.options, pairs, slots, best, rates);
+  const threefold = triples > yields - Math.LN2;
+  const chosen = best === null ? null : pick(weighed.options, threefold, best, rates);
   const shareOf = (log: number | undefined): number => (log === undefined ? 0 : Math.exp(log - yields));
   return {
     message: weighed.message,
@@ -114,6 +126,7 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
     tie: Math.exp(tie - all),
     slowed: Math.exp(slowed - all),
     alone,
+    third: Math.exp(triples - all),
     best: chosen,
     pairShare: chosen === null ? 0 : shareOf(pairs.get(chosen.a * 64 + chosen.b)),
     slotShare: chosen === null ? 0 : shareOf(slots.get(chosen.at)),
@@ -121,47 +134,42 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
   };
 }
 
-/** Most probable pair, then most probable slot within it, then most probable mode. */
-function pick(
-  options: readonly Option[],
-  pairs: Map<number, number>,
-  slots: Map<number, number>,
-  fallback: Option,
-  rates: Rates,
-): Option {
-  const top = (map: Map<number, number>): number => [...map].reduce((x, y) => (y[1] > x[1] ? y : x))[0];
-  const pair = top(pairs);
-  const within = new Map<number, number>();
-  for (const o of options) {
-    if (o.at < 0 || o.a * 64 + o.b !== pair) continue;
-    within.set(o.at, logAdd(within.get(o.at) ?? Number.NEGATIVE_INFINITY, optionLog(o, rates)));
-  }
-  const slot = within.size > 0 ? top(within) : top(slots);
-  let best = fallback;
-  let bestLog = Number.NEGATIVE_INFINITY;
-  for (const o of options) {
-    if (o.at !== slot || o.a * 64 + o.b !== pair) continue;
-    const log = optionLog(o, rates);
-    if (log > bestLog) {
-      bestLog = log;
-      best = o;
+/** Most probable pair, then most probable slot within it, then the best explanation there; with or without a third contender. */
+function pick(options: readonly Option[], threefold: boolean, fallback: Option, rates: Rates): Option {
+  const eligible = options.filter((o) => o.at >= 0 && (o.early !== null) === threefold);
+  const top = (key: (o: Option) => number, list: readonly Option[]): Option[] => {
+    const sums = new Map<number, number>();
+    for (const o of list) sums.set(key(o), logAdd(sums.get(key(o)) ?? Number.NEGATIVE_INFINITY, optionLog(o, rates)));
+    let winner = -1;
+    let most = Number.NEGATIVE_INFINITY;
+    for (const [k, log] of sums) {
+      if (log <= most) continue;
+      most = log;
+      winner = k;
     }
-  }
-  return best;
+    return list.filter((o) => key(o) === winner);
+  };
+  const pair = top((o) => o.a * 4096 + o.b * 64 + (o.early?.b ?? 0), eligible);
+  const slot = top((o) => o.at, pair);
+  const early = top((o) => o.early?.at ?? 0, slot);
+  return early.reduce((x, y) => (optionLog(y, rates) > optionLog(x, rates) ? y : x), early[0] ?? fallback);
 }
 
 function learnRates(weighed: readonly Weighed[], judged: readonly Judged[], rates: Rates, total: number): void {
   let contests = 0;
+  let thirds = 0;
   const modes = rates.modes.map(() => [1, 0.3, 0.7]);
   weighed.forEach((w, i) => {
     const p = judged[i].probability;
     contests += p;
+    thirds += judged[i].third;
     if (p < 0.05) return;
     let sum = Number.NEGATIVE_INFINITY;
     for (const o of w.options) if (o.at >= 0) sum = logAdd(sum, optionLog(o, rates));
     for (const o of w.options) if (o.at >= 0) modes[o.b][o.mode] += p * Math.exp(optionLog(o, rates) - sum);
   });
   rates.contest = Math.min(0.5, (contests + PRIOR_CONTEST * PRIOR_WEIGHT) / (total + PRIOR_WEIGHT));
+  rates.third = (thirds + 0.2) / (contests + 4);
   modes.forEach((m, b) => {
     const s = m[0] + m[1] + m[2];
     for (let k = 0; k < 3; k++) rates.modes[b][k] = m[k] / s;

@@ -3,7 +3,7 @@
 import { BUS_BROKEN, BUS_SR, BUS_STOP, type Slots } from "./message";
 
 /** 0 and 1: driven by the controller. */
-export const FROM_TARGET = 4;
+export const FROM_TARGET = 5;
 
 /** Codes of a message's slots: 0, 1, BUS_SR, BUS_STOP, FROM_TARGET. */
 export function streamOf(slots: Slots): Uint8Array {

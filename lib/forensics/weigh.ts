@@ -7,6 +7,7 @@ import { BUS_STOP, type Messages, newSlots, readMessage, type Slots } from "./me
 import { logAdd } from "./normal";
 import type { Habitual, RetryRates, Rival } from "./retry";
 import type { Sampling, Signature } from "./signature";
+import { together } from "./together";
 
 export const LEAVES = 0;
 export const BYTE = 1;
@@ -18,7 +19,15 @@ export interface Option {
   readonly b: number;
   readonly at: number;
   readonly mode: number;
+  /** A third that yielded too, not later than `b`; null with two contenders. */
+  readonly early: Leaver | null;
   readonly log: number;
+}
+
+export interface Leaver {
+  readonly b: number;
+  readonly at: number;
+  readonly mode: number;
 }
 
 export interface Weighed {
@@ -31,9 +40,11 @@ export interface Weighed {
 }
 
 const LOOK = 180;
+/** A third contender is looked for when two explain this much better than one, natural log. */
+const WORTH_A_THIRD = 4;
 
 export class Scales {
-  private readonly pairs: Signature[][];
+  private readonly mixed = new Map<number, Signature>();
   private readonly slots = newSlots();
 
   constructor(
@@ -41,88 +52,171 @@ export class Scales {
     readonly messages: Messages,
     readonly signatures: readonly Signature[],
     readonly sampling: Sampling,
-    pairs: readonly (readonly Signature[])[],
-  ) {
-    this.pairs = pairs.map((row) => [...row]);
-  }
+    private readonly vdd: number | null,
+  ) {}
 
   read(m: number): Slots {
     readMessage(this.ledger, this.messages, m, this.slots, LOOK);
     return this.slots;
   }
 
-  pair(a: number, b: number): Signature {
-    return this.pairs[a][b];
+  /** Signature of the controllers whose bits are set in `mask`, driving together. */
+  signature(mask: number): Signature {
+    let found = this.mixed.get(mask);
+    if (found === undefined) {
+      const low = 31 - Math.clz32(mask & -mask);
+      const rest = mask & (mask - 1);
+      found = rest === 0 ? this.signatures[low] : together(this.signatures[low], this.signature(rest), this.vdd);
+      this.mixed.set(mask, found);
+    }
+    return found;
+  }
+
+  /** Traces of the message last read, by mask. */
+  traces(slots: Slots): (mask: number) => Trace {
+    const known = new Map<number, Trace>();
+    return (mask) => {
+      let found = known.get(mask);
+      if (found === undefined) {
+        found = trace(this.ledger, slots, this.signature(mask), this.sampling);
+        known.set(mask, found);
+      }
+      return found;
+    };
   }
 
   weigh(m: number, habitual: Habitual, rates: RetryRates): Weighed {
     const slots = this.read(m);
     const { ledger, signatures, sampling } = this;
+    const kinds = signatures.length;
     const hold = ledger.hold[this.messages.first[m]];
-    const traces = signatures.map((s) => trace(ledger, slots, s, sampling));
-    const alone = new Float64Array(signatures.length);
+    const traces = this.traces(slots);
+    const alone = new Float64Array(kinds);
     let slowed = Number.NEGATIVE_INFINITY;
-    traces.forEach((t, c) => {
-      const start = holdAlone(hold, signatures[c], sampling);
-      alone[c] = sum(t) + start;
-      slowed = logAdd(slowed, slow(ledger, slots, signatures[c], t, sampling) + alone[c]);
-    });
+    for (let c = 0; c < kinds; c++) {
+      const one = traces(1 << c);
+      alone[c] = sum(one) + holdAlone(hold, signatures[c], sampling);
+      slowed = logAdd(slowed, slow(ledger, slots, signatures[c], one, sampling) + alone[c]);
+    }
+    const rivals = signatures.map((_, c) => habitual.rival(m, c, rates));
     const options: Option[] = [];
-    for (let a = 0; a < signatures.length; a++) {
-      const fresh = this.freshGains(slots, a, traces[a]);
-      for (let b = 0; b < signatures.length; b++) {
+    for (let a = 0; a < kinds; a++) {
+      const fresh = this.freshGains(slots, 1 << a, traces(1 << a));
+      for (let b = 0; b < kinds; b++) {
         if (a === b) continue;
-        const both = trace(ledger, slots, this.pairs[a][b], sampling);
         const start = holdTogether(hold, signatures[a], signatures[b], sampling);
-        this.pairOptions(options, slots, a, b, traces[a], both, fresh, start, habitual.rival(m, b, rates));
+        pairOptions(options, slots, a, b, traces(1 << a), traces((1 << a) | (1 << b)), fresh, start, rivals[b]);
       }
     }
-    const best = options.reduce((most, o) => Math.max(most, o.log), Number.NEGATIVE_INFINITY);
-    return { message: m, alone, slowed, options: options.filter((o) => o.log > best - 25) };
+    const single = alone.reduce((x, y) => Math.max(x, y));
+    const best = topOf(options);
+    if (kinds > 2 && best.log > single + WORTH_A_THIRD) this.tripleOptions(options, slots, best, traces, hold, rivals);
+    const most = topOf(options).log;
+    return { message: m, alone, slowed, options: options.filter((o) => o.log > most - 25) };
   }
 
   /** Gain of starting the clock filter afresh after each slot. */
-  private freshGains(slots: Slots, a: number, running: Trace): Float64Array {
+  private freshGains(slots: Slots, mask: number, running: Trace): Float64Array {
     const out = new Float64Array(slots.length + 1);
     for (let s = 0; s < slots.length; s++) {
       if (slots.own[s] === 0 && slots.pulse[s] % 9 !== 8) continue;
-      out[s] = freshGain(this.ledger, slots, s + 1, this.signatures[a], running, this.sampling);
+      out[s] = freshGain(this.ledger, slots, s + 1, this.signature(mask), running, this.sampling);
     }
     return out;
   }
 
-  private pairOptions(
+  /** Three drive, `x` yields, two drive, `y` yields, `a` keeps the bus. */
+  private tripleOptions(
     out: Option[],
     slots: Slots,
-    a: number,
-    b: number,
-    one: Trace,
-    both: Trace,
-    fresh: Float64Array,
-    start: number,
-    rival: Rival,
+    best: Option,
+    traces: (mask: number) => Trace,
+    hold: number,
+    rivals: readonly Rival[],
   ): void {
-    const n = slots.length;
-    const low = gains(both.low, one.low);
-    const high = gains(both.high, one.high);
-    const data = gains(both.data, one.data);
-    const sda = gains(both.sda, one.sda);
-    const scl = gains(both.scl, one.scl);
-    const base = sum(one) + start;
-    for (let k = 0; k < n; k++) {
-      if (rival.at[k] <= 0 || slots.own[k] === 0) continue;
-      const prior = Math.log(rival.at[k]) + (rival.retrySlot === k ? rival.retryGain : rival.elsewhereGain);
-      for (let mode = LEAVES; mode <= BYTE_ACK; mode++) {
-        const g = lastTogether(slots, k, mode);
-        if (mode !== LEAVES && g === k) continue;
-        const lastHigh = logAdd(Math.log(0.5) + both.high[g], Math.log(0.5) + one.high[g]) - one.high[g];
-        const log = base + low[g + 1] + high[g] + lastHigh + data[k] + sda[k] + scl[g + 1] + fresh[g] + prior;
-        out.push({ a, b, at: k, mode, log });
+    const kinds = this.signatures.length;
+    // Who kept the bus shows in the long tail, so only the two most probable are tried.
+    const keepers = new Set([best.a, topOf(out.filter((o) => o.a !== best.a)).a]);
+    for (const a of keepers) {
+      const one = traces(1 << a);
+      const freshOne = this.freshGains(slots, 1 << a, one);
+      for (let y = 0; y < kinds; y++) {
+        if (y === a) continue;
+        const two = traces((1 << a) | (1 << y));
+        const freshTwo = this.freshGains(slots, (1 << a) | (1 << y), two);
+        const last = leavings(slots, rivals[y], two, one, freshOne);
+        for (let x = 0; x < kinds; x++) {
+          if (x === a || x === y) continue;
+          const three = traces((1 << a) | (1 << y) | (1 << x));
+          const start = Math.max(
+            holdTogether(hold, this.signatures[a], this.signatures[y], this.sampling),
+            holdTogether(hold, this.signatures[a], this.signatures[x], this.sampling),
+          );
+          const early = leavings(slots, rivals[x], three, two, freshTwo);
+          const base = sum(one) + start;
+          for (const e of early) {
+            for (const l of last) {
+              if (e.at > l.at || e.end > l.end) continue;
+              // The fresh start after the first leaving is forgotten where the second follows at once.
+              const log = base + e.log + l.log - (l.end === e.end ? freshTwo[e.end] : 0);
+              out.push({ a, b: y, at: l.at, mode: l.mode, early: { b: x, at: e.at, mode: e.mode }, log });
+            }
+          }
+        }
       }
     }
-    const tie = base + low[n] + high[n] + data[n] + sda[n] + scl[n] + Math.log(rival.same);
-    out.push({ a, b, at: -1, mode: LEAVES, log: tie });
   }
+}
+
+function topOf(options: readonly Option[]): Option {
+  return options.reduce((x, y) => (y.log > x.log ? y : x));
+}
+
+interface Leaving {
+  readonly at: number;
+  readonly end: number;
+  readonly mode: number;
+  readonly log: number;
+}
+
+/** Log weight of `b` yielding at each slot, against what is left driving alone: `more` with it, `less` without it. */
+function leavings(slots: Slots, rival: Rival, more: Trace, less: Trace, fresh: Float64Array): Leaving[] {
+  const out: Leaving[] = [];
+  const low = gains(more.low, less.low);
+  const high = gains(more.high, less.high);
+  const data = gains(more.data, less.data);
+  const sda = gains(more.sda, less.sda);
+  const scl = gains(more.scl, less.scl);
+  for (let k = 0; k < slots.length; k++) {
+    if (rival.at[k] <= 0 || slots.own[k] === 0) continue;
+    const prior = Math.log(rival.at[k]) + (rival.retrySlot === k ? rival.retryGain : rival.elsewhereGain);
+    for (let mode = LEAVES; mode <= BYTE_ACK; mode++) {
+      const g = lastTogether(slots, k, mode);
+      if (mode !== LEAVES && g === k) continue;
+      const lastHigh = logAdd(Math.log(0.5) + more.high[g], Math.log(0.5) + less.high[g]) - less.high[g];
+      const log = low[g + 1] + high[g] + lastHigh + data[k] + sda[k] + scl[g + 1] + fresh[g] + prior;
+      out.push({ at: k, end: g, mode, log });
+    }
+  }
+  return out;
+}
+
+function pairOptions(
+  out: Option[],
+  slots: Slots,
+  a: number,
+  b: number,
+  one: Trace,
+  both: Trace,
+  fresh: Float64Array,
+  start: number,
+  rival: Rival,
+): void {
+  const base = sum(one) + start;
+  for (const l of leavings(slots, rival, both, one, fresh)) {
+    out.push({ a, b, at: l.at, mode: l.mode, early: null, log: base + l.log });
+  }
+  out.push({ a, b, at: -1, mode: LEAVES, early: null, log: sum(both) + start + Math.log(rival.same) });
 }
 
 /** Last slot in which the yielding controller still clocks. */

@@ -102,6 +102,38 @@ describe("finding SCL and SDA", () => {
     expect(proposal.warnings.find((warning) => warning.code === "tap-channels")?.message).toContain("t.m1.sda_o (1 releases)");
   });
 
+  it("keeps to the lines that are named as the bus, though noise breaks bytes on it and a tap is clean", () => {
+    const noisy = changes.flatMap((change, i) =>
+      // Every 40th change is followed by a dip of SDA in the high of SCL: a START and a STOP inside a byte.
+      change.line === "scl" && change.level === 1 && i % 40 === 39
+        ? [
+            change,
+            { tick: change.tick + 10, line: "sda" as const, level: 0 as const },
+            { tick: change.tick + 14, line: "sda" as const, level: 1 as const },
+          ]
+        : [change],
+    );
+    const own = changesOf(TALK.map((item): Said => (typeof item === "string" ? item : [item[0], false]))).changes;
+    const lines = [
+      traceOf(own, "scl", "@4", "left_scl"),
+      traceOf(own, "sda", "@5", "left_sda"),
+      traceOf(noisy, "scl", "@2", "SCL"),
+      traceOf(noisy, "sda", "@3", "SDA"),
+    ];
+    expect(accepted(lines)).toMatchObject({ scl: "@2", sda: "@3", basis: "names" });
+  });
+
+  it("accepts named lines whose bytes are mostly broken", () => {
+    const broken = changesOf(
+      Array.from({ length: 30 }, (_, i): Said[] => ["S", [0xa4, true], "P", "S", [i, true], "P"]).flat(),
+    ).changes.filter(
+      // Every 23rd pulse of SCL is missing.
+      (change, i, all) =>
+        change.line === "sda" || (all.slice(0, i).filter((other) => other.line === "scl").length >> 1) % 23 !== 22,
+    );
+    expect(accepted([traceOf(broken, "scl", "SCL"), traceOf(broken, "sda", "SDA")])).toMatchObject({ scl: "SCL", sda: "SDA" });
+  });
+
   it("takes the first of identical and of buffered copies and names the others", () => {
     const later = {
       ...traceOf(changes, "sda", "@5", "SDA far"),

@@ -10,6 +10,8 @@ export interface NameClue {
   /** 3: SCL/SDA themselves. 1: clock and data words. Half a point less for a driver's own signal (scl_oe, sda_o). 0: nothing. */
   readonly strength: number;
   readonly stem: string;
+  /** Nothing but SCL or SDA, a unit aside. */
+  readonly exact: boolean;
   /** The name belongs to something else: SPI, UART, PWM, encoder. */
   readonly foreign: boolean;
 }
@@ -49,7 +51,7 @@ export function clueOf(channel: { readonly id: string; readonly name: string }):
   }
   const foreign = best?.strength !== 3 && parts.some((word) => FOREIGN_WORDS.has(word));
   const path = channel.id.endsWith(channel.name) ? channel.id : channel.name;
-  if (best === null) return { line: null, strength: 0, stem: path.toLowerCase(), foreign };
+  if (best === null) return { line: null, strength: 0, stem: path.toLowerCase(), exact: false, foreign };
   const core = best.strength === 3 ? best.line : best.word;
   const lower = path.toLowerCase();
   const at = lower.lastIndexOf(core);
@@ -58,6 +60,7 @@ export function clueOf(channel: { readonly id: string; readonly name: string }):
     line: best.line,
     strength: best.strength - (driver ? 0.5 : 0),
     stem: `${lower.slice(0, at)}*${lower.slice(at + core.length)}`,
+    exact: best.strength === 3 && parts.every((word) => word === best.line || word === "v" || word === "mv" || word === "volts"),
     foreign,
   };
 }

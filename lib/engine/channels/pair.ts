@@ -147,9 +147,14 @@ export function countPair(scl: LineTrace, sda: LineTrace): PairCount {
     if (atScl <= atSda) sclLevel = scl.levels[i++];
     if (atSda <= atScl) sdaLevel = sda.levels[j++];
     walk.step(sclLevel, sdaLevel);
-    if (walk.count.breaks > HOPELESS_BREAKS && walk.count.breaks > 4 * walk.count.wholeBytes) break;
+    if (hopeless(walk.count)) break;
   }
   return walk.finish();
+}
+
+/** Nothing but breaks, or a clock that runs with never a START. */
+function hopeless({ breaks, wholeBytes, pulses, transactions }: PairCount): boolean {
+  return (breaks > HOPELESS_BREAKS && breaks > 4 * wholeBytes) || (pulses > 1000 && transactions === 0);
 }
 
 /** Whole bytes beyond this many say nothing more. */

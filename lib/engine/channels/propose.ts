@@ -121,8 +121,10 @@ const bothNamed = (pair: Pair) => pair.scl.clue.line === "scl" && pair.sda.clue.
 function find(all: readonly Line[], scl: Line | null, sda: Line | null): Result<Proposal> {
   const lines = distinct(all);
   const named = namedPairs(lines, scl, sda);
-  const best = top(named);
-  if (best && convincing(best.count)) return ok(settle(best, all, lines, named));
+  // The bus itself before a driver's or another bus's lines, as long as it reads as one.
+  const plain = named.filter((pair) => pair.scl.clue.exact && pair.sda.clue.exact && readable(pair));
+  const best = top(plain) ?? top(named);
+  if (best && (plain.length > 0 || convincing(best.count))) return ok(settle(best, all, lines, named));
   const behaved = top(behavedPairs(lines, scl, sda).filter(believable));
   if (behaved) return ok(settle(behaved, all, lines, named));
   const weak = best ?? firstBeginning(lines, scl, sda);
@@ -131,14 +133,22 @@ function find(all: readonly Line[], scl: Line | null, sda: Line | null): Result<
   return refuse(foundInstead(all));
 }
 
+/** Plainly named, and not plainly wrong: a bus with much noise is a bus. */
+function readable({ scl, sda, count }: Pair): boolean {
+  if (convincing(count)) return true;
+  return count.wholeBytes > 0 && count.breaks <= 4 * count.wholeBytes && !convincing(countPair(sda.trace, scl.trace));
+}
+
 /** A pair that shows no whole byte, kept on the strength of its names or of its first bits: a stuck or broken bus is a bus too. */
 function acceptable({ scl, sda, count, named }: Pair, partlyGiven: boolean): boolean {
   if (scl.trace.length === 0 && sda.trace.length === 0) return false;
   if (steady(scl.trace) && steady(sda.trace)) return false;
   // Plenty of clock and nothing but broken bytes: whatever the labels say, no bus.
-  if (count.pulses > 50 && count.breaks > 8) return false;
+  if (count.pulses > 50 && count.breaks > 8 && count.breaks > 4 * count.wholeBytes) return false;
   return named >= 5 || beginning(count) || partlyGiven;
 }
+
+const telling = ({ clue }: Line) => clue.strength + (clue.exact ? 1 : 0);
 
 /** One line of each set with the same changes, the first in the file or the better named. */
 function distinct(all: readonly Line[]): Line[] {
@@ -147,7 +157,7 @@ function distinct(all: readonly Line[]): Line[] {
     const at =
       line.trace.length === 0 ? -1 : kept.findIndex((other) => other.trace.length > 0 && identical(other.trace, line.trace));
     if (at < 0) kept.push(line);
-    else if (line.clue.strength > kept[at].clue.strength) kept[at] = line;
+    else if (telling(line) > telling(kept[at])) kept[at] = line;
   }
   return kept;
 }
@@ -168,12 +178,19 @@ function namedPairs(lines: readonly Line[], scl: Line | null, sda: Line | null):
 }
 
 function behavedPairs(lines: readonly Line[], scl: Line | null, sda: Line | null): Pair[] {
-  const active = lines.filter((line) => line.trace.length > 0).slice(0, LINES_TRIED);
+  const active = likely(lines.filter((line) => line.trace.length > 0));
   const clocks = scl ? [scl] : active.filter((line) => line.trace.length >= 18);
   const datas = sda ? [sda] : active;
   const pairs: Pair[] = [];
   for (const clock of clocks) for (const data of datas) if (clock.trace.id !== data.trace.id) pairs.push(pairOf(clock, data));
   return pairs;
+}
+
+/** Where there are too many lines to try: those with telling names first, those too busy to be followed last. */
+function likely(lines: readonly Line[]): Line[] {
+  if (lines.length <= LINES_TRIED) return [...lines];
+  const rank = ({ clue, trace }: Line) => clue.strength - (trace.until === undefined ? 0 : 4) - (trace.length < 18 ? 1 : 0);
+  return [...lines].sort((a, b) => rank(b) - rank(a)).slice(0, LINES_TRIED);
 }
 
 /** Behaviour without names to support it; lines whose names say SPI, UART or PWM have to show more. */

@@ -44,7 +44,9 @@ export interface InstantListener {
 export class Slots implements ChangeSink {
   readonly level: Uint8Array;
   readonly volts: Float64Array;
-  private readonly ofNet: Int32Array[];
+  /** Slots of net n: entries `ends[n]` to `ends[n + 1]` of `ofNets`. Flat, as a dump may declare a million nets. */
+  private readonly ofNets: Int32Array;
+  private readonly ends: Int32Array;
   private readonly written: Int32Array;
   private readonly isWritten: Uint8Array;
   private count = 0;
@@ -58,17 +60,19 @@ export class Slots implements ChangeSink {
     this.volts = new Float64Array(slots.length).fill(Number.NaN);
     this.written = new Int32Array(slots.length);
     this.isWritten = new Uint8Array(slots.length);
-    const lists: number[][] = Array.from({ length: nets }, () => []);
+    this.ends = new Int32Array(nets + 1);
+    for (const slot of slots) this.ends[slot.net + 1]++;
+    for (let net = 0; net < nets; net++) this.ends[net + 1] += this.ends[net];
+    this.ofNets = new Int32Array(slots.length);
+    const next = this.ends.slice();
     slots.forEach((slot, index) => {
-      lists[slot.net].push(index);
+      this.ofNets[next[slot.net]++] = index;
     });
-    this.ofNet = lists.map((list) => Int32Array.from(list));
   }
 
   scalar(net: number, value: number): void {
-    const list = this.ofNet[net];
-    for (let k = 0; k < list.length; k++) {
-      const slot = list[k];
+    for (let k = this.ends[net]; k < this.ends[net + 1]; k++) {
+      const slot = this.ofNets[k];
       const { bit } = this.slots[slot];
       this.level[slot] = bit > 0 && (value === 48 || value === 49) ? LOW : LEVEL[value];
       this.note(slot);
@@ -76,10 +80,9 @@ export class Slots implements ChangeSink {
   }
 
   vector(net: number, digits: Uint8Array, from: number, to: number, port: boolean): void {
-    const list = this.ofNet[net];
     const table = port ? STATE : LEVEL;
-    for (let k = 0; k < list.length; k++) {
-      const slot = list[k];
+    for (let k = this.ends[net]; k < this.ends[net + 1]; k++) {
+      const slot = this.ofNets[k];
       const at = to - 1 - this.slots[slot].bit;
       // A shortened vector is right-justified; 0 and 1 extend with 0, any other digit with itself (18.2.2).
       const first = digits[from];
@@ -93,7 +96,8 @@ export class Slots implements ChangeSink {
     let text = "";
     for (let i = from; i < to && i < from + 40; i++) text += String.fromCharCode(digits[i]);
     const value = text === "" ? Number.NaN : Number(text);
-    for (const slot of this.ofNet[net]) {
+    for (let k = this.ends[net]; k < this.ends[net + 1]; k++) {
+      const slot = this.ofNets[k];
       this.volts[slot] = Number.isFinite(value) ? value : Number.NaN;
       this.note(slot);
     }

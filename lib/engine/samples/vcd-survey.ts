@@ -8,21 +8,24 @@ import { estimate, type Limits, levelsOf } from "./vcd-volts";
 /** Changes kept of one line; a line busier than that is followed no further. */
 const KEPT = 8192;
 
+/** A line that has changed; one that has only its first value needs none. */
 interface Track {
   ticks: Float64Array;
   /** Levels of a digital line, volts of a real one. */
   values: Uint8Array | Float64Array;
   length: number;
-  last: number;
   full: boolean;
 }
 
-const FIRST = 128;
+const FIRST = 32;
 
 /** Follows every channel until told to stop. A line released (z) is taken as high. */
 export class Survey implements InstantListener {
   readonly slots: Slots;
-  private readonly tracks: Track[];
+  private readonly tracks: (Track | null)[];
+  /** First instant (NaN: none yet) and latest value of each slot. */
+  private readonly first: Float64Array;
+  private readonly last: Float64Array;
   private readonly slotOf: number[];
 
   constructor(
@@ -39,13 +42,9 @@ export class Survey implements InstantListener {
       known.set(key, slot);
       return slot;
     });
-    this.tracks = slots.map(({ real }) => ({
-      ticks: new Float64Array(FIRST),
-      values: real ? new Float64Array(FIRST) : new Uint8Array(FIRST),
-      length: 0,
-      last: Number.NaN,
-      full: false,
-    }));
+    this.tracks = slots.map(() => null);
+    this.first = new Float64Array(slots.length).fill(Number.NaN);
+    this.last = new Float64Array(slots.length).fill(Number.NaN);
     this.slots = new Slots(slots, nets, this);
     this.reals = slots.map((slot) => slot.real);
   }
@@ -54,20 +53,37 @@ export class Survey implements InstantListener {
   instant(tick: number, written: Int32Array, count: number): void {
     for (let k = 0; k < count; k++) {
       const slot = written[k];
-      const track = this.tracks[slot];
       const value = this.reals[slot] ? this.slots.volts[slot] : this.slots.level[slot];
-      if (track.length > 0 && Object.is(value, track.last)) continue;
-      if (track.length === KEPT) {
-        track.full = true;
-        continue;
-      }
-      if (track.length === track.ticks.length) {
-        grow(track);
-      }
-      track.ticks[track.length] = tick;
-      track.values[track.length++] = value;
-      track.last = value;
+      if (Number.isNaN(this.first[slot])) {
+        this.first[slot] = tick;
+        this.last[slot] = value;
+      } else if (!Object.is(value, this.last[slot])) this.change(slot, tick, value);
     }
+  }
+
+  private change(slot: number, tick: number, value: number): void {
+    const track = this.tracks[slot] ?? this.begin(slot);
+    if (track.length === KEPT) {
+      track.full = true;
+      return;
+    }
+    if (track.length === track.ticks.length) grow(track);
+    track.ticks[track.length] = tick;
+    track.values[track.length++] = value;
+    this.last[slot] = value;
+  }
+
+  /** A track that holds the first value. */
+  private begin(slot: number): Track {
+    const values = this.reals[slot] ? new Float64Array(FIRST) : new Uint8Array(FIRST);
+    const track: Track = { ticks: new Float64Array(FIRST), values, length: 0, full: false };
+    this.tracks[slot] = track;
+    if (!Number.isNaN(this.first[slot])) {
+      track.ticks[0] = this.first[slot];
+      track.values[0] = this.last[slot];
+      track.length = 1;
+    }
+    return track;
   }
 
   cut(): void {
@@ -76,8 +92,8 @@ export class Survey implements InstantListener {
 
   /** First instant of a channel, NaN where it never had a value. */
   firstTick(offer: Offer): number {
-    const track = this.trackOf(offer);
-    return track && track.length > 0 ? track.ticks[0] : Number.NaN;
+    const slot = this.slotOf[this.offers.indexOf(offer)];
+    return slot === undefined || slot < 0 ? Number.NaN : this.first[slot];
   }
 
   /** Thresholds that a real channel's own values suggest. */
@@ -105,7 +121,7 @@ export class Survey implements InstantListener {
   }
 
   private trace(slot: number, offer: Offer): LineTrace {
-    const track = this.tracks[slot];
+    const track = this.tracks[slot] ?? this.begin(slot);
     const limits = offer.real ? this.limits(offer) : null;
     const raw = track.values instanceof Float64Array ? levelsOf(track.values.subarray(0, track.length), limits) : track.values;
     const ticks = new Float64Array(track.length);

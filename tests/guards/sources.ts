@@ -1,7 +1,7 @@
 // In: the checkout. Out: its source files with what they import and export, read by a parser and not by patterns.
 
-import { execFileSync } from "node:child_process";
-import { existsSync, readFileSync } from "node:fs";
+import { spawnSync } from "node:child_process";
+import { existsSync, readdirSync, readFileSync, statSync } from "node:fs";
 import path from "node:path";
 import { parseSync } from "oxc-parser";
 
@@ -24,13 +24,27 @@ export interface Source {
   readonly program: ReturnType<typeof parseSync>["program"];
 }
 
-/** Files that git knows or would add: what a clone has, without what is ignored. */
+/** Files that git knows or would add; where there is no repository to ask (an unpacked archive), all that is not made here. */
 export function projectFiles(): string[] {
-  const listed = execFileSync("git", ["ls-files", "-z", "--cached", "--others", "--exclude-standard"], {
+  const asked = spawnSync("git", ["ls-files", "-z", "--cached", "--others", "--exclude-standard"], {
     cwd: ROOT,
     encoding: "utf8",
   });
-  return listed.split("\0").filter((file) => file && existsSync(path.join(ROOT, file)));
+  const listed = asked.status === 0 ? asked.stdout.split("\0") : foundFiles();
+  return listed.filter((file) => file && existsSync(path.join(ROOT, file)));
+}
+
+const MADE_HERE = /^(node_modules|\.git|\.firstlow|\.next.*|next-env\.d\.ts|test-results|.*\.tsbuildinfo)$/;
+
+function foundFiles(): string[] {
+  const tops = readdirSync(ROOT).filter((name) => !MADE_HERE.test(name));
+  return tops.flatMap((name) => {
+    if (!statSync(path.join(ROOT, name)).isDirectory()) return [name];
+    const inside = readdirSync(path.join(ROOT, name), { recursive: true, encoding: "utf8" }).map((file) =>
+      path.posix.join(name, file),
+    );
+    return inside.filter((file) => !file.startsWith("tests/.output") && statSync(path.join(ROOT, file)).isFile());
+  });
 }
 
 let sources: Source[] | undefined;

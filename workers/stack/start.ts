@@ -32,18 +32,28 @@ async function main(): Promise<Service> {
   const address = process.env.APP_URL || `http://127.0.0.1:${port}`;
   const local = [`http://127.0.0.1:${port}`, `http://localhost:${port}`];
   const origins = [...new Set([new URL(address).origin, ...local])];
+  goOn();
   const services = await startServices({ home: HOME, state, origins, environment: process.env, durable: true });
   started.push({ name: "services", stop: services.stop });
   await writeState(HOME, { ...state, port: process.env.PORT ? state.port : port });
   const env = applicationEnvironment({ ...services.settings, APP_URL: address });
+  goOn();
   await migrate(ROOT, env);
+  goOn();
   const accounts = await demo(services, env);
+  goOn();
   await build(ROOT, DIST, true);
+  goOn();
   const service = await serveApplication(ROOT, DIST, port, env, path.join(HOME, "log", "application.log"));
   started.push({ name: "application", stop: service.stop });
   await announce(lock, service, address);
   introduce(address, accounts, services, (performance.now() - began) / 1000);
   return service;
+}
+
+/** Breaks a start off between two stages; within one, its child processes are ended. */
+function goOn(): void {
+  if (stopping) throw new Complaint("Stopped before it was ready.", "Nothing is left running.");
 }
 
 async function announce(lock: Lock, service: Service, address: string): Promise<void> {

@@ -100,14 +100,11 @@ export class Histogram {
 
   private moments(first: number, end: number, count: number): { mean: number; count: number; spread: number } {
     let sum = 0;
-    let squares = 0;
-    for (let i = first; i < end; i += 1) {
-      const centre = this.from + (i + 0.5) * this.width;
-      sum += this.sums[i];
-      squares += this.counts[i] * centre * centre;
-    }
+    for (let i = first; i < end; i += 1) sum += this.sums[i];
     const mean = sum / count;
-    return { mean, count, spread: Math.sqrt(Math.max(0, squares / count - mean * mean)) };
+    let squares = 0;
+    for (let i = first; i < end; i += 1) squares += this.counts[i] * (this.from + (i + 0.5) * this.width - mean) ** 2;
+    return { mean, count, spread: Math.sqrt(squares / count) };
   }
 
   private share(from: number, to: number): number {

@@ -8,6 +8,7 @@ import type { Measured } from "./measure";
 import * as P from "./parameters";
 import { listedAs, type Parameter } from "./parameters";
 import type { LimitTable, Profile } from "./profile";
+import { SOURCES } from "./published/sources";
 import { boundsNs } from "./ticks";
 
 /**
@@ -144,7 +145,7 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     verdict: verdictOf(column.count, parameter.volts && !volts, limitMin === null && limitMax === null, below + above, uncertain),
     uncertainty: seconds(measured.doubt, base),
     points: parameter.points,
-    clause: limit === null ? "" : limit.source,
+    clause: limit === null ? "" : clauseOf(limit.source),
     note: noteOf(limit?.note ?? "", parameter, volts, limitMin),
     needsRate,
     distribution: column.distribution().map(([from, count]) => [seconds(from, base), count] as const),
@@ -152,6 +153,18 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     largest: column.count === 0 ? null : place(column.largest(), base),
     violations: judges.flatMap((judge) => judge.worst()).map((worst) => violated(worst, base, limitMin ?? 0, limitMax ?? 0)),
   };
+}
+
+/** A limit's source as people cite it: revisions that agree are one document, device sheets go by their titles. */
+function clauseOf(source: string): string {
+  return source
+    .split("; ")
+    .map((part) => {
+      const [id, ...rest] = part.split(" ");
+      const title = id === "UM10204r6+r7" ? "UM10204" : SOURCES[id]?.title;
+      return title === undefined ? part : [title, ...rest].join(" ");
+    })
+    .join("; ");
 }
 
 function isJudge(judge: Judge | null): judge is Judge {

@@ -4,6 +4,7 @@
 // groups that differ only by a longer low.
 
 import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SCL_LEVEL, F_SDA_LEVEL, type Features } from "./features";
+import { splitGroups } from "./split";
 
 const TOLD_BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL, F_SCL_LEVEL] as const;
 /** Two messages are neighbours when no figure differs by more than this many standard errors. */
@@ -29,9 +30,8 @@ export function clusters(features: Features): Group[] {
   // A message that does not show every figure could pass for a neighbour of two different controllers.
   const shows = (f: number) => (i: number) => features.count[f][i] > 0;
   const complete = usable.filter(shows(F_FALL)).filter(shows(F_RISE));
-  const groups = dense(features, 2 * complete.length >= usable.length ? complete : usable).map((members) =>
-    summary(features, members),
-  );
+  const crowds = dense(features, 2 * complete.length >= usable.length ? complete : usable);
+  const groups = splitGroups(features, crowds, grain).map((members) => summary(features, members));
   return withoutMixtures(features, groups);
 }
 
@@ -142,7 +142,7 @@ function withoutMixtures(features: Features, groups: readonly Group[]): Group[] 
 function standsOut(features: Features, group: Group, kept: readonly Group[]): boolean {
   return kept.every((k) => {
     const far = (f: number): number => Math.abs(apart(features, f, group.mean[f], k.mean[f], group.error[f], k.error[f]));
-    return far(F_HIGH) > 8 || (far(F_LOW) > 8 && (far(F_FALL) > 5 || far(F_RISE) > 5 || far(F_SDA_LEVEL) > 6));
+    return far(F_HIGH) > 8 || far(F_LOW) > 12 || (far(F_LOW) > 8 && (far(F_FALL) > 5 || far(F_RISE) > 5 || far(F_SDA_LEVEL) > 6));
   });
 }
 
@@ -150,7 +150,7 @@ function sameButLonger(features: Features, group: Group, other: Group): boolean 
   const d = (f: number): number => apart(features, f, group.mean[f], other.mean[f], group.error[f], other.error[f]);
   const longer = d(F_LOW) > 0;
   const same = [F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL, F_SCL_LEVEL].every((f) => Math.abs(d(f)) < 4);
-  const small = group.members.length < 3 || group.members.length < 0.03 * other.members.length;
+  const small = group.members.length < 2 && Math.abs(d(F_LOW)) < 12;
   return longer && same && small;
 }
 

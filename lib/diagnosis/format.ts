@@ -29,8 +29,8 @@ export function instant(seconds: number): string {
 
 /** A rate in Hz: 400 kHz, 20 MS/s. */
 export function rate(hertz: number, unit: "Hz" | "S/s"): string {
-  if (hertz >= 1e6) return `${Number((hertz / 1e6).toPrecision(4))} M${unit}`;
-  if (hertz >= 1e3) return `${Number((hertz / 1e3).toPrecision(4))} k${unit}`;
+  if (hertz >= 999_950) return `${Number((hertz / 1e6).toPrecision(4))} M${unit}`;
+  if (hertz >= 999.95) return `${Number((hertz / 1e3).toPrecision(4))} k${unit}`;
   return `${Number(hertz.toPrecision(4))} ${unit}`;
 }
 

@@ -81,7 +81,7 @@ function* measurementLines(summary: Summary): Generator<string> {
       .trimEnd()}\n`;
   for (const row of summary.measurements) {
     if (row.needs_rate === null || row.needs_rate === undefined) continue;
-    yield `  ${row.parameter}: this capture is too slow to judge it; ${rate(row.needs_rate, "S/s")} would do.\n`;
+    yield `  ${row.parameter}: a value near this limit cannot be judged at this sample rate; ${rate(row.needs_rate, "S/s")} would do.\n`;
   }
 }
 

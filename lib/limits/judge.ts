@@ -26,6 +26,8 @@ export class Judge {
   below = 0;
   above = 0;
   uncertain = 0;
+  /** How near the nearest of the uncertain values is to its limit, ticks. */
+  nearest = Number.POSITIVE_INFINITY;
   /** Asked no more: the profile it belongs to is out of the question. */
   dropped = false;
   private heap: Worst[] = [];
@@ -50,8 +52,10 @@ export class Judge {
    */
   judge(measured: number, doubt: number, tick: number, transaction: number): void {
     const { min, max } = this.limit;
-    if (Math.abs(measured - min) < doubt || Math.abs(measured - max) < doubt) {
+    const distance = Math.min(Math.abs(measured - min), Math.abs(measured - max));
+    if (distance < doubt) {
       this.uncertain++;
+      if (distance < this.nearest) this.nearest = distance;
     } else if (measured < min) {
       this.below++;
       this.keep(measured, tick, transaction, "min", min);

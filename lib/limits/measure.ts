@@ -245,15 +245,21 @@ class Run {
   private shapes(block: BitBlock, i: number, set: ColumnSet, at: number): void {
     const { leads } = block;
     if (leads === null) return;
-    const { doubt } = this;
     const rise = leads.rise[i];
-    if (rise > 0) (this.slot === 0 ? set.sclRise1 : set.sclRise).add(rise, doubt, block.tick[i] - rise, at);
+    if (rise > 0) (this.slot === 0 ? set.sclRise1 : set.sclRise).add(rise, this.edgeDoubt(rise), block.tick[i] - rise, at);
     const end = leads.end[i];
-    if (end > 0) set.sclFall.add(end, doubt, block.end[i] - end, at);
+    if (end > 0) set.sclFall.add(end, this.edgeDoubt(end), block.end[i] - end, at);
     const last = block.sdaLast[i];
     const sda = leads.sdaLast[i];
-    if (!Number.isNaN(last) && sda > 0) (block.value[i] === 1 ? set.sdaRise : set.sdaFall).add(sda, doubt, last - sda, at);
+    if (!Number.isNaN(last) && sda > 0) {
+      (block.value[i] === 1 ? set.sdaRise : set.sdaFall).add(sda, this.edgeDoubt(sda), last - sda, at);
+    }
     if (this.levels !== null) noteLevels(this.levels, block, i, at);
+  }
+
+  // Both crossings of an edge that several samples show are interpolated, far inside one sample; half of one is on the safe side.
+  private edgeDoubt(lead: number): number {
+    return lead >= 2 * this.doubt ? this.doubt / 2 : this.doubt;
   }
 
   private stop(block: BitBlock, i: number, set: ColumnSet): void {

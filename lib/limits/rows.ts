@@ -127,7 +127,9 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
   const at = (share: number) => (column.count === 0 ? null : seconds(column.quantile(share), base));
   const limitMin = bounds.min === null ? null : bounds.min / 1e9;
   const limitMax = bounds.max === null ? null : bounds.max / 1e9;
-  const needsRate = neededRate(limitMin, limitMax, seconds(measured.doubt, base), uncertain);
+  const measurable = volts || !parameter.volts;
+  const nearest = seconds(Math.min(...judges.map((judge) => judge.nearest)), base);
+  const needsRate = measurable ? neededRate(limitMin, limitMax, seconds(measured.doubt, base), nearest) : null;
   return {
     symbol,
     traffic: context.traffic,
@@ -142,7 +144,7 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     below,
     above,
     uncertain,
-    verdict: verdictOf(column.count, parameter.volts && !volts, limitMin === null && limitMax === null, below + above, uncertain),
+    verdict: verdictOf(column.count, !measurable, limitMin === null && limitMax === null, below + above, uncertain),
     uncertainty: seconds(measured.doubt, base),
     points: parameter.points,
     clause: limit === null ? "" : clauseOf(limit.source),
@@ -179,11 +181,18 @@ function verdictOf(count: number, needsVolts: boolean, noLimit: boolean, broken:
   return uncertain > 0 ? "too-close" : "pass";
 }
 
-function neededRate(min: number | null, max: number | null, doubt: number, uncertain: number): number | null {
+/**
+ * A limit is judged within a tenth by samples ten times finer than it (REFERENCE 7). Where that is so already, what would part
+ * the nearest uncertain value from its limit; twice the present rate at least.
+ */
+function neededRate(min: number | null, max: number | null, doubt: number, nearest: number): number | null {
   const limits = [min, max].filter((limit): limit is number => limit !== null && limit > 0);
   if (limits.length === 0 || doubt === 0) return null;
   const tightest = Math.min(...limits);
-  return uncertain > 0 || doubt >= tightest ? FINER / tightest : null;
+  const uncertain = Number.isFinite(nearest);
+  if (!uncertain && doubt < tightest) return null;
+  if (doubt > tightest / FINER) return FINER / tightest;
+  return Math.max(2 / doubt, nearest > 0 ? 1 / nearest : 0);
 }
 
 function noteOf(published: string, parameter: Parameter, volts: boolean, limitMin: number | null): string {

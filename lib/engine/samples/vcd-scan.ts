@@ -3,6 +3,7 @@
 // Works on bytes; words are complete before they are read, so the inner loops need no bounds.
 
 import type { Problem } from "../../base/result";
+import { type CodeTable, unwatched } from "./vcd-codes";
 
 /** Who is told. `net` is the number the code was registered with. */
 export interface ChangeSink {
@@ -44,50 +45,6 @@ const WORD = 16 * 1024 * 1024;
 /** What is done while a section is open. */
 const CHANGES = 0;
 const SKIP = 1;
-
-/** Identifier codes that somebody watches, found by a hash of their bytes. */
-export class CodeTable {
-  readonly mask: number;
-  /** Net number plus one, 0 where empty. */
-  readonly slots: Int32Array;
-  readonly hashes: Int32Array;
-  private readonly codes: Uint8Array[] = [];
-
-  constructor(codes: readonly string[]) {
-    let size = 256;
-    while (size < 4 * codes.length) size *= 2;
-    this.mask = size - 1;
-    this.slots = new Int32Array(size);
-    this.hashes = new Int32Array(size);
-    codes.forEach((code, net) => {
-      const bytes = Uint8Array.from(code, (c) => c.charCodeAt(0));
-      this.codes.push(bytes);
-      let hash = 0;
-      for (const c of bytes) hash = (Math.imul(hash, 31) + c) | 0;
-      let at = hash & this.mask;
-      while (this.slots[at] !== 0) at = (at + 1) & this.mask;
-      this.slots[at] = net + 1;
-      this.hashes[at] = hash;
-    });
-  }
-
-  /** The net of the code in bytes `from` to `to`, or -1. */
-  find(bytes: Uint8Array, from: number, to: number, hash: number): number {
-    let at = hash & this.mask;
-    for (;;) {
-      const slot = this.slots[at];
-      if (slot === 0) return -1;
-      if (this.hashes[at] === hash && same(this.codes[slot - 1], bytes, from, to)) return slot - 1;
-      at = (at + 1) & this.mask;
-    }
-  }
-}
-
-function same(code: Uint8Array, bytes: Uint8Array, from: number, to: number): boolean {
-  if (code.length !== to - from) return false;
-  for (let i = 0; i < code.length; i++) if (code[i] !== bytes[from + i]) return false;
-  return true;
-}
 
 /** Feed chunks with `push`, then `finish`. After a problem nothing more is read. */
 export class ChangeScanner {
@@ -185,7 +142,7 @@ export class ChangeScanner {
   /** The hot loop: bytes `from` to `to` end in white space, so that no word needs its bound checked. */
   private scan(bytes: Uint8Array, from: number, to: number): void {
     const { table, sink, all } = this;
-    const { slots, mask } = table;
+    const { slots, mask, first } = table;
     const start = this.at - from;
     let i = this.resume(bytes, from, to, start);
     let changes = 0;
@@ -210,7 +167,12 @@ export class ChangeScanner {
           dirty = this.dirty;
           quiet = !dirty && !this.aside;
         }
-        i = j;
+        i = j + 1;
+      } else if (KIND[c] === SCALAR && first[bytes[i + 1]] === 0 && !all) {
+        i += 2;
+        while (bytes[i] > 32) i++;
+        i++;
+        changes++;
       } else if (KIND[c] === SCALAR) {
         let hash = 0;
         let j = i + 1;
@@ -222,9 +184,9 @@ export class ChangeScanner {
           dirty = true;
           quiet = false;
         } else if (all || j === i + 1) this.strange(c, j === i + 1, start + i);
-        i = j;
+        i = j + 1;
       } else {
-        const after = c === 98 && !all ? unwatched(bytes, i, to, slots, mask) : 0;
+        const after = c === 98 && !all ? unwatched(bytes, i, to, first) : 0;
         if (after > 0) {
           changes++;
           i = after;
@@ -371,17 +333,6 @@ export class ChangeScanner {
       place: { byte },
     };
   }
-}
-
-/** Index after a vector change that certainly nobody watches, or 0: most vectors of a dump need no further look. */
-function unwatched(bytes: Uint8Array, i: number, to: number, slots: Int32Array, mask: number): number {
-  let j = i + 2;
-  while (bytes[j] > 32) j++;
-  // Only the usual single space: anything else, or a code in the next chunk, takes the careful way.
-  if (++j >= to || bytes[j] <= 32) return 0;
-  let hash = 0;
-  for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
-  return slots[hash & mask] === 0 ? j : 0;
 }
 
 function word(bytes: Uint8Array, from: number): string {

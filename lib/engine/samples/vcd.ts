@@ -10,8 +10,9 @@ import { needsMore, type Proposal, proposeChannels } from "../channels/propose";
 import type { CaptureHead, CaptureTail, EdgeSink, OpenCapture, Opened, ReadChoices, TapChoice } from "./reader";
 import { BusFollower, type BusLines, type TapLines } from "./vcd-bus";
 import { findOffer, type Offer, type Offers, offersOf, withChosen } from "./vcd-channels";
+import { CodeTable } from "./vcd-codes";
 import { HeaderReader } from "./vcd-header";
-import { ChangeScanner, CodeTable } from "./vcd-scan";
+import { ChangeScanner } from "./vcd-scan";
 import { Survey } from "./vcd-survey";
 import type { Limits } from "./vcd-volts";
 

@@ -1,6 +1,6 @@
 "use client";
 
-import { type ReactNode, useCallback, useEffect, useMemo, useRef, useState } from "react";
+import { type ReactNode, useMemo, useState } from "react";
 import { Bench } from "@/components/bench/Bench";
 import { Button } from "@/components/ui/Button";
 import { Notice } from "@/components/ui/Notice";
@@ -10,8 +10,7 @@ import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
 import type { Source } from "@/workers/protocol";
 import { editable } from "./annotations";
-import { wordsOf } from "./api";
-import { readOnServer, storeAnalysis } from "./archive";
+import { readOnServer } from "./archive";
 import { type Item, localSource } from "./items";
 import { useArchive } from "./useArchive";
 import type { CaseHandle } from "./useCase";
@@ -33,7 +32,6 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
   const kept = useArchive(local ? null : capture, `/api/captures/${capture?.id}/archive`);
   const settings = useStable(analysisSettings(view, { read: capture?.read ?? transfer?.read ?? {}, log: capture?.log ?? null }));
   const [read, setRead] = useState<ReadChoices | null>(null);
-  const { trouble, store } = useStoring(item, local, read ?? settings.read, refresh);
   const shown = useStable(read === null ? settings : { ...settings, read });
 
   const change = async (next: AnalysisSettings) => {
@@ -47,7 +45,7 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
     const reread = JSON.stringify(next.read) !== JSON.stringify(shown.read);
     if (judged) await handle.edit({ settings: { ...view.settings, ...(limits && { limits }), cb_pf: next.cb_pf } });
     if (transfer) {
-      transfer.read = next.read;
+      transfer.choose(next.read);
       setRead(next.read);
     } else if (capture && (reread || judged)) {
       await readOnServer(capture.id, next.read);
@@ -81,17 +79,7 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
       onSettings={view.may.includes("case.edit") || transfer ? (next) => void change(next) : undefined}
       confirmed={transfer === null}
       of={editable(handle, capture?.id ?? null, me, catalogue)}
-      onDone={store}
-      above={
-        <>
-          {above}
-          {trouble !== null && (
-            <Notice kind="broken" title="The edge archive could not be kept">
-              {trouble}
-            </Notice>
-          )}
-        </>
-      }
+      above={above}
       actions={<Actions item={item} handle={handle} onShare={onShare} />}
     />
   );
@@ -126,22 +114,7 @@ function Actions({ item, handle, onShare }: Pick<CaptureBenchProps, "item" | "ha
   );
 }
 
-function Waiting({
-  item,
-  trouble,
-  mayRead,
-  refresh,
-  again,
-}: {
-  item: Item;
-  trouble: string | null;
-  mayRead: boolean;
-  refresh: () => Promise<void>;
-  again: () => void;
-}) {
-  const [busy, setBusy] = useState(false);
-  const [refused, setRefused] = useState<string | null>(null);
-  const { capture } = item;
+function Waiting({ item, trouble, again }: { item: Item; trouble: string | null; again: () => void }) {
   if (trouble !== null) {
     return (
       <Notice kind="broken" title="The capture could not be fetched" actions={<Button onClick={again}>Try again</Button>}>
@@ -149,55 +122,12 @@ function Waiting({
       </Notice>
     );
   }
-  if (capture === null || capture.archive_size !== null) {
-    return <p className="font-serif text-body text-quiet">Fetching the capture …</p>;
-  }
-  const read = async () => {
-    setBusy(true);
-    try {
-      await readOnServer(capture.id, capture.read);
-      await refresh();
-    } catch (error) {
-      setRefused(wordsOf(error));
-    }
-    setBusy(false);
-  };
+  const waits = item.capture !== null && item.capture.archive_size === null;
   return (
-    <Notice
-      title="This capture is kept, but was not decoded to its end"
-      actions={
-        mayRead && (
-          <Button look="solid" busy={busy} onClick={() => void read()}>
-            Decode it now
-          </Button>
-        )
-      }
-    >
-      {refused ?? "The page that uploaded it was left before it had finished."}
-    </Notice>
+    <p role="status" className="font-serif text-body text-quiet">
+      {waits ? "This capture has not been decoded to its end yet." : "Fetching the capture …"}
+    </p>
   );
-}
-
-/** Stores the analysis once both have happened: the local file was read to its end, and it arrived in storage. */
-function useStoring(item: Item, local: Source | null, read: ReadChoices, refresh: () => Promise<void>) {
-  const [done, setDone] = useState(0);
-  const [trouble, setTrouble] = useState<string | null>(null);
-  const stored = useRef("");
-  const id = item.capture?.id ?? null;
-  useEffect(() => {
-    const mark = `${id} ${JSON.stringify(read)}`;
-    if (done === 0 || id === null || local === null || stored.current === mark) return;
-    stored.current = mark;
-    storeAnalysis(id, local, read).then(
-      () => {
-        setTrouble(null);
-        return refresh();
-      },
-      (error) => setTrouble(wordsOf(error)),
-    );
-  }, [done, id, local, read, refresh]);
-  const store = useCallback(() => setDone((now) => now + 1), []);
-  return { trouble, store };
 }
 
 /** The same object as before while it says the same, so that nothing is read anew for it. */

@@ -15,6 +15,7 @@ import { CaseHead } from "./CaseHead";
 import { ConflictDialog } from "./ConflictDialog";
 import { useItems } from "./items";
 import { useCase } from "./useCase";
+import { useKeeping } from "./useKeeping";
 
 export interface CaseworkProps {
   initial: CaseView;
@@ -31,6 +32,7 @@ export function Casework({ initial, me }: CaseworkProps) {
   const [sharing, setSharing] = useState(false);
   const tags = useSWR("/api/fault-tags", (path) => ask({ path, answer: FaultTagListSchema }));
   const catalogue = useMemo(() => tags.data?.fault_tags ?? [], [tags.data]);
+  const keeping = useKeeping(items, view.may.includes("capture.upload"), refresh);
   const item = items[Math.min(chosen, items.length) - 1] ?? items[0] ?? null;
   const openDialog = useCallback(() => setSharing(true), []);
 
@@ -41,6 +43,15 @@ export function Casework({ initial, me }: CaseworkProps) {
         ({ transfer, key }) => transfer && transfer.view().state !== "done" && <TransferLine key={key} transfer={transfer} />,
       )}
       {items.length > 1 && <CaptureNav items={items} current={item} onChoose={choose} />}
+      {keeping.trouble !== null && (
+        <Notice
+          kind="broken"
+          title="A decoded capture could not be kept"
+          actions={<Button onClick={keeping.again}>Try again</Button>}
+        >
+          {keeping.trouble}
+        </Notice>
+      )}
       {handle.trouble !== null && (
         <Notice kind="broken" title="That was not saved" actions={<Button onClick={handle.dismissTrouble}>Close</Button>}>
           {handle.trouble}

@@ -26,19 +26,25 @@ export function localSource(transfer: Transfer): Source {
   return made;
 }
 
+/** What about a transfer makes this page draw anew; its progress is drawn by its own line. */
+function stateOf(transfer: Transfer): string {
+  return `${transfer.view().state} ${JSON.stringify(transfer.read)}`;
+}
+
 /** The captures of a case and what is on its way to it. `onArrival` is called when a transfer has become a capture. */
 export function useItems(caseNumber: number, captures: readonly CaptureFile[], onArrival: () => void): readonly Item[] {
   const transfers = useShelf(caseNumber);
   const [, setRound] = useState(0);
   useEffect(() => {
-    const states = new Map(transfers.map((transfer) => [transfer, transfer.view().state]));
+    const states = new Map(transfers.map((transfer) => [transfer, stateOf(transfer)]));
     const ends = transfers.map((transfer) =>
       transfer.subscribe(() => {
-        const { state } = transfer.view();
-        if (states.get(transfer) === state) return;
+        const state = stateOf(transfer);
+        const before = states.get(transfer);
+        if (before === state) return;
         states.set(transfer, state);
         setRound((now) => now + 1);
-        if (state === "done") onArrival();
+        if (transfer.view().state === "done" && !before?.startsWith("done")) onArrival();
       }),
     );
     return () => {

@@ -12,7 +12,7 @@ import { TEXT_LIMIT } from "@/lib/case/case";
 import { type Upload, UploadListSchema } from "@/lib/case/upload";
 import { CaseViewSchema } from "@/lib/case/wire";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
-import { Cautions } from "./Cautions";
+import { Cautions } from "../bench/Cautions";
 import { PickedFile } from "./PickedFile";
 import { shelve } from "./shelf";
 import { size } from "./size";

@@ -32,7 +32,7 @@ export class Transfer {
   /** Tells transfers of this page apart. */
   readonly key = `transfer-${++count}`;
   /** How the person has the file read by now; kept with the capture. */
-  read: ReadChoices = {};
+  private choices: ReadChoices = {};
   private now: TransferView;
 
   constructor(
@@ -54,6 +54,15 @@ export class Transfer {
   /** Id of the upload on the server, once it has begun. */
   get uploadId(): string | null {
     return this.upload?.id ?? this.resumed;
+  }
+
+  get read(): ReadChoices {
+    return this.choices;
+  }
+
+  choose(read: ReadChoices): void {
+    this.choices = read;
+    this.tell({});
   }
 
   start(): void {
@@ -207,7 +216,7 @@ export class Transfer {
     const { capture } = await ask({
       method: "POST",
       path: `/api/uploads/${this.uploadId}/complete`,
-      body: { parts, read: this.read },
+      body: { parts, read: this.choices },
       answer: CaptureAnswerSchema,
     });
     this.running = false;

@@ -8,7 +8,6 @@ import { analysisSettings } from "@/lib/case/analysis";
 import type { FaultTagFile, LimitsChoice } from "@/lib/case/case";
 import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
-import type { Source } from "@/workers/protocol";
 import { editable } from "./annotations";
 import { readOnServer } from "./archive";
 import { type Item, localSource } from "./items";
@@ -60,13 +59,7 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
         {above}
         <h1 className="font-serif text-head">{view.title}</h1>
         <div className="mt-4">
-          <Waiting
-            item={item}
-            trouble={kept.trouble}
-            mayRead={view.may.includes("capture.upload")}
-            refresh={refresh}
-            again={kept.again}
-          />
+          <Waiting item={item} trouble={kept.trouble} again={kept.again} />
         </div>
       </div>
     );

@@ -309,6 +309,35 @@ describe("columns", () => {
     expect(read.capture.head.channels.map((channel) => channel.id)).toEqual(["@2", "@3"]);
   });
 
+  test("key and value rows to the left of the first readings", async () => {
+    const keys = ["Record Length,1901,Points", "Sample Interval,5e-07,s", "Source,CH1,"];
+    const read = await readText(table(rows, (s, i) => `${keys[i] ?? ",,"},${plainRow(s)}`));
+    same(read);
+    expect(read.capture.head.metadata).toEqual([
+      ["Record Length", "1901 Points"],
+      ["Sample Interval", "5e-07 s"],
+      ["Source", "CH1"],
+    ]);
+  });
+
+  test("start and increment beside the names, values in the units row", async () => {
+    const read = await readText(
+      `X,A,B,Start,Increment\nSequence,Volt,Volt,-1.0e-04,5.0e-07\n${table(rows, (s, i) => `${i},${s.scl * 3.3},${s.sda * 3.3},`)}`,
+    );
+    expect(read.lines).toEqual(expected().lines);
+    expect(read.ticks[0]).toBe(-100_000_000);
+    expect(read.capture.head.sampleTicks).toBe(500_000);
+  });
+
+  test("notes on some rows, text in a column, times of day", async () => {
+    same(await readText(`Time [s],SCL,SDA,Note\n${table(rows, (s, i) => `${plainRow(s)},${i === 20 ? "probe moved" : ""}`)}`));
+    same(await readText(`Date,Time [s],SCL,SDA\n${table(rows, (s) => `Tuesday,${plainRow(s)}`)}`));
+    const day = await readText(
+      `Time,SCL,SDA\n${table(rows, (s) => `00:00:${seconds(s.at).padStart(12, "0")},${s.scl},${s.sda}`)}`,
+    );
+    same(day);
+  });
+
   test("pin numbers as names", async () => {
     const read = await readText(`Time [s],4,7\n${table(rows, plainRow)}`);
     same(read);

@@ -117,9 +117,23 @@ export class Cell {
       else break;
     }
     if (digits === 0) return false;
+    if (bytes[p] === 58 && !fraction) return this.timeOfDay(bytes, from, to, decimal);
     this.mantissa = negative ? -mantissa : mantissa;
     this.exponent = exponent;
     return p === to || this.tail(bytes, p, to);
+  }
+
+  /** "12:34:56.789" is 45296.789 s. */
+  private timeOfDay(bytes: Uint8Array, from: number, to: number, decimal: number): boolean {
+    let text = "";
+    for (let p = from; p < Math.min(to, from + 24); p += 1) text += bytes[p] === decimal ? "." : String.fromCharCode(bytes[p]);
+    const match = /^(\d{1,2}):([0-5]\d):([0-5]\d)(?:\.(\d{1,9}))?$/.exec(text);
+    if (match === null) return false;
+    const places = match[4]?.length ?? 0;
+    const whole = Number(match[1]) * 3600 + Number(match[2]) * 60 + Number(match[3]);
+    this.mantissa = whole * POWERS[places] + Number(match[4] ?? 0);
+    this.exponent = -places;
+    return true;
   }
 
   /** After the digits: an exponent, an engineering suffix, a unit, in that order and each optional. */

@@ -47,27 +47,52 @@ const JUDGED_ROWS = 2000;
 export function layoutOf(table: HeadTable): Layout {
   const { rows, width, dialect } = table;
   const first = headerAmongReadings(table) ? nextFilled(rows, table.first + 1) : table.first;
-  const before = rows.slice(0, first).filter((row) => trimmed(row.cells).length > 0);
-  const header = takeHeader(before, width, dialect);
   const judged = rows
     .slice(first, first + JUDGED_ROWS)
     .filter((row) => isReadings(trimmed(row.cells), dialect.decimal, table.texts));
   const facts = Array.from({ length: width }, (_, index) => factsOf(judged, index, dialect));
+  const bare = facts.map((fact, index) => columnOf(index, "", "", fact));
+  const top = topOfTable(rows, first, settleTime(bare, facts), dialect);
+  const header = takeHeader(
+    rows.slice(0, top).filter((row) => trimmed(row.cells).length > 0),
+    width,
+    dialect,
+  );
   const columns = facts.map((fact, index) => {
     const column = columnOf(index, header.names[index] ?? "", header.units[index] ?? "", fact);
     return table.texts.has(index) ? { ...column, role: "other" as const, bits: 0 } : column;
   });
   const settled = settleSole(settleTime(columns, facts), facts);
+  const keys = [...header.preamble, ...rows.slice(top, first).map((row) => leftOf(row, settled))];
   return {
     dialect,
-    firstLine: rows[first].line,
+    firstLine: rows[top].line,
     width,
-    namedWidth: Math.max(width, trimmed(header.names).length),
+    namedWidth: Math.max(width, header.namedWidth),
     columns: settled,
-    metadata: metadataOf(header.preamble),
+    metadata: [...metadataOf(keys), ...header.beside],
     named: header.named,
     ownTimes: timesDiffer(settled, judged),
   };
+}
+
+/** Key/value rows may stand to the left of the first readings: those rows are readings too. */
+function topOfTable(rows: readonly HeadRow[], first: number, columns: readonly Column[], dialect: Dialect): number {
+  const read = columns.filter((column) => column.role !== "other");
+  if (read.length < 2 || read[0].index === 0) return first;
+  let top = first;
+  while (top > 0) {
+    const { cells } = rows[top - 1];
+    if (!read.every((column) => kindOf(cells[column.index] ?? "", dialect) === NUMBER)) break;
+    top -= 1;
+  }
+  return top;
+}
+
+/** The cells of a row that stand left of the readings. */
+function leftOf(row: HeadRow, columns: readonly Column[]): HeadRow {
+  const from = columns.find((column) => column.role !== "other")?.index ?? 0;
+  return { line: row.line, cells: row.cells.slice(0, from) };
 }
 
 function timesDiffer(columns: readonly Column[], rows: readonly HeadRow[]): boolean {
@@ -114,6 +139,8 @@ interface Header {
   readonly names: readonly string[];
   readonly units: readonly string[];
   readonly preamble: readonly HeadRow[];
+  readonly beside: readonly (readonly [string, string])[];
+  readonly namedWidth: number;
   readonly named: boolean;
 }
 
@@ -124,7 +151,8 @@ function takeHeader(before: readonly HeadRow[], width: number, dialect: Dialect)
   const fits = (row: HeadRow | undefined): row is HeadRow =>
     row !== undefined && Math.max(row.cells.length, trimmed(row.cells).length) >= Math.max(1, width - 1);
   let last = rows[rows.length - 1];
-  if (fits(last) && isUnitsRow(last.cells) && width > 1) {
+  const belowNames = fits(rows[rows.length - 2]) && isHeader(rows[rows.length - 2], width);
+  if (fits(last) && isUnitsRow(last.cells.slice(0, width), belowNames) && width > 1) {
     units = last.cells.map((text) => text.replace(/^#\s*/, ""));
     rows.pop();
     last = rows[rows.length - 1];
@@ -135,7 +163,20 @@ function takeHeader(before: readonly HeadRow[], width: number, dialect: Dialect)
   }
   // A unit alone in a cell of the header ("s,SCL,SDA") is that column's unit as well.
   if (units.length === 0) units = names.map((text) => (parseUnit(text) === null || dialect.delimiter === " " ? "" : text));
-  return { names, units, preamble: rows, named: names.length > 0 };
+  return {
+    names: names.slice(0, width),
+    units,
+    preamble: rows,
+    beside: besideTable(names, units, width),
+    namedWidth: trimmed(names).length,
+    named: names.length > 0,
+  };
+}
+
+/** A name past the table with a number under it, where units stand under the others: "..., Increment" above "..., 5e-07". */
+function besideTable(names: readonly string[], units: readonly string[], width: number): [string, string][] {
+  const pairs = names.map((name, i): [string, string] => [name.trim(), (units[i] ?? "").trim()]);
+  return pairs.filter(([name, value], i) => i >= width && name !== "" && /^[+-]?[\d.]/.test(value));
 }
 
 /** "Sample interval,1e-7" directly above two columns of readings is no header. */
@@ -152,6 +193,8 @@ interface Facts {
   readonly words: number;
   readonly hex: number;
   readonly unknown: number;
+  /** Every number is a time of day. */
+  readonly clock: boolean;
   readonly integer: boolean;
   readonly bits: number;
 }
@@ -163,10 +206,12 @@ function factsOf(rows: readonly HeadRow[], index: number, dialect: Dialect): Fac
   let hex = 0;
   let unknown = 0;
   let bits = 0;
+  let clock = 0;
   for (const row of rows) {
     const text = (row.cells[index] ?? "").trim();
     const kind = kindOf(text, dialect);
     if (kind === NUMBER) {
+      if (text.includes(":")) clock += 1;
       numbers.push(cell.value());
       texts.push(text);
     } else if (kind === BITS) {
@@ -175,12 +220,21 @@ function factsOf(rows: readonly HeadRow[], index: number, dialect: Dialect): Fac
     } else if (kind === UNKNOWN) unknown += 1;
     else if (kind === LOW || kind === HIGH || kind === RELEASED) words += 1;
   }
-  return { numbers, texts, words, hex, unknown, integer: texts.every((text) => /^[+-]?\d+$/.test(text)), bits };
+  return {
+    numbers,
+    texts,
+    words,
+    hex,
+    unknown,
+    clock: clock > 0 && clock === numbers.length,
+    integer: texts.every((text) => /^[+-]?\d+$/.test(text)),
+    bits,
+  };
 }
 
 function columnOf(index: number, header: string, unitText: string, facts: Facts): Column {
   const split = splitHeader(header);
-  const unit = parseUnit(unitText) ?? split.unit;
+  const unit = facts.clock ? parseUnit("s") : (parseUnit(unitText) ?? split.unit);
   const name = parseUnit(header) !== null && unitText === header ? "" : split.name;
   const range = /\[(\d+):(\d+)\]$/.exec(header.trim());
   const bits = range === null ? facts.bits : Math.abs(Number(range[1]) - Number(range[2])) + 1;

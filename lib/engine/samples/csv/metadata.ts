@@ -81,14 +81,14 @@ export function statedTiming(metadata: Metadata, decimal: string): StatedTiming 
   return { interval_s: interval, intervalText, start_s: start, startText };
 }
 
-/** A units row: every cell is a unit or empty, at least one is a time or a voltage. */
-export function isUnitsRow(cells: readonly string[]): boolean {
+/** A units row: every cell is a unit or empty, at least one is a time or a voltage. Below names, other words may stand in it. */
+export function isUnitsRow(cells: readonly string[], belowNames: boolean): boolean {
   let known = 0;
   for (const text of cells) {
     if (text.trim() === "") continue;
     const unit = parseUnit(text.replace(/^#\s*/, ""));
-    if (unit === null) return false;
-    if (unit.quantity !== "logic") known += 1;
+    if (unit === null && (!belowNames || /\d/.test(text))) return false;
+    if (unit !== null && unit.quantity !== "logic") known += 1;
   }
   return known > 0;
 }

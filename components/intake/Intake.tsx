@@ -13,6 +13,7 @@ import { type Upload, UploadListSchema } from "@/lib/case/upload";
 import { CaseViewSchema } from "@/lib/case/wire";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
 import { Cautions } from "../bench/Cautions";
+import { fetchCarried } from "./carry";
 import { PickedFile } from "./PickedFile";
 import { shelve } from "./shelf";
 import { size } from "./size";
@@ -54,6 +55,15 @@ export function Intake() {
 
   useEffect(() => () => client.current?.stop(), []);
 
+  // biome-ignore lint/correctness/useExhaustiveDependencies: once, when the page opens
+  useEffect(() => {
+    // A browser that keeps no such store (a private window, say) simply carries nothing.
+    fetchCarried().then(
+      (file) => file && take([file]),
+      () => undefined,
+    );
+  }, []);
+
   const look = async (file: File) => {
     client.current ??= new DecodeClient();
     let found: Partial<Picked>;
@@ -65,8 +75,7 @@ export function Intake() {
     setFiles((now) => now.map((picked) => (picked.file === file ? { ...picked, ...found } : picked)));
   };
 
-  const take = (list: FileList | null) => {
-    const added = [...(list ?? [])];
+  const take = (added: readonly File[]) => {
     const resumed = added.map((file) => ({ file, upload: uploads.find((u) => u.name === file.name && u.size === file.size) }));
     for (const { file, upload } of resumed) if (upload) goOn(file, upload);
     const fresh = resumed.filter(({ upload }) => !upload).map(({ file }) => file);
@@ -103,7 +112,7 @@ export function Intake() {
   const drop = (event: DragEvent) => {
     event.preventDefault();
     setOver(false);
-    take(event.dataTransfer.files);
+    take([...event.dataTransfer.files]);
   };
 
   return (
@@ -130,7 +139,7 @@ export function Intake() {
             className="sr-only"
             tabIndex={-1}
             onChange={(event) => {
-              take(event.target.files);
+              take([...(event.target.files ?? [])]);
               event.target.value = "";
             }}
           />

@@ -3,6 +3,7 @@
 
 import { expose, transfer } from "comlink";
 import { analyze } from "@/lib/diagnosis/analyze";
+import { openArchive } from "@/lib/engine/archive/reader";
 import { openCapture } from "@/lib/engine/samples/open";
 import { previewCapture } from "@/lib/engine/samples/preview";
 import { fileSource, host } from "./host";
@@ -11,7 +12,8 @@ import { buffersOf, type DecodeApi } from "./protocol";
 const api: DecodeApi = {
   preview: (source, choices) => previewCapture(fileSource(source.blob, source.name), host, choices),
   async analyse(source, settings, listener) {
-    const opened = await openCapture(fileSource(source.blob, source.name), host, settings.read);
+    const bytes = fileSource(source.blob, source.name);
+    const opened = await (source.kind === "archive" ? openArchive(bytes, host) : openCapture(bytes, host, settings.read));
     if (!opened.ok) return opened;
     const outcome = await analyze(opened.value, settings, {
       head: (head) => void listener.head(head),

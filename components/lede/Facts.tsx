@@ -32,7 +32,7 @@ function all(summary: Summary | null): number {
   return sum(totals(summary));
 }
 
-const VERDICT_WORDS = { pass: "within limits", fail: "outside limits", undecided: "not decided" } as const;
+const VERDICT_WORDS = { pass: "passes", fail: "fails", undecided: "not decided" } as const;
 
 /** The capture in figures, one line. */
 export function Facts({ capture }: { capture: Capture }) {

@@ -52,7 +52,7 @@ function layoutFor(width: number): RowLayout {
   return {
     narrow,
     traceWidth: Math.max(120, Math.floor(narrow ? width - 8 : width - BESIDE)),
-    rowHeight: narrow ? TRACE_HEIGHT + 42 : TRACE_HEIGHT + 1,
+    rowHeight: narrow ? TRACE_HEIGHT + 22 : TRACE_HEIGHT + 1,
   };
 }
 

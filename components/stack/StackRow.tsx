@@ -113,16 +113,16 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
     >
       {layout.narrow ? (
         <div className="pl-2">
-          <div className="flex h-10 items-start gap-3 overflow-hidden pt-1.5">
+          <div className="flex h-7 items-start gap-3 pt-1.5">
             {number}
             {time}
             {where}
             {direction}
-            <span className="ml-auto max-h-9 overflow-hidden text-right font-serif text-label italic leading-[1.1rem]">
+            <span className="ml-auto max-h-9 overflow-hidden bg-paper text-right font-serif text-label italic leading-[1.1rem]">
               {words}
             </span>
           </div>
-          {trace}
+          <div className="-mt-1.5">{trace}</div>
         </div>
       ) : (
         <div className="grid grid-cols-[3.25rem_6.9rem_6.9rem_1.5rem_1fr_8.5rem] pl-2">

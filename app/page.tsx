@@ -1,7 +1,5 @@
-import Link from "next/link";
 import { Masthead } from "@/components/account/Masthead";
 import { FrontDoor } from "@/components/bench/FrontDoor";
-import { buttonClass } from "@/components/ui/Button";
 import { pageViewer } from "@/lib/server/access/page";
 import { nameplate } from "@/lib/server/access/viewer";
 
@@ -13,15 +11,9 @@ export default async function FrontPage() {
       <main>
         <FrontDoor
           keep={
-            viewer.kind === "member" ? (
-              <Link href="/cases/new" className={buttonClass("word")}>
-                keep it in a case
-              </Link>
-            ) : (
-              <Link href="/sign-in" className={buttonClass("word")}>
-                sign in to keep it
-              </Link>
-            )
+            viewer.kind === "member"
+              ? { href: "/cases/new", text: "keep it in a case" }
+              : { href: `/sign-in?next=${encodeURIComponent("/cases/new")}`, text: "sign in to keep it" }
           }
         />
       </main>

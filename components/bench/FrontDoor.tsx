@@ -1,6 +1,8 @@
 "use client";
 
-import { type ReactNode, useEffect, useRef, useState } from "react";
+import { useRouter } from "next/navigation";
+import { useEffect, useRef, useState } from "react";
+import { carry } from "@/components/intake/carry";
 import { Button } from "@/components/ui/Button";
 import { Notice } from "@/components/ui/Notice";
 import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
@@ -11,8 +13,8 @@ import { Drop } from "./Drop";
 import { SAMPLE_NAME, SAMPLE_SETTINGS, SAMPLE_TITLE, SAMPLE_URL } from "./sample";
 
 export interface FrontDoorProps {
-  /** Links beside an opened capture: to keep it in a case, or to sign in. */
-  keep?: ReactNode;
+  /** Where an opened capture is kept in a case, by signing in first where that is needed. */
+  keep: { readonly href: string; readonly text: string };
 }
 
 /** What lies on the bench. */
@@ -28,6 +30,7 @@ export function FrontDoor({ keep }: FrontDoorProps) {
   const [laid, setLaid] = useState<Laid | null>(null);
   const [trouble, setTrouble] = useState<string | null>(null);
   const [busy, setBusy] = useState(false);
+  const router = useRouter();
   const top = useRef<HTMLDivElement>(null);
 
   useEffect(() => {
@@ -43,6 +46,15 @@ export function FrontDoor({ keep }: FrontDoorProps) {
       settings: FRESH_SETTINGS,
       confirmed: false,
     });
+  }
+
+  async function keepIt({ source }: Laid) {
+    try {
+      await carry(source.blob, source.name);
+      router.push(keep.href);
+    } catch (error) {
+      setTrouble(error instanceof Error ? error.message : String(error));
+    }
   }
 
   async function sample() {
@@ -75,7 +87,9 @@ export function FrontDoor({ keep }: FrontDoorProps) {
           confirmed={laid.confirmed}
           actions={
             <>
-              {keep}
+              <Button look="word" onClick={() => void keepIt(laid)}>
+                {keep.text}
+              </Button>
               <Button look="word" onClick={clear}>
                 another capture
               </Button>

@@ -182,6 +182,43 @@ describe("a whole archive", () => {
     expect(bytes.length - 2500).toBeLessThan(2 * file.edges.length);
   });
 
+  it("keeps the voltages of a capture in volts", async () => {
+    const { changes, end } = changesOf([...write(0x50, 1, 2), ...write(0x21, 3)], 300_000);
+    const step = (line: "scl" | "sda", level: 0 | 1) => {
+      const code = line === "scl" ? "!" : '"';
+      // A rise through the thresholds in three steps, a low that tells who drives.
+      return level ? `r1.2 ${code}\n#__\nr3.3 ${code}` : `r${line === "scl" ? 0.12 : 0.31} ${code}`;
+    };
+    const header = '$timescale 1 ps $end $var real 1 ! scl $end $var real 1 " sda $end $enddefinitions $end';
+    let rise = 0;
+    const text = vcdOf(changes, end, { header, change: step, initial: 'r3.3 !\nr3.3 "' }).replace(
+      /#(\d+)\n([^#]*)#__/g,
+      (_, tick, before) => {
+        rise++;
+        return `#${tick}\n${before}#${Number(tick) + 90_000 + rise}`;
+      },
+    );
+    const opened = await openVcd(sourceOf(text), { scl: "scl", sda: "sda" }, false);
+    if (!opened.ok) throw new Error(opened.problem.message);
+    const file = await readOut(opened.value);
+    expect(file.said).toBe("S A0 A 01 A 02 A P S 42 A 03 A P");
+    const writer = createArchiveWriter(opened.value.head, host.deflate);
+    for (const block of file.blocks) writer.edges(block);
+    const again = await openArchive(sourceOf(new Uint8Array(await new Blob(await writer.finish(file.tail)).arrayBuffer())), host);
+    if (!again.ok) throw new Error(again.problem.message);
+    const archive = await readOut(again.value);
+    expect(archive.said).toBe(file.said);
+    const column = (out: typeof file, name: "leadScl" | "leadSda" | "meanScl" | "meanSda") =>
+      out.blocks.flatMap(({ volts }) => Array.from(volts?.[name] ?? []));
+    expect(column(archive, "leadScl")).toEqual(column(file, "leadScl"));
+    expect(column(archive, "leadSda")).toEqual(column(file, "leadSda"));
+    expect(column(file, "leadScl").filter((lead) => lead > 90_000).length).toBeGreaterThan(40);
+    column(archive, "meanSda").forEach((mean, i) => {
+      const was = column(file, "meanSda")[i];
+      if (!Number.isNaN(was)) expect(mean).toBeCloseTo(was, 3);
+    });
+  });
+
   it("cuts a long capture into blocks, the first of them small", async () => {
     const length = 1_300_000;
     const whole = digital(

@@ -131,8 +131,7 @@ export function decodeBlock(bytes: Uint8Array, length: number, volts: boolean, l
   const lines = new Uint8Array(length);
   let tick = input.double();
   const step = input.double();
-  if (!(Number.isSafeInteger(tick) && Number.isSafeInteger(step) && step > 0))
-    throw new CorruptError("a block's grid makes no sense");
+  if (!(Number.isInteger(tick) && Number.isInteger(step) && step > 0)) throw new CorruptError("a block's grid makes no sense");
   ticks[0] = tick;
   lines[0] = input.byte();
   const edges = new ByteReader(input.take(input.word()));
@@ -154,7 +153,7 @@ export function decodeBlock(bytes: Uint8Array, length: number, volts: boolean, l
       last = lines[i] & ~CUT;
     }
   }
-  if (edges.left !== 0 || !Number.isSafeInteger(tick)) throw new CorruptError("a block does not hold the edges that it says");
+  if (edges.left !== 0 || !Number.isInteger(tick)) throw new CorruptError("a block does not hold the edges that it says");
   const columns = volts ? decodeVolts(input, lines, length, leadStep) : null;
   if (input.left !== 0) throw new CorruptError("a block is longer than it should be");
   return { length, ticks, lines, volts: columns };

@@ -13,7 +13,7 @@ export function copiesOf(pair: Pair, all: readonly Line[]): string[] {
   for (const line of all) {
     if (line.trace.id === pair.scl.trace.id || line.trace.id === pair.sda.trace.id) continue;
     for (const chosenLine of [pair.scl, pair.sda]) {
-      if (copied(chosenLine.trace, line.trace) && copies.length < 6) copies.push(label(line));
+      if (copied(chosenLine.trace, line.trace)) copies.push(label(line));
     }
   }
   return copies;

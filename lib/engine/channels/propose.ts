@@ -153,11 +153,17 @@ const telling = ({ clue }: Line) => clue.strength + (clue.exact ? 1 : 0);
 /** One line of each set with the same changes, the first in the file or the better named. */
 function distinct(all: readonly Line[]): Line[] {
   const kept: Line[] = [];
+  // Lines that could be equal, by what is cheap to compare: a dump may hold thousands.
+  const alike = new Map<string, number[]>();
   for (const line of all) {
-    const at =
-      line.trace.length === 0 ? -1 : kept.findIndex((other) => other.trace.length > 0 && identical(other.trace, line.trace));
-    if (at < 0) kept.push(line);
-    else if (telling(line) > telling(kept[at])) kept[at] = line;
+    const { length, initial, ticks } = line.trace;
+    const key = `${length} ${initial} ${ticks[0]} ${ticks[length - 1]}`;
+    const places = length === 0 ? [] : (alike.get(key) ?? []);
+    const at = places.find((place) => identical(kept[place].trace, line.trace));
+    if (at === undefined) {
+      places.push(kept.push(line) - 1);
+      alike.set(key, places);
+    } else if (telling(line) > telling(kept[at])) kept[at] = line;
   }
   return kept;
 }
@@ -235,7 +241,8 @@ function settle(pair: Pair, all: readonly Line[], lines: readonly Line[], named:
   const byNames = bothNamed(pair);
   const contradicted = scl.clue.line === "sda" || sda.clue.line === "scl";
   const copies = copiesOf(pair, all);
-  const copied = copies.length > 0 ? ` ${copies.join(", ")} carry the same signal; the first was taken.` : "";
+  const more = copies.length > 4 ? ` and ${copies.length - 4} more` : "";
+  const copied = copies.length > 0 ? ` ${copies.slice(0, 4).join(", ")}${more} carry the same signal; the first was taken.` : "";
   const basis = byNames ? "names" : "behaviour";
   const told = byNames
     ? `by their names, and they decode to ${wording(count)} (swapped: ${wording(swap)})`

@@ -121,20 +121,21 @@ export class Survey implements InstantListener {
   }
 
   private trace(slot: number, offer: Offer): LineTrace {
-    const track = this.tracks[slot] ?? this.begin(slot);
+    const track = this.tracks[slot];
+    if (track === null) return { ...FLAT, initial: offer.real ? 2 : levelOf(this.last[slot]) };
     const limits = offer.real ? this.limits(offer) : null;
     const raw = track.values instanceof Float64Array ? levelsOf(track.values.subarray(0, track.length), limits) : track.values;
     const ticks = new Float64Array(track.length);
     const levels = new Uint8Array(track.length);
     let length = 0;
     for (let i = 0; i < track.length; i++) {
-      const level = raw[i] === RELEASED || raw[i] === HIGH ? 1 : raw[i] === LOW ? 0 : 2;
+      const level = levelOf(raw[i]);
       if (length > 0 && level === levels[length - 1]) continue;
       ticks[length] = track.ticks[i];
       levels[length++] = level;
     }
     // The first entry is the initial state, not a change.
-    const initial = length === 0 || levels[0] === 2 ? 2 : levels[0] === 1 ? 1 : 0;
+    const initial = length === 0 ? 2 : levelOf(levels[0]);
     return {
       id: "",
       name: "",
@@ -145,6 +146,13 @@ export class Survey implements InstantListener {
       ...(track.full ? { until: track.ticks[track.length - 1] } : {}),
     };
   }
+}
+
+const FLAT = { id: "", name: "", length: 0, ticks: new Float64Array(0), levels: new Uint8Array(0) };
+
+/** z is high for the finder's purpose; NaN, before the first value, is unknown. */
+function levelOf(level: number): 0 | 1 | 2 {
+  return level === RELEASED || level === HIGH ? 1 : level === LOW ? 0 : 2;
 }
 
 function grow(track: Track): void {

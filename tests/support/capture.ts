@@ -1,4 +1,4 @@
-import { createArchiveWriter } from "@/lib/engine/archive/writer";
+import { recordArchive } from "@/lib/engine/archive/record";
 import type { ByteSource } from "@/lib/engine/bytes/source";
 import { openCapture } from "@/lib/engine/samples/open";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
@@ -18,12 +18,7 @@ function memory(name: string, bytes: Uint8Array): ByteSource {
 export async function archiveOf(name: string, bytes: Uint8Array, choices: ReadChoices = {}): Promise<Uint8Array> {
   const opened = await openCapture(memory(name, bytes), host, choices);
   if (!opened.ok) throw new Error(opened.problem.message);
-  const writer = createArchiveWriter(opened.value.head, host.deflate);
-  const tail = await opened.value.read({
-    edges: (block) => writer.edges(block),
-    tap: (index, block) => writer.tap(index, block),
-    progress() {},
-  });
-  if (!tail.ok) throw new Error(tail.problem.message);
-  return Buffer.concat(await writer.finish(tail.value));
+  const packed = await recordArchive(opened.value, host);
+  if (!packed.ok) throw new Error(packed.problem.message);
+  return packed.value;
 }

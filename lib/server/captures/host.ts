@@ -10,7 +10,7 @@ export const host: Host = {
 };
 
 async function* through(chunks: AsyncIterable<Uint8Array>, codec: Transform): AsyncGenerator<Uint8Array> {
-  const input = Readable.from(chunks, { objectMode: false });
+  const input = Readable.from(copies(chunks), { objectMode: false });
   // pipe() does not hand errors on.
   input.on("error", (error) => codec.destroy(error));
   try {
@@ -19,4 +19,9 @@ async function* through(chunks: AsyncIterable<Uint8Array>, codec: Transform): As
     input.destroy();
     codec.destroy();
   }
+}
+
+/** Sources may use their buffer again for the next chunk; a stream keeps chunks waiting. */
+async function* copies(chunks: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
+  for await (const chunk of chunks) yield chunk.slice();
 }

@@ -21,6 +21,8 @@ const ENGINE = [
   "lib/engine/channels",
   "lib/engine/bits",
   "lib/engine/bus",
+  ,
+  "lib/engine/archive",
 ];
 const PURE = ["lib/base", ...ENGINE, "lib/limits", "lib/forensics", "lib/diagnosis", "lib/simulation", "lib/view", "lib/case"];
 
@@ -60,7 +62,7 @@ export const ROOMS: readonly Room[] = [
   {
     place: "lib/engine/archive",
     holds: "edges packed for storage",
-    from: ["lib/base", "lib/engine/samples", "lib/engine/bits", "lib/engine/bus"],
+    from: ["lib/base", "lib/engine/bytes", "lib/engine/samples", "lib/engine/bits", "lib/engine/bus"],
     packages: ["zod"],
     pure: true,
   },

@@ -3,15 +3,18 @@
 // what is not a controller is taken out: groups that are the longest-low, shortest-high mixture of two others (contests), and
 // groups that differ only by a longer low.
 
-import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SCL_LEVEL, F_SDA_LEVEL, type Features } from "./features";
+import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
 import { splitGroups } from "./split";
 
-const TOLD_BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL, F_SCL_LEVEL] as const;
+/** Not the level of SCL: a target that stretches pulls it lower too. */
+const TOLD_BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL] as const;
 /** Two messages are neighbours when no figure differs by more than this many standard errors. */
 const NEAR = 4.5;
 /** Figures nearer than this share of themselves are never told apart, whatever the statistics say: timers drift. */
 const GRAIN = 4e-4;
 const GRAIN_V = 0.004;
+/** Groups nearer than this, in errors of one message, are one. */
+const PLAIN = 4;
 
 export interface Group {
   /** Indices into the features. */
@@ -19,6 +22,8 @@ export interface Group {
   /** Mean of each figure, NaN where none shows it. */
   readonly mean: Float64Array;
   readonly error: Float64Array;
+  /** Error of one message's figure. */
+  readonly typical: Float64Array;
 }
 
 export function clusters(features: Features): Group[] {
@@ -35,10 +40,6 @@ export function clusters(features: Features): Group[] {
   return withoutMixtures(features, groups);
 }
 
-export function standardError(features: Features, f: number, i: number): number {
-  return features.spread[f] / Math.sqrt(Math.max(1, features.count[f][i]));
-}
-
 function grain(f: number, value: number): number {
   return f >= F_SDA_LEVEL ? GRAIN_V : GRAIN * value;
 }
@@ -50,10 +51,8 @@ function distance(features: Features, i: number, j: number): number {
     const a = features.value[f][i];
     const b = features.value[f][j];
     if (Number.isNaN(a) || Number.isNaN(b)) continue;
-    const s = features.spread[f];
     const g = grain(f, a);
-    const variance = (s * s) / features.count[f][i] + (s * s) / features.count[f][j] + g * g;
-    const d = Math.abs(a - b) / Math.sqrt(variance);
+    const d = Math.abs(a - b) / Math.sqrt(variance(features, f, i) + variance(features, f, j) + g * g);
     if (d > worst) {
       worst = d;
       if (worst > NEAR) break;
@@ -103,6 +102,7 @@ function dense(features: Features, usable: readonly number[]): number[][] {
 function summary(features: Features, members: readonly number[]): Group {
   const mean = new Float64Array(features.value.length).fill(Number.NaN);
   const error = new Float64Array(features.value.length).fill(Number.NaN);
+  const typical = new Float64Array(features.value.length).fill(Number.NaN);
   for (let f = 0; f < mean.length; f++) {
     let weight = 0;
     let sum = 0;
@@ -114,9 +114,12 @@ function summary(features: Features, members: readonly number[]): Group {
     }
     if (weight === 0) continue;
     mean[f] = sum / weight;
-    error[f] = features.spread[f] / Math.sqrt(weight);
+    let common = 0;
+    for (const i of members) common += f === F_LOW || f === F_HIGH ? features.coherent[i] : 0;
+    error[f] = Math.sqrt(features.spread[f] ** 2 / weight + common / members.length ** 2);
+    typical[f] = Math.sqrt(features.spread[f] ** 2 / (weight / members.length) + common / members.length);
   }
-  return { members, mean, error };
+  return { members, mean, error, typical };
 }
 
 function apart(features: Features, f: number, a: number, b: number, ea: number, eb: number): number {
@@ -132,10 +135,21 @@ function withoutMixtures(features: Features, groups: readonly Group[]): Group[] 
     if (kept.length >= 12) break;
     const rare = group.members.length <= 2 && kept.length > 0;
     if (rare && !standsOut(features, group, kept)) continue;
+    if (kept.some((k) => blur(group, k) < PLAIN)) continue;
     if (kept.some((k) => sameButLonger(features, group, k)) || isMixture(features, group, kept)) continue;
     kept.push(group);
   }
   return kept;
+}
+
+/** How far apart two groups are in units of one message's error, all figures together. */
+function blur(group: Group, other: Group): number {
+  let square = 0;
+  for (const f of TOLD_BY) {
+    const d = (group.mean[f] - other.mean[f]) ** 2 / (group.typical[f] ** 2 + grain(f, group.mean[f]) ** 2);
+    if (!Number.isNaN(d)) square += d;
+  }
+  return Math.sqrt(square);
 }
 
 /** A rare group must differ in a figure that no target and no bystander can change: the high, or the data delays. */
@@ -149,7 +163,7 @@ function standsOut(features: Features, group: Group, kept: readonly Group[]): bo
 function sameButLonger(features: Features, group: Group, other: Group): boolean {
   const d = (f: number): number => apart(features, f, group.mean[f], other.mean[f], group.error[f], other.error[f]);
   const longer = d(F_LOW) > 0;
-  const same = [F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL, F_SCL_LEVEL].every((f) => Math.abs(d(f)) < 4);
+  const same = [F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL].every((f) => Math.abs(d(f)) < 4);
   const small = group.members.length < 2 && Math.abs(d(F_LOW)) < 12;
   return longer && same && small;
 }
@@ -166,7 +180,10 @@ function isMixture(features: Features, group: Group, kept: readonly Group[]): bo
         const e = Math.max(x.error[f], y.error[f]) + 0.4 * features.spread[f];
         return Math.abs(apart(features, f, group.mean[f], m, group.error[f], e)) < 3.5;
       };
-      if (fits(F_LOW, Math.max) && fits(F_HIGH, Math.min) && fits(F_FALL, Math.min) && fits(F_RISE, Math.max)) return true;
+      const clocks = fits(F_LOW, Math.max) && fits(F_HIGH, Math.min);
+      // In a few messages the data delays are a mixture of contested and uncontested bits.
+      if (clocks && group.members.length <= 3) return true;
+      if (clocks && fits(F_FALL, Math.min) && fits(F_RISE, Math.max)) return true;
     }
   }
   return false;

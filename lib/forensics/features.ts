@@ -24,6 +24,28 @@ export interface Features {
   readonly even: Uint8Array;
   /** Spread of one pulse about its message's mean, per feature. */
   readonly spread: Float64Array;
+  /** Variance of a message's own low and high that more pulses do not remove: see `beat`. */
+  readonly coherent: Float64Array;
+}
+
+/** Variance of a figure of the i-th message. */
+export function variance(features: Features, f: number, i: number): number {
+  const common = f === F_LOW || f === F_HIGH ? features.coherent[i] : 0;
+  return features.spread[f] ** 2 / Math.max(1, features.count[f][i]) + common;
+}
+
+/**
+ * Sampling error does not average out when the bit time is nearly a whole number of samples, or of halves, thirds ...: every pulse is then
+ * sampled at the same phase. q-th harmonic of the sawtooth of rounding, averaged over n pulses that advance by `bit` samples each.
+ */
+export function beat(bit: number, n: number, jitter: number): number {
+  let sum = 0;
+  for (let q = 1; q <= 5; q++) {
+    const slip = Math.max(Math.abs(q * bit - Math.round(q * bit)), q * jitter);
+    const left = Math.min(1, 1 / (Math.PI * n * slip + 1e-12));
+    sum += (left / q) ** 2;
+  }
+  return sum / 12;
 }
 
 /** Longest stretch of a message that features are taken from, SCL pulses. */
@@ -65,7 +87,12 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
   }
   spread[F_HOLD] = Math.max(spread[F_LOW], 0.41 * step) * 1.5;
   for (let i = 0; i < n; i++) even[i] = agrees(halves[2 * i], spread[F_LOW]) && agrees(halves[2 * i + 1], spread[F_HIGH]) ? 1 : 0;
-  return { messages: list, value, count, even, spread };
+  const jitter = Math.sqrt(Math.max(0, spread[F_HIGH] ** 2 - (step * step) / 6)) / step;
+  const coherent = Float64Array.from({ length: n }, (_, i) => {
+    const bit = (value[F_LOW][i] + value[F_HIGH][i]) / step;
+    return Number.isNaN(bit) || step <= 1 ? 0 : step * step * beat(bit, Math.max(1, count[F_LOW][i]), jitter);
+  });
+  return { messages: list, value, count, even, spread, coherent };
 }
 
 function agrees(half: readonly number[], spread: number): boolean {

@@ -2,7 +2,7 @@
 // Two-component normal mixture with known errors (EM), accepted by the Bayesian information criterion (Schwarz, 1978) and only
 // when the halves stand so far apart that a slow drift of one clock cannot pass for two (a uniform spread gives 3.5).
 
-import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SDA_LEVEL, type Features } from "./features";
+import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
 
 const BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL] as const;
 const FAR = 4.2;
@@ -63,7 +63,7 @@ function tableOf(features: Features, members: readonly number[], grain: (f: numb
   return {
     n: members.length,
     x: column((f, i) => (features.count[f][i] > 0 ? features.value[f][i] : Number.NaN)),
-    v: column((f, i) => features.spread[f] ** 2 / Math.max(1, features.count[f][i]) + grain(f, features.value[f][i]) ** 2),
+    v: column((f, i) => variance(features, f, i) + grain(f, features.value[f][i]) ** 2),
   };
 }
 

@@ -68,7 +68,13 @@ export class Controller {
   }
 
   onStart(): void {
-    if (this.phase === "run" && this.steps[this.step]?.kind !== "repeat") this.abandon();
+    if (this.phase !== "run") return;
+    if (this.steps[this.step]?.kind !== "repeat") this.abandon();
+    else if (!this.bus.sda.isPulled(this.device)) {
+      // Another made the repeated START that this one was about to make: they merge, as at the first START.
+      this.clear();
+      this.repeated();
+    }
   }
 
   onStop(): void {
@@ -209,6 +215,10 @@ export class Controller {
       this.lose("repeated-start");
       return;
     }
+    this.repeated();
+  }
+
+  private repeated(): void {
     this.bus.drive("sda", this.device, true);
     this.after(this.habit.hdsta_s, () => this.bus.drive("scl", this.device, true));
   }

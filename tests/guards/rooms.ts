@@ -21,7 +21,6 @@ const ENGINE = [
   "lib/engine/channels",
   "lib/engine/bits",
   "lib/engine/bus",
-  ,
   "lib/engine/archive",
 ];
 const PURE = ["lib/base", ...ENGINE, "lib/limits", "lib/forensics", "lib/diagnosis", "lib/simulation", "lib/view", "lib/case"];

@@ -33,7 +33,7 @@ export class Column {
   private few = 0;
   private kept = new Float64Array(64);
   private buckets: Uint32Array | null = null;
-  /** One value that fell into each bucket. */
+  /** The first value that fell into each bucket. */
   private seen: Float64Array | null = null;
   /** Intervals of the block under way, and which entry of it each belongs to. */
   private waiting = 0;
@@ -103,8 +103,7 @@ export class Column {
         const measured = values[i];
         float[0] = measured;
         const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
-        buckets[bucket]++;
-        seen[bucket] = measured;
+        if (buckets[bucket]++ === 0) seen[bucket] = measured;
         if (measured >= calmLow && measured <= calmHigh) continue;
         this.notable(measured, doubt, starts[entries[i]], transactions[entries[i]]);
         calmLow = this.calmLow;
@@ -113,6 +112,26 @@ export class Column {
       return;
     }
     for (; i < waiting; i++) this.add(values[i], doubt, starts[entries[i]], transactions[entries[i]]);
+  }
+
+  /** Counts the intervals from `starts[i]` to `ends[i]` of a run of entries of one transaction. */
+  span(ends: Float64Array, starts: Float64Array, from: number, to: number, doubt: number, transaction: number): void {
+    const { buckets, seen } = this;
+    if (buckets === null || seen === null) {
+      for (let i = from; i < to; i++) this.add(ends[i] - starts[i], doubt, starts[i], transaction);
+      return;
+    }
+    let { calmLow, calmHigh } = this;
+    for (let i = from; i < to; i++) {
+      const measured = ends[i] - starts[i];
+      float[0] = measured;
+      const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
+      if (buckets[bucket]++ === 0) seen[bucket] = measured;
+      if (measured >= calmLow && measured <= calmHigh) continue;
+      this.notable(measured, doubt, starts[i], transaction);
+      calmLow = this.calmLow;
+      calmHigh = this.calmHigh;
+    }
   }
 
   /** `measured` and `doubt` in ticks; `tick` is where the interval begins. */
@@ -145,8 +164,7 @@ export class Column {
     if (this.buckets === null || this.seen === null) return;
     float[0] = measured;
     const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
-    this.buckets[bucket]++;
-    this.seen[bucket] = measured;
+    if (this.buckets[bucket]++ === 0) this.seen[bucket] = measured;
   }
 
   private keep(measured: number): void {

@@ -130,7 +130,8 @@ class Run {
       const set = (flags[i] & IN_HS) !== 0 ? this.highSpeed(length) : this.fs;
       belongs[i] = this.open ? this.transaction : -1;
       if (k === BIT) {
-        if (plain && this.open && set.slow === null && (flags[i] & UNUSUAL) === 0) i = this.plainBits(block, i) - 1;
+        if (plain && this.open && set.slow === null && set.timeout === null && (flags[i] & UNUSUAL) === 0)
+          i = this.plainBits(block, i) - 1;
         else this.bit(block, i, set);
         continue;
       }
@@ -189,28 +190,27 @@ class Run {
   private plainBits(block: BitBlock, from: number): number {
     const { kind, flags, length, fall, tick, end, sdaFirst, sdaLast } = block;
     const { fs, belongs, transaction, doubt } = this;
-    const [period, low, high, suDat, hdDat] = [fs.period, fs.low, fs.high, fs.suDat, fs.hdDat];
+    const { suDat, hdDat, vdDat, vdAck } = fs;
     let { slot, shortestLow } = this;
     let i = from;
     for (; i < length && kind[i] === BIT && (flags[i] & UNUSUAL) === 0; i++) {
       const fell = fall[i];
       const rose = tick[i];
-      const ended = end[i];
       const lasted = rose - fell;
-      if (!(lasted >= 0 && ended >= rose)) break;
-      belongs[i] = transaction;
+      if (!(lasted >= 0 && end[i] >= rose)) break;
       if (lasted < shortestLow) shortestLow = lasted;
-      low.take(lasted, i);
-      high.take(ended - rose, i);
-      period.take(ended - fell, i);
       const last = sdaLast[i];
       if (last >= fell) {
+        belongs[i] = transaction;
         hdDat.take(sdaFirst[i] - fell, i);
         suDat.take(rose - last, i);
-        if (lasted <= STRETCHED * shortestLow + 2 * doubt) (slot === ACK_SLOT ? fs.vdAck : fs.vdDat).take(last - fell, i);
+        if (lasted <= STRETCHED * shortestLow + 2 * doubt) (slot === ACK_SLOT ? vdAck : vdDat).take(last - fell, i);
       }
       slot = slot === ACK_SLOT ? 0 : slot + 1;
     }
+    fs.low.span(tick, fall, from, i, doubt, transaction);
+    fs.high.span(end, tick, from, i, doubt, transaction);
+    fs.period.span(end, fall, from, i, doubt, transaction);
     this.slot = slot;
     this.shortestLow = shortestLow;
     if (i > from) return i;

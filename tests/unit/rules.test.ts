@@ -334,6 +334,16 @@ describe("in volts", () => {
   });
 });
 
+test("look-alike: what forensics concluded is listed, and does not fail a capture by itself", () => {
+  const found: unknown[] = [];
+  const watch = RULES["look-alike"].watch({ base: SCRIPT_HEAD.timebase, add: (...fault) => found.push(fault) });
+  const concluded: Fault = { kind: "look-alike", transaction: 3, time_s: 2e-3, detail: "a target held SDA" };
+  const end = { lookAlikes: [concluded] };
+  watch.conclude?.(end as unknown as Parameters<NonNullable<typeof watch.conclude>>[0]);
+  expect(found).toEqual([["look-alike", 2_000_000, "a target held SDA", 3]]);
+  expect(FAULT_WORDS["look-alike"].fails).toBe(false);
+});
+
 test("nothing is judged on an assumed time base", async () => {
   const head = { ...SCRIPT_HEAD, timebase: { ticksPerSecond: 1, origin: "assumed" }, sampleTicks: 1 } as const;
   const report = await scripted(new LineScript().write(0xa0, 1), 1000, {}, head);

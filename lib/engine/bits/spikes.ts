@@ -39,6 +39,11 @@ export function createSpikeFilter(base: Timebase, listener: SpikeListener): Spik
 
   function push(block: EdgeBlock): void {
     if (block.length === 0) return;
+    if (held !== null && !crossesInto(held, block)) {
+      // Nothing spans the boundary: what was held goes on as it is, and the block needs no joining.
+      const kept = held;
+      release(kept, kept.length);
+    }
     const joined = held === null ? block : concatenate(held, block);
     held = null;
     if (!hasShortPulse(joined, before, tsp)) {
@@ -46,6 +51,15 @@ export function createSpikeFilter(base: Timebase, listener: SpikeListener): Spik
       return;
     }
     filter(joined, settled(joined, tsp));
+  }
+
+  // Whether a pulse that began in what is held could end in the first tSP of the block.
+  function crossesInto(kept: EdgeBlock, block: EdgeBlock): boolean {
+    const reach = kept.ticks[kept.length - 1] + tsp;
+    let n = 0;
+    while (n < block.length && block.ticks[n] < reach) n++;
+    if (n === 0) return hasShortPulse(kept, before, tsp);
+    return hasShortPulse(concatenate(kept, view(block, 0, n)), before, tsp);
   }
 
   // Entries that no later entry can turn into half of a spike.
@@ -59,7 +73,7 @@ export function createSpikeFilter(base: Timebase, listener: SpikeListener): Spik
   function release(block: EdgeBlock, count: number): void {
     if (count > 0) {
       before = block.lines[count - 1] & ~CUT;
-      listener.edges(count === block.length ? block : slice(block, 0, count));
+      listener.edges(count === block.length ? block : view(block, 0, count));
     }
     held = count === block.length ? null : slice(block, count, block.length);
   }
@@ -171,6 +185,25 @@ function slice(block: EdgeBlock, from: number, to: number): EdgeBlock {
             leadSda: volts.leadSda.slice(from, to),
             meanScl: volts.meanScl.slice(from, to),
             meanSda: volts.meanSda.slice(from, to),
+          },
+  };
+}
+
+/** The same memory: for handing on, never for changing. */
+function view(block: EdgeBlock, from: number, to: number): EdgeBlock {
+  const { volts } = block;
+  return {
+    length: to - from,
+    ticks: block.ticks.subarray(from, to),
+    lines: block.lines.subarray(from, to),
+    volts:
+      volts === null
+        ? null
+        : {
+            leadScl: volts.leadScl.subarray(from, to),
+            leadSda: volts.leadSda.subarray(from, to),
+            meanScl: volts.meanScl.subarray(from, to),
+            meanSda: volts.meanSda.subarray(from, to),
           },
   };
 }

@@ -1,3 +1,4 @@
+import { useMemo } from "react";
 import { MarginHead } from "@/components/margin/MarginHead";
 import type { Capture } from "@/lib/view/capture";
 import { addressesSeen } from "@/lib/view/filter";
@@ -5,6 +6,8 @@ import { address, addressBytes, count, duration, volts } from "@/lib/view/format
 
 export interface BusPartProps {
   capture: Capture;
+  /** Changes when the list may. */
+  version: unknown;
   names: ReadonlyMap<number, string>;
   onAddress: (address: number) => void;
 }
@@ -12,9 +15,10 @@ export interface BusPartProps {
 const LISTED = 24;
 
 /** Who is on this bus: controllers by their habits, targets by their addresses. */
-export function BusPart({ capture, names, onAddress }: BusPartProps) {
+export function BusPart({ capture, version, names, onAddress }: BusPartProps) {
   const controllers = capture.summary?.controllers ?? [];
-  const seen = addressesSeen(capture.ledger);
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place, the version says when
+  const seen = useMemo(() => addressesSeen(capture.ledger), [capture, version]);
   if (seen.length === 0 && controllers.length === 0) return null;
   return (
     <section>

@@ -35,7 +35,7 @@ export function MarginColumn({ capture, of, selected, names, onGo, onTag, onAddr
       <TagsPart of={of} selected={index} onTag={onTag} />
       <Notes of={of} selected={index} onGo={onGo} field={noteField} />
       <FindingPart of={of} onGo={onGo} />
-      {index === null && <BusPart capture={capture} names={names} onAddress={onAddress} />}
+      {index === null && <BusPart capture={capture} version={summary} names={names} onAddress={onAddress} />}
     </div>
   );
 }

@@ -82,6 +82,9 @@ export function Search({ filter, onFilter, addresses, names, input, remaining }:
           type="search"
           value={bytes}
           onChange={(event) => searchBytes(event.target.value)}
+          onKeyDown={(event) => {
+            if (event.key === "Escape" || event.key === "Enter") event.currentTarget.blur();
+          }}
           placeholder="01 1F"
           aria-invalid={wrong || undefined}
           aria-describedby="byte-search-help"

@@ -1,6 +1,6 @@
 "use client";
 
-import { useCallback, useEffect, useLayoutEffect, useRef, useState } from "react";
+import { useCallback, useEffect, useLayoutEffect, useMemo, useRef, useState } from "react";
 import type { BenchNote, BenchTag, TagKind } from "@/components/bench/annotations";
 import { TRACE_HEIGHT } from "@/components/score/RowTrace";
 import type { Capture } from "@/lib/view/capture";
@@ -32,6 +32,8 @@ export interface StackProps {
 
 const SPARE = 4;
 const NARROW = 720;
+/** The page counts as resting after so long without a move. */
+const REST_MS = 60;
 /** Room kept above a row that is brought into view. */
 const ABOVE = 60;
 
@@ -65,7 +67,7 @@ export function Stack(props: StackProps) {
   const [width, setWidth] = useState(0);
   const [view, setView] = useState(800);
   const [position, setPosition] = useState<Position>({ offset: 0, top: 0 });
-  const layout = layoutFor(width);
+  const layout = useMemo(() => layoutFor(width), [width]);
   const total = rows ? rows.length : capture.ledger.length;
   const extent: Extent = { rows: total, rowHeight: layout.rowHeight, view };
   const live = useRef({ extent, position });
@@ -170,7 +172,9 @@ export function Stack(props: StackProps) {
   const lastSeen = seen.first < seen.end ? (rows ? rows[seen.end - 1] : seen.end - 1) : -1;
   const { onView } = props;
   useEffect(() => {
-    if (firstSeen >= 0) onView(firstSeen, lastSeen);
+    if (firstSeen < 0) return;
+    const timer = setTimeout(() => onView(firstSeen, lastSeen), REST_MS);
+    return () => clearTimeout(timer);
   }, [firstSeen, lastSeen, onView]);
 
   const span = rowSpan(extent, position, SPARE);

@@ -48,7 +48,13 @@ export function StripTrace(props: StripTraceProps) {
   useEffect(() => {
     const element = host.current;
     if (!element || !ink) return;
-    const made = makePlot(element, Math.max(200, element.clientWidth), () => live.current as Live, setCursor);
+    // The plot moves its cursor while it is being told a new span; the page learns of it a frame later.
+    let frame = 0;
+    const onCursor = (tick: number | null) => {
+      cancelAnimationFrame(frame);
+      frame = requestAnimationFrame(() => setCursor(tick));
+    };
+    const made = makePlot(element, Math.max(200, element.clientWidth), () => live.current as Live, onCursor);
     plot.current = made;
     const observer = new ResizeObserver(() => {
       made.setSize({ width: Math.max(200, element.clientWidth), height: made.height });
@@ -74,6 +80,7 @@ export function StripTrace(props: StripTraceProps) {
     };
     made.over.addEventListener("click", onClick);
     return () => {
+      cancelAnimationFrame(frame);
       observer.disconnect();
       made.destroy();
       plot.current = null;

@@ -23,7 +23,7 @@ async function* read(path: string): AsyncGenerator<Uint8Array> {
       const { bytesRead } = await file.read(buffer, 0, buffer.length, null);
       if (bytesRead === 0) return;
       yield buffer.subarray(0, bytesRead);
-      if (buffer.length < READ_BYTES) buffer = new Uint8Array(READ_BYTES);
+      if (buffer.length < READ_BYTES) buffer = new Uint8Array(buffer.length * 4);
     }
   } finally {
     await file.close();

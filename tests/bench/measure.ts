@@ -9,6 +9,8 @@ export interface Row {
   readonly ms: number;
   readonly baseline: string;
   readonly baselineMs: number;
+  /** What `ms` and `baselineMs` really count where it is not milliseconds ("bytes"). */
+  readonly unit?: string;
   /** at most: ms / baselineMs must not exceed `limit`; at least: baselineMs / ms must reach it. */
   readonly sense: "at most" | "at least";
   readonly limit: number;

@@ -13,7 +13,8 @@ function isSuite(value: unknown): value is Suite {
 
 function line(row: Row): string {
   const bound = `${row.sense === "at most" ? "<=" : ">="} ${row.limit}x`;
-  const times = `${row.ms.toFixed(0)} ms against ${row.baselineMs.toFixed(0)} ms of ${row.baseline}`;
+  const unit = row.unit ?? "ms";
+  const times = `${row.ms.toFixed(0)} ${unit} against ${row.baselineMs.toFixed(0)} ${unit} of ${row.baseline}`;
   return `  ${met(row) ? "met   " : "MISSED"} goal ${row.goal.padEnd(3)} ${row.what.padEnd(58)} ${`${ratio(row).toFixed(2)}x`.padStart(8)}  ${bound.padEnd(9)} (${times})`;
 }
 

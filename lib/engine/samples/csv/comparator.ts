@@ -82,10 +82,13 @@ export class Comparator {
     return this.level === 0 ? this.vil : Number.POSITIVE_INFINITY;
   }
 
-  /** Notes the previous sample after quiet ones that went past `detect`. */
-  seen(tick: number, v: number): void {
+  /** Notes the previous sample, the settling window and the running mean after quiet samples that went past `detect`. */
+  seen(tick: number, v: number, at: number, sum: number, count: number): void {
     this.previous = v;
     this.previousTick = tick;
+    this.at = at;
+    this.sum = sum;
+    this.count = count;
   }
 
   /** Mean of the settled samples since the last call; NaN where there were none. */

@@ -204,6 +204,15 @@ export class FastVolts implements FastPath {
     let bMost = b.quietMost();
     let va = a.previous;
     let vb = b.previous;
+    // Means are gathered here and written back before anyone else looks; both rings turn together.
+    const aRing = a.ring;
+    const bRing = b.ring;
+    const turn = aRing.length;
+    let at = a.at;
+    let aSum = a.sum;
+    let bSum = b.sum;
+    let aCount = a.count;
+    let bCount = b.count;
     let exponent = Number.NaN;
     let multiplier = 0;
     let p = from;
@@ -221,29 +230,45 @@ export class FastVolts implements FastPath {
         multiplier = multiplierOf(power, -e);
       }
       const tick = number[0] * multiplier;
-      p = readDigits(bytes, p + 1, decimal);
-      if (!(tick > last && tick < limit) || p < 0 || bytes[p] !== delimiter) {
+      const x = this.cell(bytes, p + 1, firstPower);
+      p = this.end;
+      if (!(tick > last && tick < limit) || bytes[p] !== delimiter) {
         p = start;
         break;
       }
-      const x = unscaled(number[0], number[1] + firstPower);
-      p = readDigits(bytes, p + 1, decimal);
-      const ending = p < 0 ? 0 : bytes[p];
+      const y = this.cell(bytes, p + 1, secondPower);
+      p = this.end;
+      const ending = bytes[p];
       if (ending !== LF && !(ending === CR && p + 1 < to && bytes[p + 1] === LF)) {
         p = start;
         break;
       }
       p += ending === LF ? 1 : 2;
-      const y = unscaled(number[0], number[1] + secondPower);
       if (x >= aLeast && x <= aMost && y >= bLeast && y <= bMost) {
-        a.add(x);
-        b.add(y);
+        const aMoved = x - aRing[at];
+        const bMoved = y - bRing[at];
+        aRing[at] = x;
+        bRing[at] = y;
+        at = at + 1 === turn ? 0 : at + 1;
+        if (aMoved <= a.settle && aMoved >= -a.settle) {
+          aSum += x;
+          aCount += 1;
+        }
+        if (bMoved <= b.settle && bMoved >= -b.settle) {
+          bSum += y;
+          bCount += 1;
+        }
       } else {
-        a.seen(last, va);
-        b.seen(last, vb);
+        a.seen(last, va, at, aSum, aCount);
+        b.seen(last, vb, at, bSum, bCount);
         taker.values[aSlot] = x;
         taker.values[bSlot] = y;
         taker.take(tick, false);
+        at = a.at;
+        aSum = a.sum;
+        bSum = b.sum;
+        aCount = a.count;
+        bCount = b.count;
         aLeast = a.quietLeast();
         aMost = a.quietMost();
         bLeast = b.quietLeast();
@@ -256,10 +281,51 @@ export class FastVolts implements FastPath {
       read += 1;
     }
     if (read > 0) {
-      a.seen(last, va);
-      b.seen(last, vb);
+      a.seen(last, va, at, aSum, aCount);
+      b.seen(last, vb, at, bSum, bCount);
     }
     return handBack(scanner, rows, p, read, last, limit);
+  }
+
+  /** Where the latest cell ended; -1 where it is no plain number. */
+  private end = 0;
+  /** Cells have had few digits and no exponent so far. */
+  private short = true;
+
+  /** A reading such as "-0.118" or "1.18000E-01", in volts. Few digits are gathered in one 32-bit integer. */
+  private cell(bytes: Uint8Array, from: number, power: number): number {
+    if (!this.short) return this.longCell(bytes, from, power);
+    const negative = bytes[from] === 45;
+    let p = negative ? from + 1 : from;
+    const first = p;
+    let mantissa = 0;
+    let digit = bytes[p] - 48;
+    while (digit >= 0 && digit <= 9) {
+      mantissa = (Math.imul(mantissa, 10) + digit) | 0;
+      digit = bytes[++p] - 48;
+    }
+    const point = p;
+    let digits = p - first;
+    if (bytes[p] === this.decimal) {
+      digit = bytes[++p] - 48;
+      while (digit >= 0 && digit <= 9) {
+        mantissa = (Math.imul(mantissa, 10) + digit) | 0;
+        digit = bytes[++p] - 48;
+      }
+      digits = p - first - 1;
+    }
+    const places = p === point ? 0 : p - point - 1;
+    if (power === 0 && digits > 0 && digits <= 9 && (digit < 0 || digit > 9) && digit !== 21 && digit !== 53) {
+      this.end = p;
+      return negative ? -mantissa / POWERS[places] : mantissa / POWERS[places];
+    }
+    this.short = false;
+    return this.longCell(bytes, from, power);
+  }
+
+  private longCell(bytes: Uint8Array, from: number, power: number): number {
+    this.end = readDigits(bytes, from, this.decimal);
+    return unscaled(number[0], number[1] + power);
   }
 }
 

@@ -12,7 +12,7 @@ import { tickOf } from "./own-times";
 import { Rows, type RowTaker } from "./rows";
 
 /** Rows that the level survey reads at least. */
-const LEVEL_ROWS = 20_000;
+const LEVEL_ROWS = 8_000;
 /** Volts between the two levels of a line, at least; less is noise. */
 const LEAST_VOLTS = 0.05;
 /** Samples that a level must have before it counts as seen. */

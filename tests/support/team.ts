@@ -44,15 +44,8 @@ export async function gatherTeam(name: string): Promise<TestTeam> {
   return { id: team.id, ...(Object.fromEntries(found) as Record<Role, Colleague>) };
 }
 
-export interface Answered<T> {
-  readonly status: number;
-  readonly headers: Headers;
-  readonly body: T;
-}
-
 /** Calls a route handler as this browser and reads the answer as JSON. */
-// biome-ignore lint/suspicious/noExplicitAny: an answer's shape is what the test goes on to assert
-export async function ask<T = any>(browser: Browser, handler: Handler, method: string, asked: Asked = {}): Promise<Answered<T>> {
+export async function ask(browser: Browser, handler: Handler, method: string, asked: Asked = {}) {
   const params = Object.fromEntries(Object.entries(asked.params ?? {}).map(([name, value]) => [name, String(value)]));
   const url = `http://firstlow.test/api${asked.query ? `?${asked.query}` : ""}`;
   const response = await browser.call(handler, method, asked.body, params, url);

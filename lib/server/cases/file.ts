@@ -5,7 +5,7 @@ import { FaultTag } from "@/entities/fault-tag";
 import { Note } from "@/entities/note";
 import { ProfileVersion } from "@/entities/profile-version";
 import { Roster } from "@/entities/roster";
-import { Tag } from "@/entities/tag";
+import type { Tag } from "@/entities/tag";
 import { Team } from "@/entities/team";
 import { User } from "@/entities/user";
 import {
@@ -92,14 +92,14 @@ export async function caseFile(em: EntityManager, row: Case): Promise<CaseFile> 
   const settings = settingsOf(row);
   const captures = await em.find(Capture, { case: row.id }, { orderBy: { ordinal: "asc" } });
   const notes = await em.find(Note, { case: row.id }, { orderBy: { number: "asc" } });
-  const tags = await em.find(Tag, { capture: { case: row.id } }, { orderBy: { createdAt: "asc", id: "asc" } });
-  const faultTags = tags.length > 0 ? await em.find(FaultTag, { id: { $in: tags.map((tag) => tag.faultTag.id) } }) : [];
+  const tags = await tagsOf(em, row.id);
+  const used = [...new Set(tags.map((tag) => tag.fault_tag))];
+  const faultTags = used.length > 0 ? await em.find(FaultTag, { id: { $in: used } }) : [];
   const team = await em.findOneOrFail(Team, { id: row.team.id });
   const nameOf = await names(em, [
     row.assignee?.id,
     ...captures.map((capture) => capture.uploadedBy?.id),
     ...notes.map((note) => note.author?.id),
-    ...tags.map((tag) => tag.author?.id),
   ]);
   return {
     format: CASE_FORMAT,
@@ -112,13 +112,25 @@ export async function caseFile(em: EntityManager, row: Case): Promise<CaseFile> 
     settings,
     captures: captures.map((capture) => captureFile(capture, nameOf(capture.uploadedBy?.id))),
     notes: notes.map((note) => noteFile(note, nameOf(note.author?.id))),
-    tags: tags.map((tag) => tagFile(tag, nameOf(tag.author?.id))),
+    tags,
     fault_tags: faultTags.map(faultTagFile),
     roster: await rosterOf(em, row.team.id, settings),
     profile: await profileOf(em, row.team.id, settings),
     created_at: row.createdAt.toISOString(),
     updated_at: row.updatedAt.toISOString(),
   };
+}
+
+/** Plain rows: there can be thousands, and nobody edits them here. */
+async function tagsOf(em: EntityManager, caseId: string): Promise<TagFile[]> {
+  const rows: (Omit<TagFile, "created_at"> & { created_at: Date | string })[] = await em.execute(
+    `select t.id, t.capture_id as capture, t.fault_tag_id as fault_tag, t.anchor, t.remark,
+       coalesce(u.name, ?) as author, t.created_at
+     from tags t join captures k on k.id = t.capture_id left join users u on u.id = t.author_id
+     where k.case_id = ? order by t.created_at, t.id`,
+    [departed, caseId],
+  );
+  return rows.map((row) => ({ ...row, created_at: new Date(row.created_at).toISOString() }));
 }
 
 async function rosterOf(em: EntityManager, team: string, settings: Settings): Promise<CaseFile["roster"]> {

@@ -3,8 +3,7 @@ import type { z } from "zod";
 import { Capture } from "@/entities/capture";
 import { FaultTag } from "@/entities/fault-tag";
 import { Tag } from "@/entities/tag";
-import { User } from "@/entities/user";
-import type { Anchor } from "@/lib/case/case";
+import type { Anchor, TagFile } from "@/lib/case/case";
 import type { ChangeTagsSchema, TagsAnswer } from "@/lib/case/wire";
 import { type MemberViewer, within } from "@/lib/server/access/viewer";
 import { demand, findCase } from "@/lib/server/access/visible";
@@ -90,39 +89,35 @@ function nameOf(row: Tag): string {
   return row.author?.getEntity().name ?? "a former member";
 }
 
-/** One statement however many there are; a tag that is there already stays as it is. */
+/** Wishes as rows of a statement: one statement however many there are, and no object of the ORM for each. */
+const WISHES = `jsonb_to_recordset(?::jsonb) as w(at int, capture uuid, fault_tag uuid, place text, anchor jsonb, remark text)`;
+
+function rowsOf(wishes: readonly Wish[]): string {
+  return JSON.stringify(wishes.map((wish, at) => ({ at, ...wish, place: placeOf(wish.anchor) })));
+}
+
+/** A tag that is there already stays as it is. */
 async function insertTags(em: EntityManager, viewer: MemberViewer, wishes: readonly Wish[]): Promise<void> {
   if (wishes.length === 0) return;
-  const now = new Date();
-  const rows = wishes.map((wish) => ({
-    id: crypto.randomUUID(),
-    capture: wish.capture,
-    faultTag: wish.fault_tag,
-    anchor: wish.anchor,
-    place: placeOf(wish.anchor),
-    remark: wish.remark,
-    author: em.getReference(User, viewer.user.id),
-    createdAt: now,
-  }));
-  await em.createQueryBuilder(Tag).insert(rows).onConflict(["capture", "place", "faultTag"]).ignore().execute();
+  await em.execute(
+    `insert into tags (id, capture_id, fault_tag_id, anchor, place, remark, author_id, created_at)
+     select gen_random_uuid(), w.capture, w.fault_tag, w.anchor, w.place, w.remark, ?, now() from ${WISHES}
+     on conflict do nothing`,
+    [viewer.user.id, rowsOf(wishes)],
+  );
 }
 
 /** The tags now standing on the places asked for, in the order asked. */
 async function placed(em: EntityManager, wishes: readonly Wish[]): Promise<TagsAnswer["added"]> {
   if (wishes.length === 0) return [];
-  const rows = await em.find(
-    Tag,
-    {
-      capture: { $in: [...new Set(wishes.map((wish) => wish.capture))] },
-      place: { $in: [...new Set(wishes.map((wish) => placeOf(wish.anchor)))] },
-      faultTag: { $in: [...new Set(wishes.map((wish) => wish.fault_tag))] },
-    },
-    { populate: ["author"] },
+  const rows: (Omit<TagFile, "created_at"> & { created_at: Date | string })[] = await em.execute(
+    `select t.id, t.capture_id as capture, t.fault_tag_id as fault_tag, t.anchor, t.remark,
+       coalesce(u.name, 'a former member') as author, t.created_at
+     from ${WISHES}
+     join tags t on t.capture_id = w.capture and t.place = w.place and t.fault_tag_id = w.fault_tag
+     left join users u on u.id = t.author_id
+     order by w.at`,
+    [rowsOf(wishes)],
   );
-  const key = (capture: string, place: string, faultTag: string) => `${capture} ${place} ${faultTag}`;
-  const found = new Map(rows.map((row) => [key(row.capture.id, row.place, row.faultTag.id), row]));
-  return wishes.flatMap((wish) => {
-    const row = found.get(key(wish.capture, placeOf(wish.anchor), wish.fault_tag));
-    return row ? [tagFile(row, nameOf(row))] : [];
-  });
+  return rows.map((row) => ({ ...row, created_at: new Date(row.created_at).toISOString() }));
 }

@@ -2,17 +2,21 @@
 
 import type { Warning } from "../base/result";
 import type { BitBlock, Spike } from "../engine/bits/bits";
-import type { ByteBlock, TransactionBlock } from "../engine/bus/transactions";
+import { CLOSE } from "../engine/bus/address";
+import { ACK, type ByteBlock, FLAG, type TransactionBlock } from "../engine/bus/transactions";
 import type { Remnant } from "../engine/decoder";
 import type { EdgeBlock } from "../engine/samples/edges";
 import type { CaptureHead } from "../engine/samples/reader";
 import { FaultList } from "./findings";
-import { Moments } from "./moments";
+import { type Moment, Moments } from "./moments";
 import { LineWatch, TransactionPlaces } from "./places";
 import type { Fault } from "./report";
 import type { End, Row, Watch } from "./rule";
 import { RULES } from "./rules";
 import { FAULT_WORDS } from "./wording";
+
+/** Bit times. Common practice, no source. */
+const PAUSE_BITS = 100;
 
 export class RuleBook {
   readonly places = new TransactionPlaces();
@@ -103,8 +107,17 @@ export class RuleBook {
     row.byteCount = block.byteCount[i];
     row.at = block.firstByte[i] - bytes.first;
     row.bytes = bytes;
-    row.moments = this.moments.take(row.index);
+    row.moments = this.withoutPauses(row, this.moments.take(row.index));
     return row;
+  }
+
+  // A controller that software clocks may pause under a high SCL: where the transaction then goes on and ends as it should, and
+  // the pause was short, nobody held the line.
+  private withoutPauses(row: Row, moments: readonly Moment[]): readonly Moment[] {
+    const held = moments.find((moment) => moment.kind === "held-sda");
+    const regular = row.addressAck === ACK && row.closes !== CLOSE.none && (row.flags & FLAG.shortByte) === 0;
+    if (held === undefined || !regular || held.width > PAUSE_BITS * this.moments.period) return moments;
+    return moments.filter((moment) => moment.kind !== "held-sda" && moment.kind !== "recovery");
   }
 }
 

@@ -60,6 +60,12 @@ describe("harmless things are no faults", () => {
     expect(report.faults).toEqual([]);
   });
 
+  test("a controller that pauses under a high SCL and then goes on", async () => {
+    const bus = new LineScript().write(0xa0, 1).start().byte(0xa0).bit(1).bit(0, { high: 600_000 });
+    for (const value of [1, 0, 1, 0, 1, 0, 0] as const) bus.bit(value);
+    expect((await scripted(bus.stop())).faults).toEqual([]);
+  });
+
   test("the end of the record in the middle of a transfer", async () => {
     expect((await scripted(new LineScript().write(0xa0, 1).start().byte(0xa0).bit(1), 3_000)).faults).toEqual([]);
   });

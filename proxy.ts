@@ -21,6 +21,8 @@ export function proxy(request: NextRequest): NextResponse {
   response.headers.set("x-frame-options", "DENY");
   response.headers.set("cross-origin-opener-policy", "same-origin");
   response.headers.set("permissions-policy", "camera=(), microphone=(), geolocation=(), payment=(), usb=()");
+  // Also where no page is rendered: a share link never gets into an index.
+  if (request.nextUrl.pathname.startsWith("/shared/")) response.headers.set("x-robots-tag", "noindex, nofollow");
   if (settings().app.secureCookies) response.headers.set("strict-transport-security", "max-age=31536000");
   return response;
 }

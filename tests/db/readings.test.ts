@@ -13,7 +13,6 @@ import { put, sha256, uploader } from "@/tests/support/upload";
 
 // From an uploaded capture to its archive and summary: made by a browser, or by the server; never taken on trust.
 
-const OPAQUE = "application/octet-stream";
 let database: TestDatabase;
 let cases: typeof import("@/app/api/cases/route");
 let one: typeof import("@/app/api/cases/[number]/route");
@@ -67,7 +66,7 @@ const store = (person: Colleague, id: string, key: string, bytes: Uint8Array, mo
 /** The browser's part: address, PUT, confirmation. */
 async function send(id: string, bytes: Uint8Array, more: object = {}) {
   const { body } = await start(team.technician, id, bytes);
-  expect((await put(body.url, bytes, OPAQUE)).status).toBe(200);
+  expect((await put(body.url, bytes)).status).toBe(200);
   return store(team.technician, id, body.key, bytes, more);
 }
 
@@ -107,7 +106,7 @@ describe("an archive made by a browser", () => {
     const { body } = await start(team.technician, id, packed);
     const forged = Buffer.from(packed);
     forged[forged.length >> 1] ^= 1;
-    expect((await put(body.url, forged, OPAQUE)).status).toBe(200);
+    expect((await put(body.url, forged)).status).toBe(200);
     const swapped = await store(team.technician, id, body.key, packed);
     expect([swapped.status, swapped.body.code]).toEqual([422, "upload-mismatch"]);
     for (const [bytes, words] of [
@@ -125,11 +124,11 @@ describe("an archive made by a browser", () => {
   it("cannot be changed once it was checked, though its address still works", async () => {
     const { id } = await deposit();
     const { body } = await start(team.technician, id, packed);
-    await put(body.url, packed, OPAQUE);
+    await put(body.url, packed);
     expect((await store(team.technician, id, body.key, packed)).status).toBe(200);
     const forged = Buffer.from(packed);
     forged[100] ^= 1;
-    expect((await put(body.url, forged, OPAQUE)).status).toBe(200);
+    expect((await put(body.url, forged)).status).toBe(200);
     expect(sha256(await archived(id))).toBe(sha256(packed));
   });
 
@@ -137,7 +136,7 @@ describe("an archive made by a browser", () => {
     const { id } = await deposit();
     const other = await deposit();
     const { body } = await start(team.technician, other.id, packed);
-    await put(body.url, packed, OPAQUE);
+    await put(body.url, packed);
     for (const key of [body.key, "teams/x/original", `${body.key}/../original`]) {
       expect((await store(team.technician, id, key, packed)).status).toBe(400);
     }

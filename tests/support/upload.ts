@@ -8,9 +8,8 @@ export function sha256(bytes: Uint8Array): string {
 }
 
 /** Puts bytes as a browser does: to the address, with nothing but their length. */
-export async function put(url: string, bytes: Uint8Array, type?: string): Promise<{ status: number; etag: string }> {
-  const headers: Record<string, string> = type === undefined ? {} : { "content-type": type };
-  const answer = await send("PUT", url, headers, Buffer.from(bytes));
+export async function put(url: string, bytes: Uint8Array): Promise<{ status: number; etag: string }> {
+  const answer = await send("PUT", url, {}, Buffer.from(bytes));
   return { status: answer.status, etag: String(answer.headers.etag ?? "") };
 }
 

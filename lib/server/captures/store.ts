@@ -104,10 +104,10 @@ export class Store {
 
   /** An address to PUT exactly `size` bytes to. */
   signPut(Key: string, size: number): Promise<string> {
-    const command = new PutObjectCommand({ Bucket: this.#bucket, Key, ContentLength: size, ContentType: OPAQUE });
+    const command = new PutObjectCommand({ Bucket: this.#bucket, Key, ContentLength: size });
     return getSignedUrl(this.#outside, command, {
       expiresIn: UPLOAD_LIMIT.signed,
-      signableHeaders: new Set(["host", "content-length", "content-type"]),
+      signableHeaders: new Set(["host", "content-length"]),
     });
   }
 

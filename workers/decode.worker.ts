@@ -15,14 +15,20 @@ const api: DecodeApi = {
     const bytes = fileSource(source.blob, source.name);
     const opened = await (source.kind === "archive" ? openArchive(bytes, host) : openCapture(bytes, host, settings.read));
     if (!opened.ok) return opened;
+    let told: unknown;
+    const tell = (receipt: unknown) => {
+      told = receipt;
+    };
     const outcome = await analyze(opened.value, settings, {
       head: (head) => void listener.head(head),
-      edges: (block) => void listener.edges(transfer(block, buffersOf(block, block.volts))),
-      tap: (index, block) => void listener.tap(index, transfer(block, buffersOf(block))),
+      edges: (block) => tell(listener.edges(transfer(block, buffersOf(block, block.volts)))),
+      tap: (index, block) => tell(listener.tap(index, transfer(block, buffersOf(block)))),
       // Copied: the analysis itself goes on reading its transactions until it has concluded. They are few beside the edges.
-      transactions: (block, bytes) => void listener.transactions(block, bytes),
-      progress: (bytes) => void listener.progress(bytes),
+      transactions: (block, rows) => tell(listener.transactions(block, rows)),
+      progress: (read) => void listener.progress(read),
     });
+    // The answer travels by another port than the blocks and could overtake them; the last block's receipt comes after them all.
+    await told;
     return outcome.ok ? transfer(outcome, buffersOf(outcome)) : outcome;
   },
 };

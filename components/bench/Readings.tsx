@@ -7,6 +7,7 @@ import { Limits } from "@/components/ledger/Limits";
 import { ScaleBar } from "@/components/ledger/ScaleBar";
 import { Search } from "@/components/ledger/Search";
 import { Stack } from "@/components/stack/Stack";
+import { InView } from "@/components/strip/InView";
 import { StripTrace } from "@/components/strip/StripTrace";
 import { wordClass } from "@/components/ui/Tabs";
 import { type Capture, longest, usualScale } from "@/lib/view/capture";
@@ -75,6 +76,13 @@ export function Readings(props: ReadingsProps) {
               const near = transactionNear(capture.ledger, tick);
               if (near !== null) onState({ selected: near });
             }}
+          />
+          <InView
+            capture={capture}
+            span={state.strip ?? capture.record}
+            selected={state.selected}
+            names={props.names}
+            onSelect={(selected) => onState({ selected })}
           />
         </div>
       )}

@@ -52,23 +52,42 @@ function exact(
   if (level !== 2) context.lineTo(end, yOf(lane, level));
 }
 
-function columns(context: CanvasRenderingContext2D, lane: Lane, strip: { enter: Uint8Array; changes: Uint8Array }): void {
+/** Columns so full that single edges cannot be told are toned, all others are inked: a lone glitch stays black. */
+function columns(
+  context: CanvasRenderingContext2D,
+  lane: Lane,
+  strip: { enter: Uint8Array; changes: Uint8Array },
+  ink: Ink,
+): void {
+  const { enter, changes } = strip;
+  const width = enter.length;
+  const full = (x: number) => changes[x] >= 2 && (changes[x - 1] ?? 0) >= 2 && (changes[x + 1] ?? 0) >= 2;
+  context.lineWidth = 1;
+  context.strokeStyle = ink.field;
+  context.beginPath();
+  for (let x = 0; x < width; x++) if (full(x)) upright(context, lane, x);
+  context.stroke();
+  context.strokeStyle = ink.ink;
+  context.beginPath();
+  for (let x = 0; x < width; x++) if (changes[x] > 0 && !full(x)) upright(context, lane, x);
+  context.stroke();
+  context.lineWidth = lane.heavy ? 2 : 1;
+  context.beginPath();
   let from = 0;
-  const width = strip.enter.length;
   for (let x = 0; x < width; x++) {
-    if (strip.changes[x] > 0) {
-      context.moveTo(x + 0.5, lane.high);
-      context.lineTo(x + 0.5, lane.low);
-    }
-    const ends = x + 1 === width || strip.enter[x + 1] !== strip.enter[from] || strip.changes[x] > 0;
-    if (!ends) continue;
-    const level = strip.enter[from];
-    if (level < 2) {
-      context.moveTo(from, yOf(lane, level));
-      context.lineTo(x + 1, yOf(lane, level));
+    if (x + 1 < width && enter[x + 1] === enter[from] && changes[x] === 0) continue;
+    if (enter[from] < 2 && !(changes[x] > 0 && x === from)) {
+      context.moveTo(from, yOf(lane, enter[from]));
+      context.lineTo(x + 1, yOf(lane, enter[from]));
     }
     from = x + 1;
   }
+  context.stroke();
+}
+
+function upright(context: CanvasRenderingContext2D, lane: Lane, x: number): void {
+  context.moveTo(x + 0.5, lane.high);
+  context.lineTo(x + 0.5, lane.low);
 }
 
 /** Draws the lanes; returns how many edges are in view. */
@@ -85,15 +104,16 @@ export function paintLanes(
     const first = lane.edges.seek(scale.origin);
     const last = lane.edges.seek(endOf(scale), first);
     inView = Math.max(inView, last - first);
+    if (last - first > exactLimit(scale)) {
+      const known = made.get(lane.edges) ?? stripColumns(lane.edges, scale, record);
+      made.set(lane.edges, known);
+      columns(context, lane, known[lane.line], ink);
+      continue;
+    }
     context.strokeStyle = ink.ink;
     context.lineWidth = lane.heavy ? 2 : 1;
     context.beginPath();
-    if (last - first <= exactLimit(scale)) exact(context, lane, scale, record, first, last);
-    else {
-      const known = made.get(lane.edges) ?? stripColumns(lane.edges, scale, record);
-      made.set(lane.edges, known);
-      columns(context, lane, known[lane.line]);
-    }
+    exact(context, lane, scale, record, first, last);
     context.stroke();
   }
   return inView;

@@ -75,8 +75,9 @@ export class EdgeColumns {
     return this.#kept[number].block.ticks[index - this.#index.start(number)];
   }
 
-  /** Levels after entry `index`; before the first entry those of the first. */
+  /** Levels after entry `index`; before the first entry those of the first; low where there is none at all. */
   lines(index: number): number {
+    if (this.length === 0) return 0;
     const at = Math.max(0, index);
     const number = this.#index.block(at);
     return this.#kept[number].block.lines[at - this.#index.start(number)];

@@ -3,7 +3,7 @@
 // Works on bytes; words are complete before they are read, so the inner loops need no bounds.
 
 import type { Problem } from "../../base/result";
-import { type CodeTable, unwatched } from "./vcd-codes";
+import { type CodeTable, PRIME, unwatched } from "./vcd-codes";
 
 /** Who is told. `net` is the number the code was registered with. */
 export interface ChangeSink {
@@ -142,7 +142,7 @@ export class ChangeScanner {
   /** The hot loop: bytes `from` to `to` end in white space, so that no word needs its bound checked. */
   private scan(bytes: Uint8Array, from: number, to: number): void {
     const { table, sink, all } = this;
-    const { slots, mask, first } = table;
+    const { first } = table;
     const start = this.at - from;
     let i = this.resume(bytes, from, to, start);
     let changes = 0;
@@ -176,9 +176,9 @@ export class ChangeScanner {
       } else if (KIND[c] === SCALAR) {
         let hash = 0;
         let j = i + 1;
-        for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
+        for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = Math.imul(hash ^ d, PRIME);
         changes++;
-        const net = slots[hash & mask] === 0 ? -1 : table.find(bytes, i + 1, j, hash);
+        const net = table.find(bytes, i + 1, j, hash);
         if (net >= 0) {
           sink.scalar(net, c);
           dirty = true;
@@ -247,7 +247,7 @@ export class ChangeScanner {
   private continued(bytes: Uint8Array, i: number, start: number): number {
     let hash = 0;
     let j = i;
-    for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = (Math.imul(hash, 31) + d) | 0;
+    for (let d = bytes[j]; d > 32; d = bytes[++j]) hash = Math.imul(hash ^ d, PRIME);
     if (this.state === SKIP) {
       if (j - i === 4 && bytes[i] === 36 && bytes[i + 1] === 101 && bytes[i + 2] === 110 && bytes[i + 3] === 100)
         this.state = CHANGES;

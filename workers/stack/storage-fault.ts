@@ -1,5 +1,6 @@
 // In: tests' wishes. Out: requests that fail on purpose, so that retrying and resuming can be proved.
 
+import type { ServerResponse } from "node:http";
 import type { StorageCode } from "./storage-error";
 
 /** Which requests a fault meets; what is left out matches everything. */
@@ -23,12 +24,16 @@ export interface Seen {
   readonly method: string;
   readonly key: string;
   readonly part?: number;
-  status?: number;
+  /** What it was answered; missing while there is no answer yet. */
+  readonly status?: number;
 }
+
+/** The request without its answer. */
+export type Asked = Omit<Seen, "status">;
 
 export class Faults {
   private pending: { fault: Fault; left: number }[] = [];
-  private readonly seen: Seen[] = [];
+  private readonly seen: { asked: Asked; response: ServerResponse }[] = [];
 
   add(fault: Fault): void {
     this.pending.push({ fault, left: fault.times ?? 1 });
@@ -40,7 +45,7 @@ export class Faults {
   }
 
   /** The fault that meets this request, counted as used. */
-  meet(request: Seen): Fault | undefined {
+  meet(request: Asked): Fault | undefined {
     const met = this.pending.find(
       ({ fault, left }) =>
         left > 0 &&
@@ -52,12 +57,12 @@ export class Faults {
     return met?.fault;
   }
 
-  record(request: Seen): void {
-    this.seen.push(request);
+  record(asked: Asked, response: ServerResponse): void {
+    this.seen.push({ asked, response });
     if (this.seen.length > 10_000) this.seen.shift();
   }
 
   requests(): readonly Seen[] {
-    return this.seen;
+    return this.seen.map(({ asked, response }) => ({ ...asked, status: response.headersSent ? response.statusCode : undefined }));
   }
 }

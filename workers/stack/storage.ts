@@ -8,7 +8,7 @@ import { createBucket, deleteBucket, deleteObjects, headBucket, listBuckets, lis
 import type { Call } from "./storage-call";
 import { Disk } from "./storage-disk";
 import { StorageError } from "./storage-error";
-import { type Fault, Faults, type Seen } from "./storage-fault";
+import { type Asked, type Fault, Faults } from "./storage-fault";
 import { abortUpload, completeUpload, createUpload, listParts, listUploads, uploadPart } from "./storage-multipart";
 import { deleteObject, getObject, putObject } from "./storage-object";
 import { type Keys, verify } from "./storage-signature";
@@ -82,15 +82,15 @@ async function answer(
 ): Promise<void> {
   response.setHeader("x-amz-request-id", randomUUID());
   const { path, query } = parseTarget(request.url ?? "/");
-  const seen = glance(request, path, query);
+  const asked = glance(request, path, query);
   try {
     if (allowOrigin(request, response, wish.origins)) return;
     if (wish.controls && path.startsWith("/-/")) {
       await control(request, response, path, wish, faults);
       return;
     }
-    faults.record(seen);
-    const fault = faults.meet(seen);
+    faults.record(asked, response);
+    const fault = faults.meet(asked);
     const payload = verify({ method: request.method ?? "GET", path, query, headers: request.headers }, wish, Date.now());
     if (await suffer(request, fault)) return;
     const [bucketName, ...rest] = path.slice(1).split("/");
@@ -109,8 +109,6 @@ async function answer(
     await operation(call)(call);
   } catch (error) {
     fail(request, response, error);
-  } finally {
-    seen.status = response.statusCode;
   }
 }
 
@@ -135,7 +133,7 @@ function decode(text: string): string {
   }
 }
 
-function glance(request: IncomingMessage, path: string, query: readonly (readonly [string, string])[]): Seen {
+function glance(request: IncomingMessage, path: string, query: readonly (readonly [string, string])[]): Asked {
   const part = new Map(query).get("partNumber");
   return {
     method: request.method ?? "GET",

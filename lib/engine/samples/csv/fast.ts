@@ -164,11 +164,14 @@ export class FastVolts implements FastPath {
   private readonly delimiter: number;
   private readonly decimal: number;
   private readonly sclFirst: boolean;
+  private readonly aSlot: number;
+  private readonly bSlot: number;
+  private readonly power: number;
   private readonly firstPower: number;
   private readonly secondPower: number;
 
   private constructor(
-    private readonly body: Body,
+    body: Body,
     selection: Selection,
     scl: LineSource,
     private readonly rows: Rows,
@@ -177,6 +180,9 @@ export class FastVolts implements FastPath {
     this.delimiter = body.layout.dialect.delimiter.charCodeAt(0);
     this.decimal = body.layout.dialect.decimal.charCodeAt(0);
     this.sclFirst = scl.column.index === 1;
+    this.aSlot = this.sclFirst ? taker.sclSlot : taker.sdaSlot;
+    this.bSlot = this.sclFirst ? taker.sdaSlot : taker.sclSlot;
+    this.power = body.axis.clock.power;
     this.firstPower = selection.powers[1];
     this.secondPower = selection.powers[2];
   }
@@ -188,13 +194,10 @@ export class FastVolts implements FastPath {
   }
 
   scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number {
-    const { delimiter, decimal, rows, taker, firstPower, secondPower } = this;
+    const { rows, taker } = this;
     const { gap } = rows;
-    const power = this.body.axis.clock.power;
     const a = this.sclFirst ? taker.scl : taker.sda;
     const b = this.sclFirst ? taker.sda : taker.scl;
-    const aSlot = this.sclFirst ? taker.sclSlot : taker.sdaSlot;
-    const bSlot = this.sclFirst ? taker.sdaSlot : taker.sclSlot;
     let last = rows.lastTick;
     let limit = rows.limit;
     // A quiet sample lies within these and changes nothing but the means.
@@ -213,37 +216,15 @@ export class FastVolts implements FastPath {
     let bSum = b.sum;
     let aCount = a.count;
     let bCount = b.count;
-    let exponent = Number.NaN;
-    let multiplier = 0;
     let p = from;
     let read = 0;
     while (p < to) {
-      const start = p;
-      p = readDigits(bytes, p, decimal);
-      if (p < 0 || bytes[p] !== delimiter) {
-        p = start;
-        break;
-      }
-      const e = number[1];
-      if (e !== exponent) {
-        exponent = e;
-        multiplier = multiplierOf(power, -e);
-      }
-      const tick = number[0] * multiplier;
-      const x = this.cell(bytes, p + 1, firstPower);
-      p = this.end;
-      if (!(tick > last && tick < limit) || bytes[p] !== delimiter) {
-        p = start;
-        break;
-      }
-      const y = this.cell(bytes, p + 1, secondPower);
-      p = this.end;
-      const ending = bytes[p];
-      if (ending !== LF && !(ending === CR && p + 1 < to && bytes[p + 1] === LF)) {
-        p = start;
-        break;
-      }
-      p += ending === LF ? 1 : 2;
+      const next = this.row(bytes, p, to);
+      const tick = this.found[0];
+      if (next < 0 || !(tick > last && tick < limit)) break;
+      p = next;
+      const x = this.found[1];
+      const y = this.found[2];
       if (x >= aLeast && x <= aMost && y >= bLeast && y <= bMost) {
         const aMoved = x - aRing[at];
         const bMoved = y - bRing[at];
@@ -261,8 +242,8 @@ export class FastVolts implements FastPath {
       } else {
         a.seen(last, va, at, aSum, aCount);
         b.seen(last, vb, at, bSum, bCount);
-        taker.values[aSlot] = x;
-        taker.values[bSlot] = y;
+        taker.values[this.aSlot] = x;
+        taker.values[this.bSlot] = y;
         taker.take(tick, false);
         at = a.at;
         aSum = a.sum;
@@ -285,6 +266,31 @@ export class FastVolts implements FastPath {
       b.seen(last, vb, at, bSum, bCount);
     }
     return handBack(scanner, rows, p, read, last, limit);
+  }
+
+  /** Instant and readings of the latest row. */
+  private readonly found = new Float64Array(3);
+  private exponent = Number.NaN;
+  private multiplier = 0;
+
+  /** Reads one row into `found`; returns the position after it, or -1 where it is not of the shape. */
+  private row(bytes: Uint8Array, from: number, to: number): number {
+    const { found, delimiter } = this;
+    let p = readDigits(bytes, from, this.decimal);
+    if (p < 0 || bytes[p] !== delimiter) return -1;
+    if (number[1] !== this.exponent) {
+      this.exponent = number[1];
+      this.multiplier = multiplierOf(this.power, -this.exponent);
+    }
+    found[0] = number[0] * this.multiplier;
+    found[1] = this.cell(bytes, p + 1, this.firstPower);
+    p = this.end;
+    if (p < 0 || bytes[p] !== delimiter) return -1;
+    found[2] = this.cell(bytes, p + 1, this.secondPower);
+    p = this.end;
+    const ending = p < 0 ? 0 : bytes[p];
+    if (ending === LF) return p + 1;
+    return ending === CR && p + 1 < to && bytes[p + 1] === LF ? p + 2 : -1;
   }
 
   /** Where the latest cell ended; -1 where it is no plain number. */

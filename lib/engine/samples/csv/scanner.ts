@@ -60,6 +60,10 @@ export class Scanner {
   private discarding = false;
   private lastByte = 0;
   private readonly cell = new Cell();
+  /** What is wrong with the row at hand, and its instant. */
+  private odd: AsideReason | "" = "";
+  private mantissa = 0;
+  private exponent = 0;
   private exponentNow = Number.NaN;
   private multiplier = 1;
   private divisor = 1;
@@ -155,8 +159,8 @@ export class Scanner {
 
   /** Reads up to `limit` rows; returns the position after them. */
   private scan(bytes: Uint8Array, from: number, to: number, limit: number): number {
-    const { modes, slots, powers, values, width, namedWidth, clock } = this.plan;
-    const { delimiter, decimal, spaces } = this;
+    const { modes, slots, values, width, namedWidth } = this.plan;
+    const { delimiter, spaces } = this;
     let left = limit;
     let p = from;
     while (p < to && left > 0) {
@@ -169,10 +173,7 @@ export class Scanner {
         continue;
       }
       let column = 0;
-      let reason = "";
-      let mantissa = 0;
-      let exponent = 0;
-      let timed = clock.column < 0;
+      this.odd = "";
       for (;;) {
         const mode = column < width ? modes[column] : SKIP;
         if (b === 32 && mode !== SKIP) {
@@ -190,7 +191,7 @@ export class Scanner {
             b = bytes[p];
             const level = this.cell.level();
             if (level >= 0) values[slots[column]] = level;
-            else if (reason === "") reason = "cell";
+            else if (this.odd === "") this.odd = "cell";
           }
         } else if (mode === SKIP) {
           const cellStart = p;
@@ -198,31 +199,10 @@ export class Scanner {
             p += 1;
             b = bytes[p];
           }
-          if (column >= namedWidth && p > cellStart && !blank(bytes, cellStart, p)) reason = "width";
+          if (column >= namedWidth && p > cellStart && !blank(bytes, cellStart, p)) this.odd = "width";
         } else {
-          const cellStart = p;
-          p = readDigits(bytes, cellStart, decimal);
-          b = p < 0 ? 0 : bytes[p];
-          let known = true;
-          let m = number[0];
-          let e = number[1];
-          if (b !== delimiter && b !== LF && b !== CR) {
-            p = this.slowCell(bytes, cellStart);
-            b = bytes[p];
-            const kind = this.cell.kind;
-            known = kind === NUMBER || (mode === VALUE && kind === BITS);
-            m = this.cell.mantissa;
-            e = this.cell.exponent;
-            if (!known && reason === "" && (mode === INSTANT || kind !== UNKNOWN)) reason = mode === INSTANT ? "time" : "cell";
-          }
-          if (mode === INSTANT) {
-            mantissa = m;
-            exponent = e;
-            timed = known;
-          } else if (known) {
-            e += powers[column];
-            values[slots[column]] = e === 0 ? m : scaled(m, e);
-          } else values[slots[column]] = Number.NaN;
+          p = this.numberCell(bytes, p, column, mode);
+          b = bytes[p];
         }
         column += 1;
         if (b !== delimiter) break;
@@ -238,13 +218,39 @@ export class Scanner {
       }
       const end = p;
       p += b === CR && p + 1 < to && bytes[p + 1] === LF ? 2 : 1;
-      if (column < width) reason = "width";
-      if (reason !== "" || !timed) this.oddRow(bytes, start, end, (reason === "" ? "time" : reason) as AsideReason);
-      else this.target.row(this.tick(mantissa, exponent), this.line);
+      if (column < width) this.odd = "width";
+      if (this.odd !== "") this.oddRow(bytes, start, end, this.odd);
+      else this.target.row(this.tick(this.mantissa, this.exponent), this.line);
       this.line += 1;
       this.rowNumber += 1;
       left -= 1;
     }
+    return p;
+  }
+
+  /** Reads a number that is wanted, as the row's instant or as a value; returns the position of the cell's end. */
+  private numberCell(bytes: Uint8Array, from: number, column: number, mode: number): number {
+    let p = readDigits(bytes, from, this.decimal);
+    const b = p < 0 ? 0 : bytes[p];
+    let known = true;
+    let m = number[0];
+    let e = number[1];
+    if (b !== this.delimiter && b !== LF && b !== CR) {
+      p = this.slowCell(bytes, from);
+      const kind = this.cell.kind;
+      known = kind === NUMBER || (mode === VALUE && kind === BITS);
+      m = this.cell.mantissa;
+      e = this.cell.exponent;
+      if (!known && this.odd === "" && (mode === INSTANT || kind !== UNKNOWN)) this.odd = mode === INSTANT ? "time" : "cell";
+    }
+    if (mode === INSTANT) {
+      this.mantissa = m;
+      this.exponent = e;
+      return p;
+    }
+    const { slots, powers, values } = this.plan;
+    e += powers[column];
+    values[slots[column]] = !known ? Number.NaN : e === 0 ? m : scaled(m, e);
     return p;
   }
 

@@ -5,8 +5,9 @@ import { Button } from "@/components/ui/Button";
 import { Field } from "@/components/ui/Field";
 import { Select } from "@/components/ui/Select";
 import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
-import type { CaptureHead } from "@/lib/engine/samples/reader";
+import type { CaptureHead, TapChoice } from "@/lib/engine/samples/reader";
 import { PROFILE_NAMES } from "@/lib/limits/profile";
+import { Taps } from "./Taps";
 
 export interface SettingsProps {
   settings: AnalysisSettings;
@@ -27,6 +28,7 @@ export function Settings({ settings, head, onSettings }: SettingsProps) {
   const [capacitance, setCapacitance] = useState(settings.cb_pf === null ? "" : String(settings.cb_pf));
   const [vdd, setVdd] = useState(settings.read.vdd_v === undefined ? "" : String(settings.read.vdd_v));
   const [interval, setInterval] = useState(settings.read.interval_s === undefined ? "" : String(settings.read.interval_s));
+  const [taps, setTaps] = useState<readonly TapChoice[]>(settings.read.taps ?? head.taps);
   const [pullup, setPullup] = useState(settings.read.pullup ?? true);
   const own = settings.limits !== null && typeof settings.limits !== "string";
   const values = { cb: numberIn(capacitance), vdd: numberIn(vdd), interval: numberIn(interval) };
@@ -35,7 +37,8 @@ export function Settings({ settings, head, onSettings }: SettingsProps) {
 
   function apply() {
     if (wrong(values.cb) || wrong(values.vdd) || wrong(values.interval)) return;
-    const { vdd_v: _vdd, interval_s: _interval, pullup: _pullup, ...read } = settings.read;
+    const { vdd_v: _vdd, interval_s: _interval, pullup: _pullup, taps: _taps, ...read } = settings.read;
+    const used = taps.filter((tap) => tap.label.trim() !== "" && (tap.scl !== null || tap.sda !== null));
     onSettings({
       ...settings,
       limits: own && limits === "" ? settings.limits : limits === "" ? null : limits,
@@ -45,6 +48,7 @@ export function Settings({ settings, head, onSettings }: SettingsProps) {
         ...(values.vdd ? { vdd_v: values.vdd } : {}),
         ...(values.interval ? { interval_s: values.interval } : {}),
         ...(pullup ? {} : { pullup: false }),
+        ...(used.length > 0 ? { taps: used } : {}),
       },
     });
   }
@@ -108,6 +112,7 @@ export function Settings({ settings, head, onSettings }: SettingsProps) {
             a pull-up makes z a high
           </label>
         )}
+        {head.channels.length > 2 && <Taps taps={taps} channels={head.channels} onTaps={setTaps} />}
         <div className="self-end">
           <Button type="submit">read it so</Button>
         </div>

@@ -60,8 +60,10 @@ function place(dimensions: readonly Dimension[], frame: PathFrame, width: number
     const left = dimension.from * frame.scale + frame.shift;
     const right = dimension.to * frame.scale + frame.shift;
     const text = dimension.text.length * ADVANCE;
-    const anchor = right + 6 + text <= width || left - 6 - text < 0 ? "start" : "end";
-    const textX = anchor === "start" ? right + 6 : left - 6;
+    // Arrows that point inwards from outside need their own room.
+    const gap = right - left >= 12 ? 6 : 13;
+    const anchor = right + gap + text <= width || left - gap - text < 0 ? "start" : "end";
+    const textX = anchor === "start" ? right + gap : left - gap;
     const [from, to] = anchor === "start" ? [left - 8, textX + text] : [textX - text, right + 8];
     const lane = LANES.findIndex((_, number) =>
       taken.every((other) => other.lane !== number || to < other.from || from > other.to),

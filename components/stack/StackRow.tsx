@@ -81,14 +81,17 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
     </span>
   );
   const direction = <span className="tabular text-hex">{row.direction ?? "·"}</span>;
+  const most = layout.narrow ? 1 : VERDICTS;
   const words = (
     <>
-      {found.slice(0, VERDICTS).map((verdict) => (
+      {found.slice(0, most).map((verdict) => (
         <span key={verdict.text} className={`block ${TONE_CLASS[verdict.tone]}`}>
           {verdict.text}
         </span>
       ))}
-      {found.length > VERDICTS && <span className="block text-quiet">and {found.length - VERDICTS} more</span>}
+      {found.length > most && (
+        <span className={layout.narrow ? "text-quiet" : "block text-quiet"}>and {found.length - most} more</span>
+      )}
       {props.tags.map((tag) => (
         <span key={tag} className="block font-sans text-small not-italic text-accent">
           <TagShape /> {tag}
@@ -118,7 +121,7 @@ export const StackRow = memo(function StackRow(props: StackRowProps) {
             {time}
             {where}
             {direction}
-            <span className="ml-auto max-h-9 overflow-hidden bg-paper text-right font-serif text-label italic leading-[1.1rem]">
+            <span className="ml-auto flex min-w-0 gap-x-2 overflow-hidden whitespace-nowrap text-right font-serif text-label italic">
               {words}
             </span>
           </div>

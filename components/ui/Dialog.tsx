@@ -18,7 +18,7 @@ export function Dialog({ open, onOpenChange, title, description, children }: Dia
   return (
     <Parts.Root open={open} onOpenChange={onOpenChange}>
       <Parts.Portal>
-        <Parts.Overlay className="fixed inset-0 z-40 bg-ink/25" />
+        <Parts.Overlay className="fixed inset-0 z-40 bg-[rgb(0_0_0/0.45)]" />
         <Parts.Content
           {...(description ? {} : { "aria-describedby": undefined })}
           className="fixed left-1/2 top-1/2 z-50 max-h-[88dvh] w-[min(36rem,94vw)] -translate-x-1/2 -translate-y-1/2 overflow-y-auto border border-ink bg-paper px-7 py-6 text-ink"

@@ -33,11 +33,11 @@ export async function build(root: string, dist: string, show: boolean): Promise<
   if ((await readFile(stampFile, "utf8").catch(() => "")) === stamp) return { built: false, seconds: seconds() };
   if (show) console.log("Building the application (only after a change; about half a minute) ...");
   const env = { ...process.env, NODE_ENV: "production", FIRSTLOW_DIST: dist, NEXT_TELEMETRY_DISABLED: "1" } as NodeJS.ProcessEnv;
-  const made = await run({ name: "next build", file: process.execPath, args: [NEXT, "build"], cwd: root, env, limit: 600_000 });
+  const made = await run({ name: "next build", file: process.execPath, args: [NEXT, "build"], cwd: root, env, limit: 900_000 });
   if (made.code !== 0) {
     const full = /ENOSPC|No space left/.test(made.output);
     throw new Complaint(
-      `The application could not be built${made.timedOut ? " within ten minutes" : ""}:\n${made.output.trim().split("\n").slice(-40).join("\n")}`,
+      `The application could not be built${made.timedOut ? " within fifteen minutes" : ""}:\n${made.output.trim().split("\n").slice(-40).join("\n")}`,
       full ? "The disk is full: free about 1 GB and start again." : "Put that right and start again.",
     );
   }

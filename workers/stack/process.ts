@@ -142,7 +142,9 @@ export async function birth(pid: number): Promise<string | undefined> {
   try {
     const stat = await readFile(`/proc/${pid}/stat`, "utf8");
     // "123 (node) S 1 ..." the name may hold spaces and brackets, so count fields after the last one; the start is field 22.
-    return stat.slice(stat.lastIndexOf(")") + 2).split(" ")[19];
+    const fields = stat.slice(stat.lastIndexOf(")") + 2).split(" ");
+    // A process that ended and was not collected yet is not there any more.
+    return fields[0] === "Z" ? undefined : fields[19];
   } catch {
     return alive(pid) ? "unknown" : undefined;
   }

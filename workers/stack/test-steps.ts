@@ -76,7 +76,7 @@ async function runVitest(bench: Bench, project: string, env: NodeJS.ProcessEnv):
     `--outputFile.json=${report}`,
   ];
   const args = [script, "run", ...options];
-  const done = await run({ name: "vitest", file: process.execPath, args, cwd: bench.root, env, limit: 8 * MINUTE, show: true });
+  const done = await run({ name: "vitest", file: process.execPath, args, cwd: bench.root, env, limit: 12 * MINUTE, show: true });
   if (done.timedOut || !(await exists(report))) return FAILED;
   return readVitest(report, done.code);
 }
@@ -117,7 +117,7 @@ async function runBrowser(bench: Bench): Promise<Tally> {
     args,
     cwd: bench.root,
     env: { ...env, ...more },
-    limit: 10 * MINUTE,
+    limit: 12 * MINUTE,
     show: true,
   });
   const done = await Promise.race([browsing, deathOf(service)]);

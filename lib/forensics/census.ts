@@ -14,14 +14,26 @@ export interface Census {
   readonly margin: Float32Array;
   /** 1: something in it does not fit that controller alone. */
   readonly odd: Uint8Array;
+  /** Mean squared deviation from that controller's habits. */
+  readonly misfit: Float32Array;
 }
 
-const SAMPLE = 900;
+const SAMPLE = 450;
+/** Messages that fit nobody, added to the sample in a second look: a rare controller may not be in the first. */
+const STRANGERS = 150;
 const LOOK = 220;
 /** A squared deviation counts for no more than this: one wild interval says that it is wild, not whose it is. */
 const CAP = 20;
+/** Squared deviations from which an interval, or the running sum of many, does not pass for the controller's own. */
+const ODD = 15;
+const ODD_SUM = 13;
+/** Mean squared deviation from which a message fits nobody. */
+const STRANGE = 2.5;
 
-/** Signatures from the capture itself. `closed`: there are no others than the known ones. `known[m]` is the controller of message m where taps show it, else -1; null without taps. */
+/**
+ * Signatures from the capture itself. `known[m]` is the controller of message m where taps show it, else -1; null without taps.
+ * `closed`: there are no others than the known ones.
+ */
 export function takeCensus(
   ledger: Ledger,
   messages: Messages,
@@ -30,26 +42,58 @@ export function takeCensus(
   kinds: number,
   closed = false,
 ): Census {
-  const list: number[] = [];
   const stride = Math.max(1, messages.count / SAMPLE);
-  for (let i = 0; i < messages.count; i += stride) list.push(Math.floor(i));
+  const first: number[] = [];
+  for (let i = 0; i < messages.count; i += stride) first.push(Math.floor(i));
+  let list: readonly number[] = first;
+  let signatures = settle(ledger, messages, sampling, known, kinds, closed, list);
+  let census = attribute(ledger, messages, sampling, signatures, known, null);
+  const strangers = closed || list.length === messages.count ? [] : strangersOf(census, list);
+  if (strangers.length > 0) {
+    list = [...list, ...strangers].sort((a, b) => a - b);
+    const again = settle(ledger, messages, sampling, known, kinds, closed, list);
+    if (again.length > signatures.length) {
+      signatures = again;
+      census = attribute(ledger, messages, sampling, signatures, known, null);
+    }
+  }
+  return census;
+}
+
+/** Groups the sample, learns each group, and learns again from what then fits. */
+function settle(
+  ledger: Ledger,
+  messages: Messages,
+  sampling: Sampling,
+  known: Int16Array | null,
+  kinds: number,
+  closed: boolean,
+  list: readonly number[],
+): readonly Signature[] {
   const features = featuresOf(ledger, messages, list, sampling.step);
   let signatures = clusters(features).map((group) => {
     const members = group.members.map((i) => features.messages[i]);
     return learn(ledger, messages, members, sampling);
   });
   if (known !== null) signatures = withKnown(ledger, messages, sampling, known, kinds, closed ? [] : signatures);
-  let census = attribute(ledger, messages, sampling, signatures, known);
   for (let round = 0; round < 2 && signatures.length > 0; round++) {
+    const census = attribute(ledger, messages, sampling, signatures, known, list);
     signatures = signatures.map((old, c) => {
-      const members: number[] = [];
-      for (let m = 0; m < messages.count; m++)
-        if (census.by[m] === c && census.odd[m] === 0 && census.margin[m] > 3) members.push(m);
-      return members.length > 0 ? learn(ledger, messages, members, sampling) : old;
+      const members = list.filter((m) => census.by[m] === c && census.odd[m] === 0 && census.margin[m] > 3);
+      return members.length > 0 ? { ...learn(ledger, messages, members, sampling), messages: old.messages } : old;
     });
-    census = attribute(ledger, messages, sampling, signatures, known);
   }
-  return census;
+  const census = attribute(ledger, messages, sampling, signatures, known, list);
+  const scale = messages.count / list.length;
+  return signatures.map((s, c) => ({ ...s, messages: Math.round(scale * list.filter((m) => census.by[m] === c).length) }));
+}
+
+function strangersOf(census: Census, sample: readonly number[]): number[] {
+  const taken = new Set(sample);
+  const out: number[] = [];
+  for (let m = 0; m < census.by.length; m++) if (census.misfit[m] > STRANGE && !taken.has(m)) out.push(m);
+  const stride = Math.max(1, out.length / STRANGERS);
+  return out.filter((_, i) => Math.floor(i / stride) !== Math.floor((i - 1) / stride));
 }
 
 /** Tapped controllers come first, in the order of their taps; clusters that are one of them are dropped. */
@@ -85,132 +129,205 @@ function apart(a: Signature, b: Signature, sampling: Sampling): boolean {
   });
 }
 
+/** One habit of every controller: mean and the inverse of its standard deviation; 0 where unknown. */
 interface Gauge {
-  readonly mean: number;
-  readonly inverse: number;
+  readonly mean: Float64Array;
+  readonly inverse: Float64Array;
 }
 
-function gauges(signatures: readonly Signature[], habit: number, sampling: Sampling): Gauge[] {
-  return signatures.map((s) => {
-    const h = s.habits[habit];
-    return h === null || h.count === 0
-      ? { mean: 0, inverse: 0 }
-      : { mean: h.mean, inverse: 1 / Math.sqrt(h.jitter + 2 * sampling.variance) };
+function gauges(signatures: readonly Signature[], habit: number, sampling: Sampling): Gauge {
+  const figures = signatures.map((s) => s.habits[habit]).map((h) => (h === null || h.count === 0 ? null : h));
+  return {
+    mean: Float64Array.from(figures, (h) => h?.mean ?? 0),
+    inverse: Float64Array.from(figures, (h) => (h === null ? 0 : 1 / Math.sqrt(h.jitter + 2 * sampling.variance))),
+  };
+}
+
+function levelGauge(levels: readonly Signature["sdaLow"][]): Gauge {
+  return {
+    mean: Float64Array.from(levels, (l) => l?.mean ?? 0),
+    inverse: Float64Array.from(levels, (l) => (l === null ? 0 : 1 / Math.sqrt(l.variance + 1e-6))),
+  };
+}
+
+/** Deviations of one message from every controller's habits. */
+class Tally {
+  readonly score: Float64Array;
+  readonly odd: Uint8Array;
+  private readonly runLow: Float64Array;
+  private readonly runHigh: Float64Array;
+  private lows = 0;
+  private highs = 0;
+  counted = 0;
+
+  constructor(private readonly kinds: number) {
+    this.score = new Float64Array(kinds);
+    this.odd = new Uint8Array(kinds);
+    this.runLow = new Float64Array(kinds);
+    this.runHigh = new Float64Array(kinds);
+  }
+
+  reset(): void {
+    this.score.fill(0);
+    this.odd.fill(0);
+    this.runLow.fill(0);
+    this.runHigh.fill(0);
+    this.lows = 0;
+    this.highs = 0;
+    this.counted = 0;
+  }
+
+  /** A figure on its own. */
+  one(gauge: Gauge, x: number): void {
+    this.counted++;
+    for (let c = 0; c < this.kinds; c++) {
+      const z = (x - gauge.mean[c]) * gauge.inverse[c];
+      const square = z * z;
+      this.score[c] += Math.min(square, CAP);
+      if (square > ODD) this.odd[c] = 1;
+    }
+  }
+
+  low(gauge: Gauge, x: number): void {
+    this.lows++;
+    this.counted++;
+    this.run(gauge, x, this.runLow, this.lows);
+  }
+
+  high(gauge: Gauge, x: number): void {
+    this.highs++;
+    this.counted++;
+    this.run(gauge, x, this.runHigh, this.highs);
+  }
+
+  /** A figure whose deviations are summed too: a small one that lasts is as odd as a large one. */
+  private run(gauge: Gauge, x: number, sums: Float64Array, n: number): void {
+    const bound = ODD_SUM * n;
+    for (let c = 0; c < this.kinds; c++) {
+      const z = (x - gauge.mean[c]) * gauge.inverse[c];
+      const square = z * z;
+      const sum = sums[c] + z;
+      sums[c] = sum;
+      this.score[c] += Math.min(square, CAP);
+      if (square > ODD || (sum * sum > bound && n > 2)) this.odd[c] = 1;
+    }
+  }
+}
+
+interface Gauges {
+  readonly low: Gauge;
+  readonly high: Gauge;
+  readonly ninth: Gauge;
+  readonly fall: Gauge;
+  readonly rise: Gauge;
+  readonly hold: Gauge;
+  readonly sda: Gauge;
+  readonly scl: Gauge;
+  readonly longest: number;
+}
+
+function allGauges(signatures: readonly Signature[], sampling: Sampling): Gauges {
+  const low = gauges(signatures, LOW_IN, sampling);
+  let longest = 0;
+  low.mean.forEach((mean, c) => {
+    if (low.inverse[c] > 0) longest = Math.max(longest, mean + 6 / low.inverse[c]);
   });
+  return {
+    low,
+    high: gauges(signatures, HIGH_IN, sampling),
+    ninth: gauges(signatures, HIGH_NINTH, sampling),
+    fall: gauges(signatures, DATA_FALL, sampling),
+    rise: gauges(signatures, DATA_RISE, sampling),
+    hold: gauges(signatures, HOLD_START, sampling),
+    sda: levelGauge(signatures.map((s) => s.sdaLow)),
+    scl: levelGauge(signatures.map((s) => s.sclLow)),
+    longest,
+  };
 }
 
+/** Deviations of one transaction, at most `limit` pulses of it. A low beyond every controller's own is a stretch and says nothing. */
+function tallyTransaction(ledger: Ledger, t: number, limit: number, g: Gauges, tally: Tally): void {
+  const { low, high, first, last, what, sdaLevel, sclLevel } = ledger;
+  const base = ledger.openEntry[t] + 1;
+  const pulses = Math.min(ledger.pulses(t), limit);
+  const read = pulses > 7 && (what[base + 7] & VALUE) !== 0;
+  let bit = 0;
+  for (let p = 0; p < pulses; p++) {
+    const e = base + p;
+    const l = low[e];
+    const h = high[e];
+    if (bit !== 0 && bit !== 8 && l < g.longest) tally.low(g.low, l);
+    if (h > 0) {
+      if (bit === 8) tally.one(g.ninth, h);
+      else tally.high(g.high, h);
+    }
+    if (bit > 0 && bit < 8 && (!read || p < 8)) {
+      const zero = (what[e] & VALUE) === 0;
+      // NaN where SDA rested, so the comparison is false.
+      if (first[e] === last[e]) tally.one(zero ? g.fall : g.rise, first[e]);
+      if (sdaLevel !== null && sclLevel !== null) {
+        if (sclLevel[e] > -100) tally.one(g.scl, sclLevel[e]);
+        if (zero && sdaLevel[e] > -100) tally.one(g.sda, sdaLevel[e]);
+      }
+    }
+    bit = bit === 8 ? 0 : bit + 1;
+  }
+}
+
+/** `list`: only these messages; null for all. */
 function attribute(
   ledger: Ledger,
   messages: Messages,
   sampling: Sampling,
   signatures: readonly Signature[],
   known: Int16Array | null,
+  list: readonly number[] | null,
 ): Census {
   const n = messages.count;
-  const by = new Int16Array(n).fill(-1);
-  const margin = new Float32Array(n);
-  const odd = new Uint8Array(n);
-  const kinds = signatures.length;
-  const low = gauges(signatures, LOW_IN, sampling);
-  const high = gauges(signatures, HIGH_IN, sampling);
-  const ninth = gauges(signatures, HIGH_NINTH, sampling);
-  const fall = gauges(signatures, DATA_FALL, sampling);
-  const rise = gauges(signatures, DATA_RISE, sampling);
-  const hold = gauges(signatures, HOLD_START, sampling);
-  const longest = Math.max(0, ...low.map((g) => (g.inverse === 0 ? 0 : g.mean + 6 / g.inverse)));
-  const score = new Float64Array(kinds);
-  const odds = new Uint8Array(kinds);
-  const runLow = new Float64Array(kinds);
-  const runHigh = new Float64Array(kinds);
-
-  const count = (gauge: Gauge, c: number, x: number, limit: number): void => {
-    const z = (x - gauge.mean) * gauge.inverse;
-    const square = z * z;
-    score[c] += Math.min(square, CAP);
-    if (square > limit) odds[c] = 1;
+  const census = {
+    signatures,
+    by: new Int16Array(n).fill(-1),
+    margin: new Float32Array(n),
+    odd: new Uint8Array(n),
+    misfit: new Float32Array(n),
   };
-  const levels = levelGauges(signatures);
-
-  for (let m = 0; m < n; m++) {
-    score.fill(0);
-    odds.fill(0);
-    runLow.fill(0);
-    runHigh.fill(0);
+  if (signatures.length === 0) return census;
+  const g = allGauges(signatures, sampling);
+  const tally = new Tally(signatures.length);
+  const count = list === null ? n : list.length;
+  for (let i = 0; i < count; i++) {
+    const m = list === null ? i : list[i];
+    tally.reset();
     const start = ledger.hold[messages.first[m]];
-    if (!Number.isNaN(start)) for (let c = 0; c < kinds; c++) count(hold[c], c, start, 14);
-    let looked = 0;
-    let lows = 0;
-    let highs = 0;
-    for (let t = messages.first[m]; t < messages.first[m + 1] && looked < LOOK; t++) {
-      const base = ledger.openEntry[t] + 1;
-      const pulses = Math.min(ledger.pulses(t), LOOK - looked);
-      looked += pulses;
-      const read = pulses > 7 && (ledger.what[base + 7] & VALUE) !== 0;
-      let bit = 0;
-      for (let p = 0; p < pulses; p++) {
-        const e = base + p;
-        const l = ledger.low[e];
-        const h = ledger.high[e];
-        if (bit !== 0 && bit !== 8 && l < longest) {
-          lows++;
-          for (let c = 0; c < kinds; c++) {
-            const z = (l - low[c].mean) * low[c].inverse;
-            const square = z * z;
-            score[c] += Math.min(square, CAP);
-            runLow[c] += z;
-            if (square > 12 || (lows > 2 && runLow[c] * runLow[c] > 11 * lows)) odds[c] = 1;
-          }
-        }
-        if (!Number.isNaN(h) && bit !== 8) {
-          highs++;
-          for (let c = 0; c < kinds; c++) {
-            const z = (h - high[c].mean) * high[c].inverse;
-            const square = z * z;
-            score[c] += Math.min(square, CAP);
-            runHigh[c] += z;
-            if (square > 12 || (highs > 2 && runHigh[c] * runHigh[c] > 11 * highs)) odds[c] = 1;
-          }
-        } else if (!Number.isNaN(h)) for (let c = 0; c < kinds; c++) count(ninth[c], c, h, 14);
-        const own = bit > 0 && bit < 8 && (!read || p < 8);
-        if (own && ledger.first[e] === ledger.last[e]) {
-          const gauge = (ledger.what[e] & VALUE) === 0 ? fall : rise;
-          for (let c = 0; c < kinds; c++) count(gauge[c], c, ledger.first[e], 14);
-        }
-        if (own && levels !== null && ledger.sdaLevel !== null && ledger.sclLevel !== null) {
-          for (let c = 0; c < kinds; c++) {
-            if (!Number.isNaN(ledger.sclLevel[e])) count(levels.scl[c], c, ledger.sclLevel[e], 10);
-            if ((ledger.what[e] & VALUE) === 0 && !Number.isNaN(ledger.sdaLevel[e]))
-              count(levels.sda[c], c, ledger.sdaLevel[e], 10);
-          }
-        }
-        bit = bit === 8 ? 0 : bit + 1;
-      }
+    if (start > 0) tally.one(g.hold, start);
+    let left = LOOK;
+    for (let t = messages.first[m]; t < messages.first[m + 1] && left > 0; t++) {
+      tallyTransaction(ledger, t, left, g, tally);
+      left -= ledger.pulses(t);
     }
-    if (known !== null && known[m] >= 0) {
-      by[m] = known[m];
-      margin[m] = Number.POSITIVE_INFINITY;
-      odd[m] = odds[known[m]];
-      continue;
-    }
-    let best = -1;
-    let next = Number.POSITIVE_INFINITY;
-    for (let c = 0; c < kinds; c++) {
-      if (best < 0 || score[c] < score[best]) {
-        if (best >= 0) next = score[best];
-        best = c;
-      } else if (score[c] < next) next = score[c];
-    }
-    by[m] = best;
-    if (best < 0) continue;
-    margin[m] = (next - score[best]) / 2;
-    odd[m] = odds[best];
+    settleMessage(census, m, tally, known === null ? -1 : known[m]);
   }
-  return { signatures, by, margin, odd };
+  return census;
 }
 
-function levelGauges(signatures: readonly Signature[]): { sda: Gauge[]; scl: Gauge[] } | null {
-  if (signatures.every((s) => s.sdaLow === null)) return null;
-  const gauge = (level: Signature["sdaLow"]): Gauge =>
-    level === null ? { mean: 0, inverse: 0 } : { mean: level.mean, inverse: 1 / Math.sqrt(level.variance + 1e-6) };
-  return { sda: signatures.map((s) => gauge(s.sdaLow)), scl: signatures.map((s) => gauge(s.sclLow)) };
+function settleMessage(
+  census: { by: Int16Array; margin: Float32Array; odd: Uint8Array; misfit: Float32Array },
+  m: number,
+  tally: Tally,
+  known: number,
+): void {
+  const { score } = tally;
+  let best = 0;
+  let next = Number.POSITIVE_INFINITY;
+  for (let c = 1; c < score.length; c++) {
+    if (score[c] < score[best]) {
+      next = score[best];
+      best = c;
+    } else if (score[c] < next) next = score[c];
+  }
+  if (known >= 0) best = known;
+  census.by[m] = best;
+  census.margin[m] = known >= 0 ? Number.POSITIVE_INFINITY : (next - score[best]) / 2;
+  census.odd[m] = tally.odd[best];
+  census.misfit[m] = score[best] / Math.max(1, tally.counted);
 }

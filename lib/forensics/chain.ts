@@ -41,16 +41,20 @@ export class Chain {
     const spread = predicted + this.edgeVariance;
     const innovation = x - mean - this.bias;
     const b = Math.max(broken, LEAST_BROKEN);
-    const lawful = Math.log(1 - b) - HALF_LOG_2PI - 0.5 * Math.log(spread) - (innovation * innovation) / (2 * spread);
-    const unlawful = Math.log(b * brokenDensity(x, mean));
-    if (unlawful > lawful) {
-      this.restart();
-      return unlawful + Math.log1p(Math.exp(lawful - unlawful));
+    const square = (innovation * innovation) / spread;
+    const lawful = -HALF_LOG_2PI - 0.5 * Math.log(spread / ((1 - b) * (1 - b))) - 0.5 * square;
+    // Within three standard deviations the habit explains it; the rest would change the third digit.
+    if (square > 9) {
+      const unlawful = Math.log(b * brokenDensity(x, mean));
+      if (unlawful > lawful) {
+        this.restart();
+        return unlawful + Math.log1p(Math.exp(lawful - unlawful));
+      }
     }
     const gain = predicted / spread;
     this.bias = -(1 - gain) * innovation;
     this.variance = (1 - gain) * predicted;
-    return lawful + Math.log1p(Math.exp(unlawful - lawful));
+    return lawful;
   }
 }
 

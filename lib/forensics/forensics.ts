@@ -73,6 +73,9 @@ interface Capture {
   readonly roster: readonly RosterEntry[];
 }
 
+/** Captures of up to so many messages are weighed message by message, longer ones only where something is odd. */
+const WHOLE = 1000;
+
 function concludeCapture(capture: Capture, traces: readonly TapTrace[], observer: Observer | null): ForensicsOutcome {
   const { ledger, messages, sampling } = capture;
   const tapped = traces.some((t) => t.used) ? readTaps(ledger, messages, traces, sampling.step) : null;
@@ -188,7 +191,9 @@ function inferContests(
   for (let m = 0; m < messages.count; m++) ends[m] = capture.endTick[messages.first[m + 1] - 1];
   const habitual = new Habitual(ledger, messages, census, ends);
   const odd: number[] = [];
-  for (let m = 0; m < messages.count; m++) if (census.odd[m] === 1 && contested[m] === 0) odd.push(m);
+  // A short capture is weighed whole: a retry can speak where the clock does not.
+  const all = messages.count <= WHOLE;
+  for (let m = 0; m < messages.count; m++) if ((all || census.odd[m] === 1) && contested[m] === 0) odd.push(m);
   const share = signatures.map((s) => (s.messages + 1) / (signatures.reduce((n, x) => n + x.messages, 0) + signatures.length));
   const { judged, rates } = judge(scales, habitual, odd, messages.count, share);
   const index = ranks(census);

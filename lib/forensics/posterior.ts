@@ -10,7 +10,7 @@ const PRIOR_CONTEST = 0.01;
 const PRIOR_WEIGHT = 20;
 /** Lows longer by one amount over many bits: rare, and then usually a target's own manner. */
 const PRIOR_SLOWED = 0.004;
-const ROUNDS = 3;
+const ROUNDS = 4;
 
 export interface Rates extends RetryRates {
   contest: number;
@@ -57,8 +57,8 @@ export function judge(
   let judged: Judged[] = [];
   const weighed = odd.map((m) => scales.weigh(m, habitual, rates));
   for (let round = 0; round < ROUNDS; round++) {
-    judged = weighed.map((w) => conclude(w, rates));
-    learnRates(weighed, judged, rates, total);
+    judged = weighed.map((w) => conclude(w, rates, round === ROUNDS - 1));
+    if (round < ROUNDS - 1) learnRates(weighed, judged, rates, total);
   }
   return { judged, rates };
 }
@@ -80,7 +80,7 @@ function optionLog(option: Option, rates: Rates): number {
   return Math.log(rates.contest) + pairLog(rates, option.a, option.b) + mode + early + option.log;
 }
 
-function conclude(weighed: Weighed, rates: Rates): Judged {
+function conclude(weighed: Weighed, rates: Rates, last: boolean): Judged {
   let alone = 0;
   let logAlone = Number.NEGATIVE_INFINITY;
   let none = Number.NEGATIVE_INFINITY;
@@ -118,7 +118,7 @@ function conclude(weighed: Weighed, rates: Rates): Judged {
   }
   const all = logAdd(logAdd(none, slowed), logAdd(yields, tie));
   const threefold = triples > yields - Math.LN2;
-  const chosen = best === null ? null : pick(weighed.options, threefold, best, rates);
+  const chosen = best === null || !last ? best : pick(weighed.options, threefold, best, rates);
   const shareOf = (log: number | undefined): number => (log === undefined ? 0 : Math.exp(log - yields));
   return {
     message: weighed.message,

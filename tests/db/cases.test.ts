@@ -152,6 +152,8 @@ describe("a case", () => {
     expect((await ask(ours.lead.browser, one.GET, "GET", { params: { number } })).status).toBe(404);
     const left = await database.query<{ n: string }>("select count(*) as n from notes where text = 'why?'");
     expect(Number(left[0].n)).toBe(0);
+    const trail = await database.query("select actor_name, detail from audits where event = 'case.deleted'");
+    expect(trail).toEqual([{ actor_name: "Marrow Bay lead", detail: { number, title: "short-lived" } }]);
     expect(await open(ours, "a number is not given twice")).toBe(number + 1);
   });
 

@@ -11,10 +11,10 @@ export const HEAD = 64 * 1024;
 export function typeOf(head: Uint8Array, name: string): Result<Format> {
   if (!isGzip(head)) return sniff(head, name);
   const inside = inflated(head);
-  return inside === null
+  return inside === null || inside.length === 0
     ? refuse({
         code: "corrupt-gzip",
-        message: `${name} begins like gzip but cannot be unpacked.`,
+        message: `${name} begins like gzip, but nothing can be unpacked from it.`,
         advice: "Compress it again.",
         place: { byte: 0 },
       })

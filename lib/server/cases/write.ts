@@ -13,6 +13,7 @@ import type { Action } from "@/lib/case/roles";
 import { type CaseField, type CaseView, type CreateCaseSchema, caseFields, type EditCaseSchema } from "@/lib/case/wire";
 import type { MemberViewer } from "@/lib/server/access/viewer";
 import { demand, findCase, visibleCases } from "@/lib/server/access/visible";
+import { recordBy } from "@/lib/server/audit";
 import { rejudge } from "@/lib/server/captures/analysis";
 import { store } from "@/lib/server/captures/store";
 import { type EntityManager, fork } from "@/lib/server/database";
@@ -180,7 +181,12 @@ export async function deleteCase(em: EntityManager, viewer: MemberViewer, number
   const row = await findCase(em, viewer, number);
   const captures = await em.find(Capture, { case: row.id }, { exclude: ["summary"] });
   const open = await em.find(Upload, { case: row.id, state: { $in: ["open", "checking"] } });
-  await em.nativeDelete(Case, { id: row.id });
+  // The case's own trail goes with it; the team's trail keeps that it was there.
+  await em.transactional(async (tx) => {
+    await tx.nativeDelete(Case, { id: row.id });
+    recordBy(tx, viewer, "case.deleted", row.id, { number: row.number, title: row.title });
+    await tx.flush();
+  });
   // Rows first: a file without a row is swept later, a row without its file would be a broken case.
   for (const upload of open) await store().abort(upload.key, upload.storageId);
   for (const capture of captures) await store().remove([capture.key, ...(capture.archiveKey ? [capture.archiveKey] : [])]);

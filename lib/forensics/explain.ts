@@ -32,8 +32,11 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
     out.low[s] = interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]);
     out.high[s] = interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]);
     const habit = slots.dataHabit[s];
-    const figure = habit === DATA_FALL || habit === DATA_RISE ? signature.habits[habit] : null;
-    if (figure !== null && figure.count > 0) out.data[s] = single(ledger.first[e], figure, sampling.variance);
+    if (habit === DATA_FALL || habit === DATA_RISE) {
+      const figure = signature.habits[habit];
+      out.data[s] =
+        figure === null || figure.count === 0 ? anything(ledger.low[e]) : single(ledger.first[e], figure, sampling.variance);
+    }
     if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
     out.scl[s] = SCL_WEIGHT * levelDensity(ledger.sclLevel[e], signature.sclLow, 0.2);
     if (slots.bus[s] === 0) out.sda[s] = levelDensity(ledger.sdaLevel[e], signature.sdaLow, 0.03);
@@ -41,17 +44,28 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
   return out;
 }
 
+/** Log density where nothing is known of a habit: anywhere up to twice the interval it stands in. */
+function anything(x: number): number {
+  return -Math.log(2 * Math.max(x, 1));
+}
+
 function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
-  if (Number.isNaN(x) || habit === null) {
+  if (Number.isNaN(x)) {
     chain.restart();
     return 0;
+  }
+  if (habit === null) {
+    chain.restart();
+    return anything(x);
   }
   return chain.step(x, habit.mean, habit.jitter, habit.broken);
 }
 
 /** `other`: share of levels that are somebody else's work too (a target may hold SCL at any low). */
 function levelDensity(v: number, figure: LevelFigure | null, other: number): number {
-  if (figure === null || Number.isNaN(v)) return 0;
+  if (Number.isNaN(v)) return 0;
+  // Nothing known of this driver: anywhere below half a volt.
+  if (figure === null) return Math.LN2;
   return logAdd(Math.log(1 - other) + logNormal(v, figure.mean, figure.variance), Math.log(other / Math.max(figure.mean, 0.02)));
 }
 
@@ -79,7 +93,8 @@ export function freshGain(
 /** START hold of one controller alone. */
 export function holdAlone(hold: number, a: Signature, sampling: Sampling): number {
   const habit = a.habits[HOLD_START];
-  return habit === null || Number.isNaN(hold) ? 0 : single(hold, habit, sampling.variance);
+  if (Number.isNaN(hold)) return 0;
+  return habit === null ? anything(hold) : single(hold, habit, sampling.variance);
 }
 
 /**
@@ -89,7 +104,8 @@ export function holdAlone(hold: number, a: Signature, sampling: Sampling): numbe
 export function holdTogether(hold: number, a: Signature, b: Signature, sampling: Sampling): number {
   const x = a.habits[HOLD_START];
   const y = b.habits[HOLD_START];
-  if (x === null || y === null || Number.isNaN(hold)) return 0;
+  if (Number.isNaN(hold)) return 0;
+  if (x === null || y === null) return anything(hold);
   return Math.log(0.5) + logAdd(holdAfter(hold, x, y, sampling), holdAfter(hold, y, x, sampling));
 }
 

@@ -193,7 +193,8 @@ function inferContests(
   const odd: number[] = [];
   // A short capture is weighed whole: a retry can speak where the clock does not.
   const all = messages.count <= WHOLE;
-  for (let m = 0; m < messages.count; m++) if ((all || census.odd[m] === 1) && contested[m] === 0) odd.push(m);
+  for (let m = 0; m < messages.count; m++)
+    if ((all || census.odd[m] === 1 || foreignIn(tapped, m)) && contested[m] === 0) odd.push(m);
   const share = signatures.map((s) => (s.messages + 1) / (signatures.reduce((n, x) => n + x.messages, 0) + signatures.length));
   const { judged, rates } = judge(scales, habitual, odd, messages.count, share);
   const index = ranks(census);
@@ -206,15 +207,23 @@ function inferContests(
     if (j.best === null) continue;
     // Both sides tapped and no tap let go: nothing to infer.
     if (tapped !== null && untappedNeeded(j, tapped, traces.length)) continue;
-    if (j.probability >= 0.5) by[j.message] = j.pairShare > 0.6 ? j.best.a : -1;
+    const shown = foreignIn(tapped, j.message);
+    const probability = shown ? Math.max(j.probability, 0.99) : j.probability;
+    if (probability >= 0.5) by[j.message] = j.pairShare > 0.6 ? j.best.a : -1;
     else if (j.tie < 0.5 && census.margin[j.message] > Math.log(9)) by[j.message] = j.alone;
-    if (j.probability < FLOOR) continue;
+    if (probability < FLOOR) continue;
     const slots = scales.read(j.message);
-    if (j.probability >= 0.5) contestedUntil[j.message] = slots.entry[lastTogether(slots, j.best.at, j.best.mode)];
+    if (probability >= 0.5) contestedUntil[j.message] = slots.entry[lastTogether(slots, j.best.at, j.best.mode)];
     const evidence = evidenceOf(scales, j.message, j.best, j.alone, habitual, rates, naming);
+    if (shown)
+      evidence.unshift({
+        kind: "drive-tap",
+        bits: 10,
+        detail: `SCL falls before the tap of ${naming.id(j.best.a)} pulls it, at several pulses: only another controller ends a HIGH.`,
+      });
     scales.read(j.message);
     const parties = j.pairShare > 0.6;
-    const claim = (b: number, s: number, probability: number): Contest => {
+    const claim = (b: number, s: number, p: number): Contest => {
       const t = slots.transaction[s];
       const rival = habitual.rival(j.message, b, rates);
       scales.read(j.message);
@@ -223,13 +232,13 @@ function inferContests(
         kept: parties ? naming.id(j.best?.a ?? 0) : null,
         yielded: parties ? naming.id(b) : null,
         retry: rival.retry >= 0 && rival.retrySlot === s ? messages.first[rival.retry] : null,
-        probability: Math.min(probability, 0.999),
-        grade: gradeOf(probability, false),
+        probability: Math.min(p, 0.999),
+        grade: gradeOf(p, shown),
         evidence,
         look_alikes: [],
       };
     };
-    contests.push(claim(j.best.b, j.best.at, j.probability));
+    contests.push(claim(j.best.b, j.best.at, probability));
     if (j.best.early !== null) contests.push(claim(j.best.early.b, j.best.early.at, j.third));
   }
 }
@@ -249,6 +258,11 @@ function placed(
     bit: pulse % 9,
     bit_index: pulse,
   };
+}
+
+/** Two pulses or more that somebody else began: one could be a spike. */
+function foreignIn(tapped: TapFindings | null, m: number): boolean {
+  return tapped !== null && tapped.foreign[m] >= 2;
 }
 
 function untappedNeeded(j: Judged, tapped: TapFindings, taps: number): boolean {

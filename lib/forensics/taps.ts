@@ -74,12 +74,15 @@ export interface TapFindings {
   /** 1: every controller that drove there is tapped or nothing untapped drove (all of START seen on taps). */
   readonly joined: Uint8Array;
   readonly losses: readonly TapLoss[];
+  /** Pulses of the message in which SCL fell before its owner pulled it: only another controller ends a HIGH. */
+  readonly foreign: Uint16Array;
 }
 
 export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapTrace[], step: number): TapFindings {
   const owner = new Int16Array(messages.count).fill(-1);
   const joined = new Uint8Array(messages.count);
   const losses: TapLoss[] = [];
+  const foreign = new Uint16Array(messages.count);
   const slots = newSlots();
   for (let m = 0; m < messages.count; m++) {
     const t = messages.first[m];
@@ -98,11 +101,27 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
     joined[m] = entrants.length;
     for (const i of entrants) {
       const slot = lossSlot(ledger, slots, taps[i], step);
-      if (slot < 0) owner[m] = i;
-      else losses.push({ message: m, tap: i, slot });
+      if (slot < 0) {
+        owner[m] = i;
+        if (taps[i].hasScl) foreign[m] = foreignPulls(ledger, slots, taps[i]);
+      } else losses.push({ message: m, tap: i, slot });
     }
   }
-  return { owner, joined, losses };
+  return { owner, joined, losses, foreign };
+}
+
+function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace): number {
+  let count = 0;
+  let at = 0;
+  let transaction = -1;
+  for (let s = 0; s < slots.length; s++) {
+    if (slots.transaction[s] !== transaction) {
+      transaction = slots.transaction[s];
+      at = ledger.openTick[transaction] + (ledger.hold[transaction] || 0);
+    } else if (!tap.pulls(SCL, at)) count++;
+    at += ledger.low[slots.entry[s]] + (ledger.high[slots.entry[s]] || 0);
+  }
+  return count;
 }
 
 /** First slot of its own in which the tap lets SDA go while the bus is low; -1 if it drove everything that was driven. */

@@ -3,7 +3,7 @@
 
 import { freshGain, holdAlone, holdTogether, type Trace, trace } from "./explain";
 import type { Ledger } from "./ledger";
-import { BUS_STOP, type Messages, newSlots, readMessage, type Slots } from "./message";
+import { BUS_STOP, HIGH_IN, LOW_IN, type Messages, newSlots, readMessage, type Slots } from "./message";
 import { logAdd } from "./normal";
 import type { Habitual, RetryRates, Rival } from "./retry";
 import type { Sampling, Signature } from "./signature";
@@ -93,7 +93,13 @@ export class Scales {
     const traces = this.traces(slots);
     const alone = new Float64Array(kinds);
     let slowed = Number.NEGATIVE_INFINITY;
+    const shown = signatures.map((s) => s.habits[LOW_IN] !== null && s.habits[HIGH_IN] !== null);
     for (let c = 0; c < kinds; c++) {
+      // A tapped controller that never spoke in this capture has no habits to compare.
+      if (!shown[c]) {
+        alone[c] = Number.NEGATIVE_INFINITY;
+        continue;
+      }
       const one = traces(1 << c);
       alone[c] = sum(one) + holdAlone(hold, signatures[c], sampling);
       slowed = logAdd(slowed, slow(ledger, slots, signatures[c], one, sampling) + alone[c]);
@@ -101,16 +107,19 @@ export class Scales {
     const rivals = signatures.map((_, c) => habitual.rival(m, c, rates));
     const options: Option[] = [];
     for (let a = 0; a < kinds; a++) {
+      if (!shown[a]) continue;
       const fresh = this.freshGains(slots, 1 << a, traces(1 << a));
       for (let b = 0; b < kinds; b++) {
-        if (a === b) continue;
+        if (a === b || !shown[b]) continue;
         const start = holdTogether(hold, signatures[a], signatures[b], sampling);
         pairOptions(options, slots, a, b, traces(1 << a), traces((1 << a) | (1 << b)), fresh, start, rivals[b]);
       }
     }
     const single = alone.reduce((x, y) => Math.max(x, y));
+    if (options.length === 0) return { message: m, alone, slowed, options };
     const best = topOf(options);
-    if (kinds > 2 && best.log > single + WORTH_A_THIRD) this.tripleOptions(options, slots, best, traces, hold, rivals);
+    if (kinds > 2 && shown.every(Boolean) && best.log > single + WORTH_A_THIRD)
+      this.tripleOptions(options, slots, best, traces, hold, rivals);
     const most = topOf(options).log;
     return { message: m, alone, slowed, options: options.filter((o) => o.log > most - 25) };
   }
@@ -136,7 +145,8 @@ export class Scales {
   ): void {
     const kinds = this.signatures.length;
     // Who kept the bus shows in the long tail, so only the two most probable are tried.
-    const keepers = new Set([best.a, topOf(out.filter((o) => o.a !== best.a)).a]);
+    const others = out.filter((o) => o.a !== best.a);
+    const keepers = new Set([best.a, others.length > 0 ? topOf(others).a : best.a]);
     for (const a of keepers) {
       const one = traces(1 << a);
       const freshOne = this.freshGains(slots, 1 << a, one);

@@ -1,0 +1,152 @@
+import { describe, expect, test } from "vitest";
+import type { Trial } from "@/fixtures/calibration/corpus";
+import { concludeTrial } from "@/fixtures/calibration/trial";
+import { controller, scenario, target } from "@/lib/simulation/plan";
+import { createRandom } from "@/lib/simulation/random";
+import type { ControllerPlan, Habit, Job, Segment, StretchRule } from "@/lib/simulation/scenario";
+import { read, write } from "@/lib/simulation/script";
+
+const PUMP: Partial<Habit> = { tlow_s: 5.0e-6, thigh_s: 4.7e-6, jitter_s: 5e-9 };
+const GATEWAY: Partial<Habit> = {
+  tlow_s: 5.7e-6,
+  thigh_s: 4.3e-6,
+  hdsta_s: 4.0e-6,
+  dataFall_s: 0.9e-6,
+  dataRise_s: 1.0e-6,
+  jitter_s: 8e-9,
+};
+
+interface Setting {
+  readonly contests: number;
+  readonly taps?: readonly number[];
+  readonly gateway?: Partial<Habit>;
+  readonly plan?: Partial<ControllerPlan>;
+  readonly stretch?: readonly StretchRule[];
+  readonly volts?: boolean;
+  readonly rate_hz?: number;
+  readonly clash?: readonly [Segment[], Segment[]];
+}
+
+const job = (at_s: number, message: Segment[]): Job => ({ at_s, message, resetAfter: null });
+
+/** Sixty messages of two controllers to three targets; in `contests` of them both start at once. */
+function trial(setting: Setting): Trial {
+  const random = createRandom(5);
+  const jobs: Job[][] = [[], []];
+  for (let i = 0; i < 60; i++) {
+    const at = 1e-3 + i * 2e-3;
+    const byte = random.int(0, 255);
+    if (i % 2 === 0 || i >= 2 * setting.contests)
+      jobs[i % 2].push(job(at, i % 3 === 0 ? [write(0x48, [1]), read(0x48, 2)] : [write(0x20, [2, byte])]));
+    if (i % 2 === 1 && i < 2 * setting.contests) {
+      const [a, b] = setting.clash ?? [[write(0x20, [0x02, 0x10])], [write(0x20, [0x02, 0x18])]];
+      jobs[0].push(job(at, a));
+      jobs[1].push(job(at + 0.5e-6, b));
+    }
+  }
+  return {
+    seed: 1,
+    scenario: scenario(11, 0.125, {
+      controllers: [
+        controller("pump", PUMP, { jobs: jobs[0] }),
+        controller("gateway", { ...GATEWAY, ...setting.gateway }, { jobs: jobs[1], drive_ohm: 130, ...setting.plan }),
+      ],
+      targets: [target("level", 0x48), target("valves", 0x20, { stretch: setting.stretch ?? [] })],
+    }),
+    instrument: { rate_hz: setting.rate_hz ?? 20e6, phase_s: 0, threshold: 0.5 },
+    scope: setting.volts ? { rate_hz: 20e6, noise_v: 0.01, step_v: 3.3 / 256 } : null,
+    taps: setting.taps ?? [],
+    contested: setting.contests > 0,
+  };
+}
+
+describe("forensics on simulated buses", () => {
+  test("two controllers are found without being told, and every transaction is given to the right one", () => {
+    const { outcome, recording } = concludeTrial(trial({ contests: 0 }));
+    expect(outcome.controllers).toHaveLength(2);
+    expect(outcome.contests).toEqual([]);
+    const truth = recording.truth.transactions.map((t) => t.controllers[0]);
+    const first = truth[0];
+    expect([...outcome.attribution]).toEqual(truth.map((c) => (c === first ? 0 : 1)));
+    // Input filter and rise time add to what a controller counts: 0.1 us here.
+    expect(outcome.controllers[0].tlow_s).toBeCloseTo(5.1e-6, 7);
+  });
+
+  test.each([
+    ["leaves at once", "leave"],
+    ["clocks to the eighth pulse", "byte"],
+    ["clocks through the ninth", "byte-ack"],
+  ] as const)("a contest in data: bit, parties and retry, where the loser %s", (_, afterLoss) => {
+    const { outcome, recording } = concludeTrial(trial({ contests: 5, plan: { afterLoss } }));
+    expect(outcome.contests).toHaveLength(5);
+    for (const [i, contest] of outcome.contests.entries()) {
+      const loss = recording.truth.yields[i];
+      expect(contest).toMatchObject({ transaction: loss.transaction, bit_index: 9 + 9 + 4, byte: 2, bit: 4, retry: loss.retry });
+      expect(contest.kept).toBe("C1");
+      expect(contest.yielded).toBe("C2");
+      expect(contest.probability).toBeGreaterThan(0.95);
+      expect(Math.abs(contest.decided_s - loss.decided_s)).toBeLessThan(0.2e-6);
+      expect(contest.evidence.map((e) => e.kind)).toContain("clock-sync");
+    }
+  });
+
+  test("contests in the R/W bit and in the acknowledge of a read", () => {
+    const rw = concludeTrial(trial({ contests: 4, clash: [[write(0x48, [7])], [read(0x48, 2)]] }));
+    expect(rw.outcome.contests.map((c) => c.bit_index)).toEqual([7, 7, 7, 7]);
+    const ack = concludeTrial(trial({ contests: 4, clash: [[read(0x48, 3)], [read(0x48, 2)]] }));
+    expect(ack.outcome.contests.map((c) => c.bit_index)).toEqual([26, 26, 26, 26]);
+  });
+
+  test("a stretching target makes no contest, and every stretch is reported as the target's", () => {
+    const stretch = [{ where: "after-ack" as const, bit: 0, byte: null, hold_s: [15e-6, 40e-6] as const, chance: 1 }];
+    const { outcome, recording } = concludeTrial(trial({ contests: 0, stretch }));
+    expect(outcome.contests).toEqual([]);
+    // A hold before the STOP precedes no bit.
+    const truth = recording.truth.stretches.filter((s) => s.pulse < recording.truth.transactions[s.transaction].pulses);
+    expect(outcome.stretches.map((s) => [s.transaction, 9 * s.byte + s.bit])).toEqual(truth.map((s) => [s.transaction, s.pulse]));
+    expect(new Set(outcome.stretches.map((s) => s.by))).toEqual(new Set(["target"]));
+    outcome.stretches.forEach((s, i) => {
+      expect(Math.abs(s.low_s - truth[i].hold_s)).toBeLessThan(0.3e-6);
+    });
+  });
+
+  test.each([
+    ["both", [0, 1]],
+    ["the loser only", [1]],
+    ["the winner only", [0]],
+  ] as const)("drive taps on %s: all contests, exactly", (_, taps) => {
+    const { outcome, recording } = concludeTrial(trial({ contests: 6, taps }));
+    expect(outcome.contests.map((c) => [c.transaction, c.bit_index])).toEqual(
+      recording.truth.yields.map((y) => [y.transaction, y.bit_index]),
+    );
+    expect(new Set(outcome.contests.map((c) => c.grade))).toEqual(new Set(["certain"]));
+    for (const contest of outcome.contests) expect(contest.kept).not.toBe(contest.yielded);
+  });
+
+  test("volts: the deeper low of two drivers is evidence", () => {
+    const { outcome, recording } = concludeTrial(trial({ contests: 5, volts: true }));
+    expect(outcome.contests.map((c) => [c.transaction, c.bit_index])).toEqual(
+      recording.truth.yields.map((y) => [y.transaction, y.bit_index]),
+    );
+    for (const contest of outcome.contests) {
+      expect(contest.evidence.find((e) => e.kind === "low-level")?.bits).toBeGreaterThan(3);
+    }
+  });
+
+  test("one controller polling one address, retrying after NACK, makes no contest", () => {
+    const jobs = Array.from({ length: 50 }, (_, i) => job(1e-3 + i * 1.5e-3, [write(0x3d, [i % 4])]));
+    const retryNack = { after_s: [1e-5, 2e-4] as const, limit: 2 };
+    const alone = {
+      ...trial({ contests: 0 }),
+      scenario: scenario(3, 0.09, { controllers: [controller("pump", PUMP, { jobs, retryNack })], targets: [] }),
+    };
+    const { outcome } = concludeTrial(alone);
+    expect(outcome.controllers).toHaveLength(1);
+    expect(outcome.contests).toEqual([]);
+  });
+
+  test("an empty capture concludes to nothing", () => {
+    const nothing = { ...trial({ contests: 0 }), scenario: scenario(3, 0.01, {}) };
+    expect(concludeTrial(nothing).outcome).toMatchObject({ contests: [], controllers: [], stretches: [] });
+  });
+});

@@ -57,11 +57,11 @@ function PrintedRow({
         <span className="tabular text-hex">
           {instant(row.startTick, head.timebase, Math.min(7, timeDigits(head.timebase, head.sampleTicks)))}
         </span>
-        <span className="tabular text-hex">
+        <span className="tabular whitespace-nowrap text-hex">
           {address(row.address, row.addressBits)} {row.direction ?? ""}
         </span>
         <span className="text-quiet">{names.get(row.address) ?? ""}</span>
-        <span className="ml-auto italic">{words}</span>
+        <span className="ml-auto text-right italic">{words}</span>
       </p>
       <RowTrace scene={scene} ticksPerPixel={ticksPerPixel} shift={0} width={WIDTH} />
     </div>

@@ -172,7 +172,6 @@ function StackReading({ capture, version, state, onState, rows, of, tagged, name
       ) : (
         <Stack
           capture={capture}
-          version={version}
           rows={rows}
           selected={state.selected}
           onSelect={(selected) => onState({ selected })}

@@ -29,8 +29,8 @@ export interface Session {
 }
 
 /**
- * Reads a source in the worker with these settings, anew whenever either changes. The page is told of growth once per frame
- * at most, however fast the blocks come. `settings` must keep its identity while it means the same.
+ * Reads a source in the worker with these settings, anew whenever either changes. The page is told of growth some
+ * times a second, however fast the blocks come. `settings` must keep its identity while it means the same.
  */
 export function useSession(source: Source | null, settings: AnalysisSettings): Session {
   const [stage, setStage] = useState<Stage>({ is: "empty" });
@@ -92,22 +92,28 @@ async function run(worker: DecodeClient, source: Source, settings: AnalysisSetti
   }
 }
 
-/** Runs the newest of many calls once per frame, and none after it was closed. */
+/** The page is told of growth at once the first time, then at most so often: reading is to be watched, not to be slowed. */
+const PACE_MS = 100;
+
+/** Runs one of many calls now and then, the last one never lost, and none after it was closed. */
 class Frames {
-  #asked = 0;
+  #timer: ReturnType<typeof setTimeout> | undefined;
+  #last = Number.NEGATIVE_INFINITY;
   #closed = false;
 
   ask(act: () => void): void {
-    if (this.#closed || this.#asked !== 0) return;
-    this.#asked = requestAnimationFrame(() => {
-      this.#asked = 0;
+    if (this.#closed || this.#timer !== undefined) return;
+    const wait = Math.max(0, this.#last + PACE_MS - performance.now());
+    this.#timer = setTimeout(() => {
+      this.#timer = undefined;
+      this.#last = performance.now();
       act();
-    });
+    }, wait);
   }
 
   close(): void {
     this.#closed = true;
-    cancelAnimationFrame(this.#asked);
+    clearTimeout(this.#timer);
   }
 }
 

@@ -11,7 +11,7 @@ const COLUMNS = [
   { key: "p50", head: "median", number: true },
   { key: "max", head: "most", number: true },
   { key: "limit", head: "limit", number: true },
-  { key: "range", head: <span className="sr-only">drawn</span> },
+  { key: "range", head: <span className="sr-only">drawn</span>, screenOnly: true },
   { key: "verdict", head: "verdict" },
 ];
 
@@ -181,7 +181,7 @@ export function Limits({ summary, onGo }: LimitsProps) {
             <Cell number>{figure(row.p50_s)}</Cell>
             <Extreme value={row.max_s} at={row.largest} broken={row.above > 0} onGo={onGo} />
             <Cell number>{limitWords(row)}</Cell>
-            <Cell className="align-middle">
+            <Cell className="screen-only align-middle">
               <Range row={row} />
             </Cell>
             <Cell className="whitespace-nowrap">

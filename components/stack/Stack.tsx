@@ -10,7 +10,6 @@ import { BESIDE, type RowLayout, StackRow } from "./StackRow";
 
 export interface StackProps {
   capture: Capture;
-  version: unknown;
   /** Transactions to show, ascending; null for all of them. */
   rows: Uint32Array | null;
   selected: number | null;
@@ -199,7 +198,7 @@ export function Stack(props: StackProps) {
               <StackRow
                 key={index}
                 capture={capture}
-                version={props.version}
+                marks={capture.marks}
                 index={index}
                 place={place}
                 total={total}

@@ -3,7 +3,7 @@ import { RowTrace } from "@/components/score/RowTrace";
 import { TagShape } from "@/components/ui/Icon";
 import type { Capture } from "@/lib/view/capture";
 import { address, addressBytes, count, instant } from "@/lib/view/format";
-import { NO_MARKS } from "@/lib/view/marks";
+import type { Marks } from "@/lib/view/marks";
 import { rowScene } from "@/lib/view/row";
 import { rowSentence, type Tone, verdicts } from "@/lib/view/words";
 
@@ -24,8 +24,8 @@ export interface RowLayout {
 
 export interface StackRowProps {
   capture: Capture;
-  /** Changes when the marks do; the capture itself stays the same object. */
-  version: unknown;
+  /** The capture's marks; a row is complete when it first appears, only these change it later. */
+  marks: Marks;
   index: number;
   place: number;
   total: number;
@@ -45,22 +45,21 @@ const VERDICTS = 3;
 
 /** One transaction of the stack: number, time, address, direction, trace, verdict. */
 export const StackRow = memo(function StackRow(props: StackRowProps) {
-  const { capture, version, index, layout, selected, device } = props;
-  // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place, the version says when
+  const { capture, marks, index, layout, selected, device } = props;
   const { row, scene, found, sentence } = useMemo(() => {
-    const { ledger, edges, marks, head } = capture;
+    const { ledger, edges, head } = capture;
     const made = ledger.row(index);
     const own = marks.of(index);
     const beaten = own.retryOf === null ? null : marks.of(own.retryOf);
     const source = { ledger, edges, ticksPerSecond: head.timebase.ticksPerSecond };
-    const words = verdicts(made, own ?? NO_MARKS, marks);
+    const words = verdicts(made, own, marks);
     return {
       row: made,
       scene: rowScene(source, made, own, beaten),
       found: words,
       sentence: rowSentence(ledger, made, words, device),
     };
-  }, [capture, version, index, device]);
+  }, [capture, marks, index, device]);
 
   const seven = address(row.address, row.addressBits);
   const number = (

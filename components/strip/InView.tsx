@@ -14,7 +14,7 @@ export interface InViewProps {
   onSelect: (transaction: number) => void;
 }
 
-const LISTED = 30;
+const LISTED = 40;
 const BYTES = 12;
 
 function bytesOf(capture: Capture, row: Row): string {
@@ -48,7 +48,7 @@ export function InView({ capture, span, selected, names, onSelect }: InViewProps
               type="button"
               onClick={() => onSelect(row.index)}
               aria-current={row.index === selected}
-              className="grid w-full grid-cols-[3.5rem_7.5rem_3.5rem_1.5rem_minmax(0,1fr)_auto] items-baseline gap-x-2 py-1 text-left hover:bg-ink/5 aria-[current=true]:shadow-[inset_3px_0_0_rgb(var(--accent))]"
+              className="grid w-full grid-cols-[3rem_6.6rem_3rem_1rem_minmax(0,1fr)] sm:grid-cols-[3.5rem_7.5rem_3.5rem_1.5rem_minmax(0,1fr)_auto] items-baseline gap-x-2 py-1 text-left hover:bg-ink/5 aria-[current=true]:shadow-[inset_3px_0_0_rgb(var(--accent))]"
             >
               <span className="pl-2 font-serif text-body text-quiet">{count(row.index)}</span>
               <span className="tabular text-hex">{instant(row.startTick, head.timebase, digits)}</span>
@@ -57,7 +57,9 @@ export function InView({ capture, span, selected, names, onSelect }: InViewProps
               </span>
               <span className="tabular text-hex">{row.direction ?? "·"}</span>
               <span className="tabular truncate text-hex">{bytesOf(capture, row)}</span>
-              <span className={`truncate font-serif text-body italic ${words[0] ? TONE_CLASS[words[0].tone] : ""}`}>
+              <span
+                className={`hidden truncate font-serif text-body italic sm:inline ${words[0] ? TONE_CLASS[words[0].tone] : ""}`}
+              >
                 {words[0]?.text}
               </span>
             </button>

@@ -156,7 +156,9 @@ function splits(scale: TimeScale, capture: Capture): number[] {
   const perSecond = capture.head.timebase.ticksPerSecond;
   const step = stepOf(scale, perSecond);
   const list: number[] = [];
-  const last = Math.floor(endOf(scale) / perSecond / step + 1e-9);
+  // A label centred on the very edge would be cut off.
+  const room = 40 * scale.ticksPerPixel;
+  const last = Math.floor((endOf(scale) - room) / perSecond / step + 1e-9);
   for (let k = Math.ceil(scale.origin / perSecond / step - 1e-9); k <= last; k++) list.push(k * step * perSecond);
   return list;
 }

@@ -1,6 +1,8 @@
 import type { ReactNode } from "react";
 
 export interface Column {
+  /** Left out on paper: a drawing that would make the table too wide. */
+  readonly screenOnly?: boolean;
   readonly key: string;
   readonly head: ReactNode;
   /** Numbers stand to the right, in the monospaced face. */
@@ -27,7 +29,7 @@ export function Table({ caption, captioned = false, columns, children }: TablePr
               <th
                 key={column.key}
                 scope="col"
-                className={`py-1 pr-5 align-bottom font-normal last:pr-0 ${column.number ? "text-right" : "text-left"}`}
+                className={`py-1 pr-5 align-bottom font-normal last:pr-0 ${column.number ? "text-right" : "text-left"} ${column.screenOnly ? "screen-only" : ""}`}
               >
                 {column.head}
               </th>

@@ -47,7 +47,7 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
       transfer.choose(next.read);
       setRead(next.read);
     } else if (capture && (reread || judged)) {
-      await readOnServer(capture.id, next.read);
+      await readOnServer(capture.id, next.read, capture.log);
       await refresh();
     }
   };

@@ -29,23 +29,28 @@ async function sha256(bytes: Uint8Array<ArrayBuffer>): Promise<string> {
 }
 
 /** Packs, sends and has checked; answers the capture as it then stands. */
-export async function storeAnalysis(capture: string, source: Source, read: ReadChoices): Promise<CaptureFile> {
+export async function storeAnalysis(
+  capture: string,
+  source: Source,
+  read: ReadChoices,
+  log: string | null,
+): Promise<CaptureFile> {
   const bytes = await packed(source, read);
   const seal = { size: bytes.byteLength, sha256: await sha256(bytes) };
   const signed = await ask({ method: "POST", path: `/api/captures/${capture}/archive`, body: seal, answer: SignedArchiveSchema });
   const put = await fetch(signed.url, { method: "PUT", body: bytes });
   if (!put.ok) throw new Error(`The storage answered ${put.status} to the edge archive.`);
-  const body = { archive: { key: signed.key, ...seal }, read };
+  const body = { archive: { key: signed.key, ...seal }, read, log };
   const answer = await ask({ method: "PUT", path: `/api/captures/${capture}/analysis`, body, answer: CaptureAnswerSchema });
   return answer.capture;
 }
 
 /** Has the server read the original itself, under these choices. */
-export async function readOnServer(capture: string, read: ReadChoices): Promise<CaptureFile> {
+export async function readOnServer(capture: string, read: ReadChoices, log: string | null): Promise<CaptureFile> {
   const answer = await ask({
     method: "PUT",
     path: `/api/captures/${capture}/reading`,
-    body: { read },
+    body: { read, log },
     answer: CaptureAnswerSchema,
   });
   return answer.capture;

@@ -25,8 +25,8 @@ export function useKeeping(items: readonly Item[], may: boolean, refresh: () => 
     begun.current.add(mark);
     const { capture, transfer } = next;
     const kept = transfer
-      ? storeAnalysis(capture.id, localSource(transfer), transfer.read)
-      : readOnServer(capture.id, capture.read);
+      ? storeAnalysis(capture.id, localSource(transfer), transfer.read, capture.log)
+      : readOnServer(capture.id, capture.read, capture.log);
     kept
       .then(
         () => setTrouble(null),

@@ -81,16 +81,17 @@ async function begin(input: Intake): Promise<void> {
 
 async function nextFrame(input: Intake): Promise<Frame> {
   const at = input.at;
-  const fields = (await input.take(FRAME_BYTES)).slice();
-  const view = new DataView(fields.buffer);
+  const fields = await input.take(FRAME_BYTES);
+  const view = new DataView(fields.buffer, fields.byteOffset, FRAME_BYTES);
   const size = view.getUint32(6, true);
   if (size > PAYLOAD) throw new CorruptError(`a frame of ${size} bytes`);
-  return { kind: fields[0], lane: fields[1], entries: view.getUint32(2, true), at, stored: await input.take(size) };
+  const [kind, lane, entries] = [fields[0], fields[1], view.getUint32(2, true)];
+  return { kind, lane, entries, at, stored: await input.take(size) };
 }
 
 async function end(input: Intake, tail: Frame): Promise<void> {
-  const bytes = (await input.take(4 + END.length)).slice();
-  const length = new DataView(bytes.buffer).getUint32(0, true);
+  const bytes = await input.take(4 + END.length);
+  const length = new DataView(bytes.buffer, bytes.byteOffset, 4).getUint32(0, true);
   if (length !== input.at - 8 - tail.at || END.some((byte, i) => bytes[4 + i] !== byte))
     throw new CorruptError("its end is damaged");
 }

@@ -94,7 +94,7 @@ export const ROOMS: readonly Room[] = [
   {
     place: "lib/view",
     holds: "scenes, filters, formatting",
-    from: ["lib/base", ...ENGINE, "lib/diagnosis"],
+    from: ["lib/base", ...ENGINE, "lib/forensics", "lib/diagnosis"],
     packages: [],
     pure: true,
   },

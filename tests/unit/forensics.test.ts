@@ -145,6 +145,46 @@ describe("forensics on simulated buses", () => {
     expect(outcome.contests).toEqual([]);
   });
 
+  test("a controller log finds its place by the losses it reports, whatever its clock, and a flag without a contest is named", () => {
+    const setting = trial({ contests: 12 });
+    const plain = concludeTrial(setting);
+    const clock = (time: number): number => 1234.5 + time * (1 + 80e-6);
+    const { yields, transactions } = plain.recording.truth;
+    const reported = yields.map((y) => ({
+      time_s: clock(y.decided_s + 30e-6),
+      controller: "gateway",
+      message: "xfer failed: EAGAIN",
+    }));
+    const innocent = transactions.findIndex((t, i) => i > 40 && t.controllers.length === 1 && !yields.some((y) => y.retry === i));
+    const spurious = { time_s: clock(transactions[innocent].end_s), controller: "gateway", message: "ARLO set" };
+    const log = [...reported, spurious].sort((a, b) => a.time_s - b.time_s);
+    const { outcome } = concludeTrial(setting, false, { roster: [], log }, plain.recording);
+    expect(outcome.contests).toHaveLength(12);
+    for (const contest of outcome.contests) expect(contest.evidence.find((e) => e.kind === "log")?.bits).toBeGreaterThan(3);
+    expect(outcome.lookAlikes).toHaveLength(1);
+    expect(outcome.lookAlikes[0]).toMatchObject({ kind: "look-alike", transaction: innocent });
+    expect(outcome.lookAlikes[0].detail).toContain("Wire legal, flag set");
+  });
+
+  test("a target that goes on holding SDA after its controller was reset is a look-alike, not a contest", () => {
+    const jobs: Job[] = [
+      ...Array.from({ length: 20 }, (_, i) => job(1e-3 + i * 2e-3, [write(0x20, [2, i])])),
+      { at_s: 45e-3, message: [read(0x48, 3)], resetAfter: 12 },
+      { at_s: 48e-3, message: [], resetAfter: null },
+      job(52e-3, [write(0x20, [2, 1])]),
+    ];
+    const held = {
+      ...trial({ contests: 0 }),
+      scenario: scenario(3, 0.06, {
+        controllers: [controller("pump", PUMP, { jobs })],
+        targets: [target("level", 0x48, { data: [0] }), target("valves", 0x20)],
+      }),
+    };
+    const { outcome } = concludeTrial(held);
+    expect(outcome.contests).toEqual([]);
+    expect(outcome.lookAlikes.length).toBeGreaterThan(0);
+  });
+
   test("an empty capture concludes to nothing", () => {
     const nothing = { ...trial({ contests: 0 }), scenario: scenario(3, 0.01, {}) };
     expect(concludeTrial(nothing).outcome).toMatchObject({ contests: [], controllers: [], stretches: [] });

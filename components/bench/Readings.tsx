@@ -1,6 +1,6 @@
 "use client";
 
-import { type RefObject, useCallback, useMemo, useState } from "react";
+import { type ReactNode, type RefObject, useCallback, useMemo, useState } from "react";
 import { Faults } from "@/components/ledger/Faults";
 import { Filters } from "@/components/ledger/Filters";
 import { Limits } from "@/components/ledger/Limits";
@@ -9,7 +9,7 @@ import { Search } from "@/components/ledger/Search";
 import { Stack } from "@/components/stack/Stack";
 import { InView } from "@/components/strip/InView";
 import { StripTrace } from "@/components/strip/StripTrace";
-import { wordClass } from "@/components/ui/Tabs";
+import { Tabs } from "@/components/ui/Tabs";
 import { type Capture, longest, usualScale } from "@/lib/view/capture";
 import { addressesSeen, SHOWS, type Show } from "@/lib/view/filter";
 import { count } from "@/lib/view/format";
@@ -33,74 +33,68 @@ export interface ReadingsProps {
 
 const READING_WORDS: Record<Reading, string> = { stack: "Stack", strip: "Strip", limits: "Limits", faults: "Faults" };
 
-function ReadingWords({
-  reading,
-  onReading,
-  capture,
-}: {
-  reading: Reading;
-  onReading: (reading: Reading) => void;
-  capture: Capture;
-}) {
+function ReadingName({ reading, capture }: { reading: Reading; capture: Capture }) {
   const faults = capture.summary?.faults.length ?? 0;
   const broken = (capture.summary?.measurements ?? []).filter((row) => row.below + row.above > 0).length;
   return (
-    <nav aria-label="Readings" className="screen-only flex gap-x-6 font-serif text-[1.125rem]">
-      {READINGS.filter((entry) => capture.summary || entry === "stack" || entry === "strip").map((entry) => (
-        <button key={entry} type="button" aria-pressed={reading === entry} onClick={() => onReading(entry)} className={wordClass}>
-          {READING_WORDS[entry]}
-          {entry === "faults" && faults > 0 && <span className="tabular ml-1.5 text-[0.75rem]">{count(faults)}</span>}
-          {entry === "limits" && broken > 0 && <span className="tabular ml-1.5 text-[0.75rem] text-broken">{count(broken)}</span>}
-        </button>
-      ))}
-    </nav>
+    <>
+      {READING_WORDS[reading]}
+      {reading === "faults" && faults > 0 && <span className="tabular ml-1.5 text-[0.75rem]">{count(faults)}</span>}
+      {reading === "limits" && broken > 0 && <span className="tabular ml-1.5 text-[0.75rem] text-broken">{count(broken)}</span>}
+    </>
   );
 }
 
 /** The readings of one capture: the stack, the strip, the limits and the faults; the selection is shared. */
 export function Readings(props: ReadingsProps) {
-  const { capture, state, onState, onGo, version } = props;
+  const { capture, state, onState, onGo } = props;
+  const { summary } = capture;
+  const contents: Record<Reading, ReactNode> = {
+    stack: <StackReading {...props} />,
+    strip: <StripReading {...props} />,
+    limits: summary && <Limits summary={summary} onGo={onGo} />,
+    faults: summary && <Faults summary={summary} capture={capture} onGo={onGo} />,
+  };
+  return (
+    <Tabs
+      label="Readings"
+      value={contents[state.reading] ? state.reading : "stack"}
+      onValueChange={(value) => onState({ reading: READINGS.find((reading) => reading === value) ?? "stack" })}
+      items={READINGS.filter((reading) => contents[reading]).map((reading) => ({
+        value: reading,
+        text: <ReadingName reading={reading} capture={capture} />,
+        content: <div className="screen-only mt-3">{contents[reading]}</div>,
+      }))}
+    />
+  );
+}
+
+function StripReading({ capture, version, state, onState, names }: ReadingsProps) {
   return (
     <>
-      <ReadingWords reading={state.reading} onReading={(reading) => onState({ reading })} capture={capture} />
-      {state.reading === "stack" && <StackReading {...props} />}
-      {state.reading === "strip" && (
-        <div className="screen-only mt-3">
-          <StripTrace
-            capture={capture}
-            version={version}
-            span={state.strip}
-            onSpan={(strip) => onState({ strip })}
-            selected={state.selected}
-            onSelectAt={(tick) => {
-              const near = transactionNear(capture.ledger, tick);
-              if (near !== null) onState({ selected: near });
-            }}
-          />
-          <InView
-            capture={capture}
-            span={state.strip ?? capture.record}
-            selected={state.selected}
-            names={props.names}
-            onSelect={(selected) => onState({ selected })}
-          />
-        </div>
-      )}
-      {state.reading === "limits" && capture.summary && (
-        <div className="screen-only mt-3">
-          <Limits summary={capture.summary} onGo={onGo} />
-        </div>
-      )}
-      {state.reading === "faults" && capture.summary && (
-        <div className="screen-only">
-          <Faults summary={capture.summary} capture={capture} onGo={onGo} />
-        </div>
-      )}
+      <StripTrace
+        capture={capture}
+        version={version}
+        span={state.strip}
+        onSpan={(strip) => onState({ strip })}
+        selected={state.selected}
+        onSelectAt={(tick) => {
+          const near = transactionNear(capture.ledger, tick);
+          if (near !== null) onState({ selected: near });
+        }}
+      />
+      <InView
+        capture={capture}
+        span={state.strip ?? capture.record}
+        selected={state.selected}
+        names={names}
+        onSelect={(selected) => onState({ selected })}
+      />
     </>
   );
 }
 
-function StackReading({ capture, version, state, onState, rows, of, tagged, names, searchField, onView }: ReadingsProps) {
+function StackReading({ capture, state, onState, rows, of, tagged, names, searchField, onView }: ReadingsProps) {
   const [traceWidth, setTraceWidth] = useState(600);
   const [shift, setShift] = useState(0);
   const concluded = capture.summary !== null;

@@ -22,8 +22,6 @@ export interface RowTraceProps {
   ticksPerPixel: number;
   shift: number;
   width: number;
-  /** Footnote number that stands on the trace, if any. */
-  mark?: number;
 }
 
 const TONES: Record<Letter["kind"], string> = {

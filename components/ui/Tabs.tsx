@@ -20,7 +20,7 @@ export interface TabsProps {
 export function Tabs({ label, value, onValueChange, items }: TabsProps) {
   return (
     <Parts.Root value={value} onValueChange={onValueChange}>
-      <Parts.List aria-label={label} className="screen-only flex flex-wrap gap-x-6 gap-y-1 font-sans text-label">
+      <Parts.List aria-label={label} className="screen-only flex flex-wrap gap-x-6 gap-y-1 font-serif text-[1.125rem]">
         {items.map((item) => (
           <Parts.Trigger key={item.value} value={item.value} className={wordClass}>
             {item.text}

@@ -38,11 +38,8 @@ async function main(): Promise<Service> {
   await writeState(HOME, { ...state, port: process.env.PORT ? state.port : port });
   const env = applicationEnvironment({ ...services.settings, APP_URL: address });
   goOn();
-  await migrate(ROOT, env);
-  goOn();
-  const accounts = await demo(services, env);
-  goOn();
-  await build(ROOT, DIST, true);
+  // The build needs no service, so it runs beside the work on the database.
+  const [accounts] = await Promise.all([prepare(services, env), build(ROOT, DIST, true)]);
   goOn();
   const service = await serveApplication(ROOT, DIST, port, env, path.join(HOME, "log", "application.log"));
   started.push({ name: "application", stop: service.stop });
@@ -77,6 +74,12 @@ async function checkSpace(): Promise<void> {
     `Only ${megabytes} MB are free on the disk that holds ${ROOT}.`,
     "Free about 1 GB and start again: a build and the database need it.",
   );
+}
+
+async function prepare(services: Services, env: NodeJS.ProcessEnv): Promise<DemoAccount[]> {
+  await migrate(ROOT, env);
+  goOn();
+  return demo(services, env);
 }
 
 /** The demo team, once per database of our own. Somebody's own database gets accounts with known passwords only when asked. */

@@ -3,12 +3,20 @@
 import { type KeyboardEvent, useEffect, useRef, useState } from "react";
 import type uPlot from "uplot";
 import "uplot/dist/uPlot.min.css";
+import { Button } from "@/components/ui/Button";
 import type { Capture } from "@/lib/view/capture";
 import { duration, instant, span as spanWords, timeDigits } from "@/lib/view/format";
 import { type Bounds, endOf, fitted, panned, type TimeScale, zoomed } from "@/lib/view/scale";
 import { nearestEdge } from "@/lib/view/strip";
 import { useInk } from "./ink";
 import { type Live, makePlot, type StripTraceProps, show } from "./plot";
+
+/** The same for those without keys and wheel. */
+const STEPS = [
+  ["+", "nearer"],
+  ["-", "farther"],
+  ["0", "whole"],
+] as const;
 
 /** What a key does to the scale, or null. */
 function keyed(key: string, scale: TimeScale, bounds: Bounds): TimeScale | null {
@@ -92,13 +100,16 @@ export function StripTrace(props: StripTraceProps) {
     if (plot.current) show(plot.current, capture, { from: shown.from, to: shown.to });
   }, [capture, version, shown.from, shown.to, selected]);
 
-  function key(event: KeyboardEvent) {
-    const scale = fitted(shown, plot.current?.over.clientWidth ?? 800);
-    const next = keyed(event.key, scale, bounds);
-    if (!next) return;
+  function act(key: string): boolean {
+    const next = keyed(key, fitted(shown, plot.current?.over.clientWidth ?? 800), bounds);
+    if (next) props.onSpan({ from: next.origin, to: endOf(next) });
+    return next !== null;
+  }
+
+  function onKey(event: KeyboardEvent) {
+    if (event.ctrlKey || event.metaKey || event.altKey || !act(event.key)) return;
     event.preventDefault();
     event.stopPropagation();
-    props.onSpan({ from: next.origin, to: endOf(next) });
   }
 
   return (
@@ -108,7 +119,7 @@ export function StripTrace(props: StripTraceProps) {
         role="application"
         // biome-ignore lint/a11y/noNoninteractiveTabindex: the drawing takes arrow keys, plus, minus and 0
         tabIndex={0}
-        onKeyDown={key}
+        onKeyDown={onKey}
         aria-label="Trace of the recording: arrow keys move, plus and minus zoom, 0 shows all"
       />
       <figcaption className="flex min-h-6 flex-wrap gap-x-6 font-sans text-small text-quiet">
@@ -118,7 +129,14 @@ export function StripTrace(props: StripTraceProps) {
         {cursor !== null && (
           <Readout capture={capture} tick={cursor} reach={((shown.to - shown.from) / 800) * 12} selected={selected} />
         )}
-        <span className="screen-only ml-auto">wheel zooms, shift and wheel moves, drag shows a part</span>
+        <span className="screen-only ml-auto flex gap-x-4">
+          <span className="hidden sm:inline">wheel zooms, shift and wheel moves, drag shows a part</span>
+          {STEPS.map(([step, words]) => (
+            <Button key={step} look="word" className="text-small" onClick={() => act(step)}>
+              {words}
+            </Button>
+          ))}
+        </span>
       </figcaption>
     </figure>
   );

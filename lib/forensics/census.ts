@@ -85,7 +85,9 @@ function settle(
   }
   const census = attribute(ledger, messages, sampling, signatures, known, list);
   const scale = messages.count / list.length;
-  return signatures.map((s, c) => ({ ...s, messages: Math.round(scale * list.filter((m) => census.by[m] === c).length) }));
+  return signatures
+    .map((s, c) => ({ ...s, messages: Math.round(scale * list.filter((m) => census.by[m] === c).length) }))
+    .filter((s, c) => s.messages > 0 || (known !== null && c < kinds));
 }
 
 function strangersOf(census: Census, sample: readonly number[]): number[] {

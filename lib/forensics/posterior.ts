@@ -11,6 +11,8 @@ const PRIOR_WEIGHT = 20;
 /** Lows longer by one amount over many bits: rare, and then usually a target's own manner. */
 const PRIOR_SLOWED = 0.004;
 const ROUNDS = 4;
+/** A third contender is named only when it has this share of the probability. */
+const THIRD_SURE = 0.9;
 
 export interface Rates extends RetryRates {
   contest: number;
@@ -48,7 +50,7 @@ export function judge(
   const kinds = scales.signatures.length;
   const rates: Rates = {
     contest: PRIOR_CONTEST,
-    third: 0.1,
+    third: 0.03,
     again: 0.7,
     prompt: 0.7,
     modes: Array.from({ length: kinds }, () => [0.5, 0.15, 0.35]),
@@ -117,7 +119,7 @@ function conclude(weighed: Weighed, rates: Rates, last: boolean): Judged {
     }
   }
   const all = logAdd(logAdd(none, slowed), logAdd(yields, tie));
-  const threefold = triples > yields - Math.LN2;
+  const threefold = triples > yields + Math.log(THIRD_SURE);
   const chosen = best === null || !last ? best : pick(weighed.options, threefold, best, rates);
   const shareOf = (log: number | undefined): number => (log === undefined ? 0 : Math.exp(log - yields));
   return {
@@ -169,7 +171,7 @@ function learnRates(weighed: readonly Weighed[], judged: readonly Judged[], rate
     for (const o of w.options) if (o.at >= 0) modes[o.b][o.mode] += p * Math.exp(optionLog(o, rates) - sum);
   });
   rates.contest = Math.min(0.5, (contests + PRIOR_CONTEST * PRIOR_WEIGHT) / (total + PRIOR_WEIGHT));
-  rates.third = (thirds + 0.2) / (contests + 4);
+  rates.third = (thirds + 0.15) / (contests + 5);
   modes.forEach((m, b) => {
     const s = m[0] + m[1] + m[2];
     for (let k = 0; k < 3; k++) rates.modes[b][k] = m[k] / s;

@@ -103,14 +103,14 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
       const slot = lossSlot(ledger, slots, taps[i], step);
       if (slot < 0) {
         owner[m] = i;
-        if (taps[i].hasScl) foreign[m] = foreignPulls(ledger, slots, taps[i]);
+        if (taps[i].hasScl) foreign[m] = foreignPulls(ledger, slots, taps[i], step);
       } else losses.push({ message: m, tap: i, slot });
     }
   }
   return { owner, joined, losses, foreign };
 }
 
-function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace): number {
+function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, step: number): number {
   let count = 0;
   let at = 0;
   let transaction = -1;
@@ -118,7 +118,7 @@ function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace): number {
     if (slots.transaction[s] !== transaction) {
       transaction = slots.transaction[s];
       at = ledger.openTick[transaction] + (ledger.hold[transaction] || 0);
-    } else if (!tap.pulls(SCL, at)) count++;
+    } else if (!tap.pulls(SCL, at + step / 2)) count++;
     at += ledger.low[slots.entry[s]] + (ledger.high[slots.entry[s]] || 0);
   }
   return count;

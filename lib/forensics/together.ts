@@ -6,6 +6,9 @@ import { DATA_FALL, DATA_RISE, HABITS, HIGH_IN, HIGH_NINTH, LOW_IN, SETUP_SR, SE
 import { larger, type Moments, smaller } from "./normal";
 import type { HabitFigure, LevelFigure, Signature } from "./signature";
 
+/** What synchronisation itself may add or take, as a share of the interval: input filters and edges differ when two drive. */
+const SYNC_ERROR = 0.002;
+
 export function together(a: Signature, b: Signature, vdd: number | null): Signature {
   const habits: (HabitFigure | null)[] = [];
   for (let h = 0; h < HABITS; h++) {
@@ -17,7 +20,12 @@ export function together(a: Signature, b: Signature, vdd: number | null): Signat
     }
     const shorter = h === HIGH_IN || h === HIGH_NINTH || h === SETUP_SR || h === SETUP_STOP || h === DATA_FALL;
     const m = (shorter ? smaller : larger)(moments(x), moments(y));
-    habits.push({ mean: m.mean, jitter: m.variance, broken: Math.max(x.broken, y.broken), count: Math.min(x.count, y.count) });
+    habits.push({
+      mean: m.mean,
+      jitter: m.variance + (SYNC_ERROR * m.mean) ** 2,
+      broken: Math.max(x.broken, y.broken),
+      count: Math.min(x.count, y.count),
+    });
   }
   return {
     habits,

@@ -78,5 +78,6 @@ export function revealing(extent: Extent, offset: number, row: number, above: nu
   if (from >= first && from + rowHeight <= last + rowHeight * 0.25) return offset;
   if (from < first && from > first - 2 * rowHeight) return from - above;
   if (from > last - rowHeight && from < last + 2 * rowHeight) return from + 2 * rowHeight - view;
-  return Math.max(0, from - view / 3);
+  // The first rows stand just below what comes before the list.
+  return Math.max(-above, from - view / 3);
 }

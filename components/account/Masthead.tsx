@@ -14,7 +14,12 @@ export interface MastheadProps {
 /** The head of every page outside a share link: the usual ways for somebody signed in, or the ways in for a guest. */
 export function Masthead({ person, context, links = [] }: MastheadProps) {
   if (!person) {
-    const ways = [...links, { href: "/sign-in", text: "Sign in" }, { href: "/sign-up", text: "Found a team" }];
+    const ways = [
+      ...links,
+      { href: "/help", text: "Help" },
+      { href: "/sign-in", text: "Sign in" },
+      { href: "/sign-up", text: "Found a team" },
+    ];
     return <Header context={context} links={ways} />;
   }
   const team =
@@ -22,6 +27,8 @@ export function Masthead({ person, context, links = [] }: MastheadProps) {
       ? []
       : [
           { href: "/cases", text: "Cases" },
+          { href: "/rosters", text: "Rosters" },
+          { href: "/profiles", text: "Profiles" },
           { href: "/team", text: "Team" },
         ];
   const where = (
@@ -32,7 +39,7 @@ export function Masthead({ person, context, links = [] }: MastheadProps) {
     </>
   );
   return (
-    <Header context={where} links={[...team, ...links, { href: "/account", text: person.name }]}>
+    <Header context={where} links={[...team, ...links, { href: "/help", text: "Help" }, { href: "/account", text: person.name }]}>
       <SignOut />
     </Header>
   );

@@ -53,6 +53,14 @@ export class TapTrace {
     return i >= 0 && (this.lines[i] & line) === 0;
   }
 
+  /** When it last let go of the line, at or before `tick`; NaN where it has not, or pulls. */
+  releasedAt(line: typeof SCL | typeof SDA, tick: number): number {
+    let i = this.at(tick);
+    if (i < 0 || (this.lines[i] & line) === 0) return Number.NaN;
+    while (i > 0 && (this.lines[i - 1] & line) !== 0) i--;
+    return this.ticks[i];
+  }
+
   /** Whether it pulled the line at any moment of a span. */
   pulledWithin(line: typeof SCL | typeof SDA, from: number, to: number): boolean {
     let i = this.at(from);
@@ -83,6 +91,7 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
   const joined = new Uint8Array(messages.count);
   const losses: TapLoss[] = [];
   const foreign = new Uint16Array(messages.count);
+  const lags: Lag[][] = taps.map(() => []);
   const slots = newSlots();
   for (let m = 0; m < messages.count; m++) {
     const t = messages.first[m];
@@ -103,11 +112,42 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
       const slot = lossSlot(ledger, slots, taps[i], step);
       if (slot < 0) {
         owner[m] = i;
-        if (taps[i].hasScl) foreign[m] = foreignPulls(ledger, slots, taps[i], step);
+        if (taps[i].hasScl) {
+          foreign[m] = foreignPulls(ledger, slots, taps[i], step);
+          lags[i].push(...lagsOf(ledger, slots, taps[i], m));
+        }
+        // SDA fell for the START before this one pulled it.
+        if (taps[i].hasSda && !taps[i].pulls(SDA, start + step / 2)) foreign[m] += 2;
       } else losses.push({ message: m, tap: i, slot });
     }
   }
+  for (const list of lags) {
+    const usual = list.map((l) => l.lag).sort((a, b) => a - b)[list.length >> 1];
+    // In the address byte nobody but a controller holds SCL after the owner let go.
+    for (const l of list) if (l.lag - usual > Math.max(2.5 * step, 0.03 * l.low)) foreign[l.message]++;
+  }
   return { owner, joined, losses, foreign };
+}
+
+interface Lag {
+  readonly message: number;
+  readonly low: number;
+  /** From the owner letting go of SCL to SCL rising. */
+  readonly lag: number;
+}
+
+/** Lags of the lows inside the address byte. */
+function lagsOf(ledger: Ledger, slots: Slots, tap: TapTrace, message: number): Lag[] {
+  const out: Lag[] = [];
+  const first = slots.transaction[0];
+  let at = ledger.openTick[first] + (ledger.hold[first] || 0);
+  for (let s = 0; s < Math.min(8, slots.length) && slots.transaction[s] === first; s++) {
+    const low = ledger.low[slots.entry[s]];
+    const released = tap.releasedAt(SCL, at + low);
+    if (released > at && released <= at + low) out.push({ message, low, lag: at + low - released });
+    at += low + (ledger.high[slots.entry[s]] || 0);
+  }
+  return out;
 }
 
 function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, step: number): number {
@@ -122,6 +162,18 @@ function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, step: number)
     at += ledger.low[slots.entry[s]] + (ledger.high[slots.entry[s]] || 0);
   }
   return count;
+}
+
+/**
+ * Who has lost never pulls SDA again in that message, and another goes on to the STOP. If either fails it was something else: an
+ * extra clock that shifted the places in the byte, or a target that held SDA while nobody else was there.
+ */
+function isLoss(ledger: Ledger, slots: Slots, s: number, tap: TapTrace, from: number): boolean {
+  if (slots.bus[slots.length - 1] !== BUS_STOP) return false;
+  let end = from;
+  for (let r = s; r < slots.length; r++) end += (ledger.low[slots.entry[r]] || 0) + (ledger.high[slots.entry[r]] || 0);
+  const last = slots.entry[slots.length - 1];
+  return !tap.pulledWithin(SDA, from, end - ledger.low[slots.entry[s]] - ledger.high[slots.entry[s]] / 2 - ledger.high[last] / 2);
 }
 
 /** First slot of its own in which the tap lets SDA go while the bus is low; -1 if it drove everything that was driven. */
@@ -139,8 +191,8 @@ function lossSlot(ledger: Ledger, slots: Slots, tap: TapTrace, step: number): nu
     const high = ledger.high[e] || 0;
     const middle = rise + Math.min(high / 2, Math.max(high - 2 * step, 0));
     if (slots.own[s] === 1 && tap.hasSda) {
-      if (slots.bus[s] === 0 && !tap.pulls(SDA, middle)) return s;
-      if (slots.bus[s] === BUS_STOP && !tap.pulls(SDA, rise)) return s;
+      const gone = slots.bus[s] === BUS_STOP ? !tap.pulls(SDA, rise) : slots.bus[s] === 0 && !tap.pulls(SDA, middle);
+      if (gone) return isLoss(ledger, slots, s, tap, middle) ? s : -1;
     } else if (!tap.hasSda && !tap.pulledWithin(SCL, at, rise)) return Math.max(0, s - 1);
     at = rise + high;
   }

@@ -135,9 +135,14 @@ function infer(work: Work): Alignment {
   return alignment;
 }
 
+/** When the contest would have been decided; the START where none is supposed. */
 function timeOf(work: Work, j: Judged): number {
-  const t = work.capture.messages.first[j.message];
-  return work.capture.ledger.openTick[t] / work.capture.timebase.ticksPerSecond;
+  const { capture, scales } = work;
+  const { ledger, messages, timebase } = capture;
+  if (j.best === null) return ledger.openTick[messages.first[j.message]] / timebase.ticksPerSecond;
+  const slots = scales.read(j.message);
+  const at = j.best.at;
+  return ledger.riseTick(slots.transaction[at], slots.pulse[at]) / timebase.ticksPerSecond;
 }
 
 function report(work: Work, j: Judged, rates: Rates, alignment: Alignment): void {

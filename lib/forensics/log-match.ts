@@ -27,8 +27,9 @@ export interface Alignment {
 
 export const NO_ALIGNMENT: Alignment = { found: false, offset_s: 0, drift: 0, tolerance_s: 0, losses: [], chance: 1 };
 
-/** A controller notices a loss, and writes about it, some time later. */
-const COARSE_S = 2e-3;
+/** A controller notices a loss, and writes about it, some time later; its clock runs off by up to so much. */
+const LATE_S = 4e-4;
+const OFF = 1e-4;
 /** A log that names a contest does so four times in five; it misses one in five. */
 const TELLS = 0.8;
 
@@ -37,22 +38,23 @@ export function align(capture: Capture, events: readonly { readonly time_s: numb
   const likely = events.filter((e) => e.weight > 0.3);
   if (entries.length < 2 || likely.length < 2) return NO_ALIGNMENT;
   const span = likely[likely.length - 1].time_s - likely[0].time_s;
+  const coarse = Math.min(5e-3, LATE_S + OFF * span);
   let best = { offset: 0, matched: 0 };
   for (const entry of entries.slice(0, 40)) {
     for (const event of likely.slice(0, 400)) {
       const offset = entry.time_s - event.time_s;
-      const matched = pairs(entries, likely, offset, 0, COARSE_S).length;
+      const matched = pairs(entries, likely, offset, 0, coarse).length;
       if (matched > best.matched) best = { offset, matched };
     }
   }
-  const byChance = entries.length * Math.min(1, (likely.length * 2 * COARSE_S) / Math.max(span, COARSE_S));
+  const byChance = entries.length * Math.min(1, (likely.length * 2 * coarse) / Math.max(span, coarse));
   if (best.matched < Math.max(2, Math.min(3, entries.length), 2.5 * byChance)) return NO_ALIGNMENT;
-  const matched = pairs(entries, likely, best.offset, 0, COARSE_S);
+  const matched = pairs(entries, likely, best.offset, 0, coarse);
   const line = straightLine(matched, best.offset);
   const spread = Math.sqrt(
     matched.reduce((s, p) => s + (p.log - line.offset - (1 + line.drift) * p.event) ** 2, 0) / matched.length,
   );
-  const tolerance_s = Math.min(COARSE_S, Math.max(2e-4, 5 * spread));
+  const tolerance_s = Math.min(coarse, Math.max(6e-5, 5 * spread));
   const losses = entries.map((entry) => ({ time_s: (entry.time_s - line.offset) / (1 + line.drift), entry }));
   const chance = Math.min(0.5, Math.max(1e-3, (entries.length * 2 * tolerance_s) / Math.max(span, tolerance_s)));
   return { found: true, offset_s: line.offset, drift: line.drift, tolerance_s, losses, chance };

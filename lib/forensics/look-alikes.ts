@@ -99,7 +99,7 @@ function flagOnly(
       kind: "look-alike",
       transaction: near,
       time_s: Math.min(Math.max(loss.time_s, ledger.openTick[near] / perSecond), endTick[near] / perSecond),
-      detail: `Wire legal, flag set: ${who} reports "${loss.entry.message.slice(0, 60)}" here, but no SDA low stands where it could have lost, and nothing shows another controller. Look at its filter, hold time and errata.`,
+      detail: `Wire legal, flag set: ${who} reports "${loss.entry.message.slice(0, 60)}" here; the lines show a lawful transaction and no sign that a second controller drove. Look at its filter, hold time and errata; a contest that these clocks cannot show is not excluded.`,
     });
   }
   return out;

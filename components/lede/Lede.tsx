@@ -20,22 +20,22 @@ export function Lede({ sentences, onGo }: LedeProps) {
 }
 
 /** "transaction 213", and symbols and figures that read better in their own face: tSU;DAT, 43.4 µs, 0x50. */
-const PARTS = /(\btransaction \d+|\bt[A-Z][\w;:()]*|\b0x[0-9A-F]+|[\d.,]+\s?(?:ps|ns|µs|ms|kHz|MHz|Hz|s|V)\b)/;
+const PARTS = /(\b[Tt]ransaction \d+|\bt[A-Z][\w;:()]*|\b0x[0-9A-F]+|[\d.,]+\s?(?:ps|ns|µs|ms|kHz|MHz|Hz|s|V)\b)/;
 
 function Sentence({ text, onGo }: { text: string; onGo: (transaction: number) => void }) {
   return text.split(PARTS).map((part, place) => {
     const key = `${place}${part}`;
-    const named = /^transaction (\d+)$/.exec(part);
+    const named = /^([Tt]ransaction) (\d+)$/.exec(part);
     if (named) {
       return (
         <Fragment key={key}>
-          transaction{" "}
+          {named[1]}{" "}
           <button
             type="button"
-            onClick={() => onGo(Number(named[1]))}
+            onClick={() => onGo(Number(named[2]))}
             className="border-b border-field font-semibold leading-[1.1] hover:border-ink"
           >
-            {named[1]}
+            {named[2]}
           </button>
         </Fragment>
       );

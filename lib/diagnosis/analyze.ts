@@ -71,7 +71,17 @@ export async function analyze(
     book.places.opening(transaction),
   );
   book.conclude({ head, tail, rows, profile: chosen?.profile ?? null, lookAlikes: outcome.lookAlikes });
-  const summary = summaryOf({ head, tail, outcome, rows, chosen, book, asked: asked.value, levels: measured.levels });
+  const summary = summaryOf({
+    head,
+    tail,
+    outcome,
+    rows,
+    chosen,
+    book,
+    asked: asked.value,
+    levels: measured.levels,
+    roster: settings.roster,
+  });
   return { ok: true, summary, attribution: outcome.attribution };
 }
 
@@ -84,9 +94,10 @@ interface Concluded {
   readonly book: RuleBook;
   readonly asked: Profile | null;
   readonly levels: Parameters<typeof levelsOf>[1];
+  readonly roster: AnalysisSettings["roster"];
 }
 
-function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels }: Concluded): Summary {
+function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels, roster }: Concluded): Summary {
   const { faults, totals } = book;
   const judged = judgeable(head.timebase);
   const profile = chosen?.profile ?? asked;
@@ -110,7 +121,8 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels }: C
     levels: levelsOf(head, levels, rows, profile),
     fault_totals: Object.fromEntries(totals()),
   };
-  return { ...summary, lede: ledeOf(summary) };
+  const told = (transaction: number) => book.places.told(transaction);
+  return { ...summary, lede: ledeOf(summary, { told, timebase: head.timebase, roster }) };
 }
 
 function captureOf(head: CaptureHead, tail: CaptureTail, book: RuleBook): Summary["capture"] {

@@ -1,15 +1,31 @@
 // In: transactions and edges as they come. Out: where each transaction lies, and the levels at a tick not long past and at the end.
 
-import type { TransactionBlock } from "../engine/bus/transactions";
+import { ACK, CLOSES, DIRECTIONS, type TransactionBlock } from "../engine/bus/transactions";
 import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../engine/samples/edges";
 import type { End } from "./rule";
 
-/** Start and end of every transaction: 17 bytes each. */
+/** What a sentence says of one transaction. */
+export interface Told {
+  readonly startTick: number;
+  readonly endTick: number;
+  /** 7- or 10-bit, -1 where it was not sent whole. */
+  readonly address: number;
+  readonly reads: boolean;
+  /** Acknowledged at its address and ended by STOP or a repeated START. */
+  readonly completed: boolean;
+}
+
+const READS = 1;
+const COMPLETED = 2;
+
+/** Start, end, address and how it ended of every transaction: 20 bytes each. */
 export class TransactionPlaces {
   count = 0;
   private start = new Float64Array(1024);
   private end = new Float64Array(1024);
   private repeated = new Uint8Array(1024);
+  private address = new Int16Array(1024);
+  private manner = new Uint8Array(1024);
 
   add(block: TransactionBlock): void {
     for (let i = 0; i < block.length; i++) {
@@ -17,6 +33,9 @@ export class TransactionPlaces {
       this.start[this.count] = block.startTick[i];
       this.end[this.count] = block.endTick[i];
       this.repeated[this.count] = block.opens[i];
+      this.address[this.count] = block.address[i];
+      const completed = block.addressAck[i] === ACK && CLOSES[block.closes[i]] !== "none";
+      this.manner[this.count] = (DIRECTIONS[block.direction[i]] === "R" ? READS : 0) | (completed ? COMPLETED : 0);
       this.count++;
     }
   }
@@ -41,6 +60,18 @@ export class TransactionPlaces {
     return i;
   }
 
+  told(transaction: number): Told | null {
+    if (transaction < 0 || transaction >= this.count) return null;
+    const manner = this.manner[transaction];
+    return {
+      startTick: this.start[transaction],
+      endTick: this.end[transaction],
+      address: this.address[transaction],
+      reads: (manner & READS) !== 0,
+      completed: (manner & COMPLETED) !== 0,
+    };
+  }
+
   private grow(): void {
     const wider = (column: Float64Array) => {
       const grown = new Float64Array(column.length * 2);
@@ -52,6 +83,12 @@ export class TransactionPlaces {
     const repeated = new Uint8Array(this.repeated.length * 2);
     repeated.set(this.repeated);
     this.repeated = repeated;
+    const address = new Int16Array(this.address.length * 2);
+    address.set(this.address);
+    this.address = address;
+    const manner = new Uint8Array(this.manner.length * 2);
+    manner.set(this.manner);
+    this.manner = manner;
   }
 }
 

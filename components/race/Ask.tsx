@@ -48,7 +48,7 @@ export function Ask({ name, text, onText, asked }: AskProps) {
         spellCheck={false}
         aria-invalid={asked.wrong || undefined}
         aria-describedby={`${id}-answer`}
-        className={`${entryClass} tabular max-w-[22rem] !text-hex`}
+        className={`${entryClass} max-w-[22rem] !font-mono !text-hex`}
       />
       <p
         id={`${id}-answer`}

@@ -58,7 +58,7 @@ export function ContestList({ capture, summary, chosen, onChoose, onGo }: Contes
         </h3>
         {alike.length === 0 && (
           <p className="mt-1 font-serif text-body text-quiet">
-            Nothing else here would make a controller report lost arbitration.
+            No place in this record looks like lost arbitration without being a contest.
           </p>
         )}
         <ul className="font-sans text-label">

@@ -122,8 +122,8 @@ function Sureness({ contest, summary, name }: { contest: Contest; summary: Summa
             <MarginHead>Instead of a contest?</MarginHead>
             {contest.look_alikes.map((other) => (
               <p key={other.kind} className="mt-1 font-serif text-body">
-                {other.kind.replaceAll("-", " ")} <span className="tabular text-hex">{probability(other.probability)}</span>.{" "}
-                {other.detail}
+                {other.kind.replaceAll("-", " ").replace(/\b(sda|scl)\b/g, (line) => line.toUpperCase())}{" "}
+                <span className="tabular text-hex">{probability(other.probability)}</span>. {other.detail}
               </p>
             ))}
           </section>

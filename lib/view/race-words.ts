@@ -144,9 +144,12 @@ function clockSettling(contest: Contest, summary: Summary): Settling | null {
   if (wanted >= step) return null;
   const now = clockBits(difference, step, contest.bit_index + 1);
   const then = clockBits(difference, wanted, contest.bit_index + 1);
+  const gain = Math.min(TAP_BITS, then) - Math.min(TAP_BITS, now);
+  // What the clock could say already, faster sampling does not add.
+  if (gain < 0.5) return null;
   return {
     text: `Sample at least every ${duration(wanted)}: the SCL lows of the two differ by ${duration(difference)}, and a sample here is ${duration(step)}. If nothing but sampling blurs them, the clock would then say more.`,
-    bits: Math.max(0, Math.min(TAP_BITS, then) - Math.min(TAP_BITS, now)),
+    bits: gain,
   };
 }
 

@@ -1,14 +1,14 @@
 // In: edges, block by block. Out: bits, then transactions and bytes, block by block; see decoder.ts for the contract.
 
-import { createConditionDecoder } from "./bits/conditions";
+import { ConditionDecoder } from "./bits/conditions";
 import { createSpikeFilter, spikesAreBelowResolution } from "./bits/spikes";
-import { createAssembler } from "./bus/assembler";
+import { Assembler } from "./bus/assembler";
 import type { CreateDecoder } from "./decoder";
 import type { EdgeBlock } from "./samples/edges";
 
 export const createDecoder: CreateDecoder = (head, listener) => {
-  const assembler = createAssembler(listener);
-  const conditions = createConditionDecoder(head.levels === "volts", (block) => {
+  const assembler = new Assembler(listener);
+  const conditions = new ConditionDecoder(head.levels === "volts", (block) => {
     assembler.bits(block);
     listener.bits(block);
   });
@@ -20,7 +20,7 @@ export const createDecoder: CreateDecoder = (head, listener) => {
   const passAll = head.levels === "digital" && spikesAreBelowResolution(head.timebase, head.sampleTicks);
   const filter = passAll
     ? null
-    : createSpikeFilter(head.timebase, { edges: decode, spike: listener.spike, inHs: conditions.inHs });
+    : createSpikeFilter(head.timebase, { edges: decode, spike: listener.spike, inHs: () => conditions.inHs() });
 
   return {
     push(block) {

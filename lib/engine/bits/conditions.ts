@@ -6,6 +6,7 @@ import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN, type VoltColum
 import {
   BIT,
   type BitBlock,
+  type BitLeads,
   HOLD_WITHIN_SAMPLE,
   IN_HS,
   LOST,
@@ -16,325 +17,272 @@ import {
   STOP,
 } from "./bits";
 import { BIT_BLOCK_CAPACITY, newBitBlock } from "./columns";
+import { type PlainState, plainBits } from "./plain";
 
 const UNKNOWN = SCL_UNKNOWN | SDA_UNKNOWN;
 /** Pulses of one byte on the wire: eight bits and the acknowledge. */
 const SLOTS = 9;
-/** Both lines known, no cut: the values of `lines` from 0 to 3. */
-const LEVELS = SCL | SDA;
 /** No condition pending. */
 const NONE = -1;
 
-export interface ConditionDecoder {
-  /** Decodes entries `from` to `to` (exclusive) of a block. `firstEdge` is the index of entry 0 over the whole capture. */
-  run(block: EdgeBlock, from: number, to: number, firstEdge: number): void;
-  /** Hands on what is ready. */
-  flush(): void;
-  /** Ends the record. */
-  finish(endTick: number): void;
+/** Bits of a stream of edges. `emit` gets each filled block; the block is reused after the call returns. */
+export class ConditionDecoder implements PlainState {
+  /** Levels before the current event; UNKNOWN until the first one. */
+  lines = UNKNOWN;
+  fall = Number.NaN;
+  rise = Number.NaN;
+  riseEdge = Number.NaN;
+  private sdaFirst = Number.NaN;
+  private sdaLast = Number.NaN;
+  private lowFlags = 0;
+  private lastTick = Number.NaN;
+  private lastEdge = Number.NaN;
+  /** A transaction is open (START seen, no STOP yet); busy without one means clocks came before any START. */
+  private open = false;
+  private busy = false;
+  /** The high under way saw a condition, so its pulse carries no bit. */
+  private conditionInHigh = false;
+  /** START and Sr wait for the SCL fall that gives their `end`. */
+  private pending = NONE;
+  private pendingTick = Number.NaN;
+  private pendingEdge = Number.NaN;
+  /** Slot of the next bit, and the bits since START, to find the Hs controller code. */
+  private slot = 0;
+  private sinceStart = 0;
+  private shift = 0;
+  private hs = false;
+  private afterPlainStart = false;
+  /** Volts: leads of the edges remembered above, and mean levels. */
+  private pendingLead = Number.NaN;
+  private fallLead = Number.NaN;
+  private riseLead = Number.NaN;
+  private firstLead = Number.NaN;
+  private lastLead = Number.NaN;
+  private sclLow = Number.NaN;
+  private sdaHigh = Number.NaN;
+  private readonly out: BitBlock;
+  private readonly leads: BitLeads | null;
+
+  constructor(
+    volts: boolean,
+    private readonly emit: (block: BitBlock) => void,
+  ) {
+    this.out = newBitBlock(volts);
+    this.leads = this.out.leads;
+  }
+
   /** True between an Hs controller code and the STOP after it. */
-  inHs(): boolean;
-}
+  inHs(): boolean {
+    return this.hs;
+  }
 
-/**
- * Bits of a stream of edges. `emit` gets each filled block; the block is reused after the call returns.
- */
-export function createConditionDecoder(volts: boolean, emit: (block: BitBlock) => void): ConditionDecoder {
-  const out = newBitBlock(volts);
-  const leads = out.leads;
-  // Times live in an object's fields: captured variables would box every double anew.
-  const at = {
-    fall: Number.NaN,
-    rise: Number.NaN,
-    sdaFirst: Number.NaN,
-    sdaLast: Number.NaN,
-    riseEdge: Number.NaN,
-    pendingTick: Number.NaN,
-    pendingEdge: Number.NaN,
-    pendingLead: Number.NaN,
-    lastTick: Number.NaN,
-    lastEdge: Number.NaN,
-    fallLead: Number.NaN,
-    riseLead: Number.NaN,
-    firstLead: Number.NaN,
-    lastLead: Number.NaN,
-    sclLow: Number.NaN,
-    sdaHigh: Number.NaN,
-  };
-  // Levels before the current event; UNKNOWN until the first one.
-  let lines = UNKNOWN;
-  let lowFlags = 0;
-  // A transaction is open (START seen, no STOP yet); busy without one means clocks came before any START.
-  let open = false;
-  let busy = false;
-  // The high under way saw a condition, so its pulse carries no bit.
-  let conditionInHigh = false;
-  // START and Sr wait for the SCL fall that gives their `end`.
-  let pending = NONE;
-  // Slot of the next bit, and the bits since START, to find the Hs controller code.
-  let slot = 0;
-  let sinceStart = 0;
-  let shift = 0;
-  let hs = false;
-  let afterPlainStart = false;
-  // Volts: leads of the edges remembered above.
+  /** Decodes entries `from` to `to` (exclusive) of a block. `firstEdge` is the index of entry 0 over the whole capture. */
+  run(block: EdgeBlock, from: number, to: number, firstEdge: number): void {
+    const { ticks, volts, lines: levels } = block;
+    for (let i = from; i < to; i++) {
+      if (this.inPlainLow()) {
+        i = this.plain(block, i, to, firstEdge);
+        if (i === to) break;
+      }
+      this.step(levels[i], ticks[i], firstEdge + i, volts, i);
+    }
+    if (to > from) {
+      this.lastTick = ticks[to - 1];
+      this.lastEdge = firstEdge + to - 1;
+    }
+  }
 
-  function put(kind: number, value: number, flags: number, tick: number, edge: number, end: number, endLead: number): void {
-    if (out.length === BIT_BLOCK_CAPACITY) flush();
+  /** Hands on what is ready. */
+  flush(): void {
+    if (this.out.length === 0) return;
+    this.emit(this.out);
+    this.out.length = 0;
+  }
+
+  /** Ends the record. */
+  finish(endTick: number): void {
+    this.settleHigh();
+    if (this.open || this.busy) {
+      this.put(LOST, 0, this.open ? 0 : OUTSIDE, Math.max(endTick, this.lastTick), this.lastEdge, Number.NaN, 0);
+    }
+    this.open = false;
+    this.flush();
+  }
+
+  // In an SCL low of a transaction, no change of SDA in it so far, on a one-threshold capture.
+  private inPlainLow(): boolean {
+    return (this.lines & (SCL | UNKNOWN)) === 0 && this.open && this.leads === null && Number.isNaN(this.sdaFirst);
+  }
+
+  // Bits as they come in lawful traffic. Returns the entry that `step` has to take.
+  private plain(block: EdgeBlock, from: number, to: number, firstEdge: number): number {
+    const { out } = this;
+    let i = from;
+    for (;;) {
+      if (out.length === BIT_BLOCK_CAPACITY) this.flush();
+      const had = out.length;
+      // The first nine bits of a transaction may be an Hs controller code, after which the flags are others.
+      const room = BIT_BLOCK_CAPACITY - had;
+      const most = this.sinceStart < SLOTS ? Math.min(room, SLOTS - this.sinceStart) : room;
+      i = plainBits(this, out, block, i, to, firstEdge, most, this.hs ? IN_HS : 0);
+      const found = out.length - had;
+      this.slot = (this.slot + found) % SLOTS;
+      for (let n = had; n < out.length && this.sinceStart < SLOTS; n++) this.noteFirst(out.value[n]);
+      if (found < most) return i;
+    }
+  }
+
+  private put(kind: number, value: number, flags: number, tick: number, edge: number, end: number, endLead: number): void {
+    const { out } = this;
+    if (out.length === BIT_BLOCK_CAPACITY) this.flush();
     const i = out.length++;
     out.kind[i] = kind;
     out.value[i] = value;
-    out.flags[i] = flags | (hs ? IN_HS : 0);
+    out.flags[i] = flags | (this.hs ? IN_HS : 0);
     out.tick[i] = tick;
     out.edge[i] = edge;
     out.end[i] = end;
     const plain = kind !== START && kind !== LOST;
-    out.fall[i] = plain ? at.fall : Number.NaN;
-    out.rise[i] = plain ? at.rise : Number.NaN;
-    out.sdaFirst[i] = plain ? at.sdaFirst : Number.NaN;
-    out.sdaLast[i] = plain ? at.sdaLast : Number.NaN;
-    if (leads !== null) putLeads(i, kind, endLead);
+    out.fall[i] = plain ? this.fall : Number.NaN;
+    out.rise[i] = plain ? this.rise : Number.NaN;
+    out.sdaFirst[i] = plain ? this.sdaFirst : Number.NaN;
+    out.sdaLast[i] = plain ? this.sdaLast : Number.NaN;
+    if (this.leads !== null) this.putLeads(this.leads, i, kind, endLead);
   }
 
-  function putLeads(i: number, kind: number, endLead: number): void {
-    if (leads === null) return;
-    leads.fall[i] = at.fallLead;
-    leads.rise[i] = at.riseLead;
+  private putLeads(leads: BitLeads, i: number, kind: number, endLead: number): void {
+    leads.fall[i] = this.fallLead;
+    leads.rise[i] = this.riseLead;
     leads.end[i] = endLead;
-    leads.sdaFirst[i] = at.firstLead;
-    leads.sdaLast[i] = kind === BIT ? at.lastLead : at.pendingLead;
-    leads.sdaHigh[i] = at.sdaHigh;
-    leads.sclLow[i] = at.sclLow;
+    leads.sdaFirst[i] = this.firstLead;
+    leads.sdaLast[i] = kind === BIT ? this.lastLead : this.pendingLead;
+    leads.sdaHigh[i] = this.sdaHigh;
+    leads.sclLow[i] = this.sclLow;
   }
 
-  function putBit(value: number, end: number, endLead: number): void {
-    put(BIT, value, open ? lowFlags : lowFlags | OUTSIDE, at.rise, at.riseEdge, end, endLead);
-    if (!open) return;
-    slot = slot === SLOTS - 1 ? 0 : slot + 1;
-    if (sinceStart >= SLOTS) return;
-    shift = (shift << 1) | value;
-    sinceStart++;
+  private putBit(value: number, end: number, endLead: number): void {
+    this.put(BIT, value, this.open ? this.lowFlags : this.lowFlags | OUTSIDE, this.rise, this.riseEdge, end, endLead);
+    if (!this.open) return;
+    this.slot = this.slot === SLOTS - 1 ? 0 : this.slot + 1;
+    if (this.sinceStart < SLOTS) this.noteFirst(value);
+  }
+
+  // The first nine bits of a transaction.
+  private noteFirst(value: number): void {
+    this.shift = (this.shift << 1) | value;
+    this.sinceStart++;
     // S, 0000 1XXX, NACK: Hs-mode until STOP (UM10204 5.3.2). Eight bits and the ninth: 0 0001 XXX1.
-    if (sinceStart === SLOTS && afterPlainStart && shift >> 4 === 1 && (shift & 1) === 1) hs = true;
+    if (this.sinceStart === SLOTS && this.afterPlainStart && this.shift >> 4 === 1 && (this.shift & 1) === 1) this.hs = true;
   }
 
-  function putPending(end: number, endLead: number): void {
-    if (pending === NONE) return;
-    const kind = pending;
-    pending = NONE;
-    put(kind, 0, 0, at.pendingTick, at.pendingEdge, end, endLead);
+  private putPending(end: number, endLead: number): void {
+    if (this.pending === NONE) return;
+    const kind = this.pending;
+    this.pending = NONE;
+    this.put(kind, 0, 0, this.pendingTick, this.pendingEdge, end, endLead);
   }
 
-  function condition(tick: number, edge: number, sdaRose: boolean, lead: number): void {
-    putPending(Number.NaN, 0);
-    conditionInHigh = true;
-    at.pendingLead = lead;
+  private condition(tick: number, edge: number, sdaRose: boolean, lead: number): void {
+    this.putPending(Number.NaN, 0);
+    this.conditionInHigh = true;
+    this.pendingLead = lead;
     if (sdaRose) {
-      put(STOP, 0, 0, tick, edge, Number.NaN, 0);
-      open = false;
-      busy = false;
-      hs = false;
+      this.put(STOP, 0, 0, tick, edge, Number.NaN, 0);
+      this.open = false;
+      this.busy = false;
+      this.hs = false;
       return;
     }
-    pending = open || busy ? REPEATED_START : START;
-    afterPlainStart = pending === START;
-    at.pendingTick = tick;
-    at.pendingEdge = edge;
-    open = true;
-    busy = true;
-    slot = 0;
-    sinceStart = 0;
-    shift = 0;
+    this.pending = this.open || this.busy ? REPEATED_START : START;
+    this.afterPlainStart = this.pending === START;
+    this.pendingTick = tick;
+    this.pendingEdge = edge;
+    this.open = true;
+    this.busy = true;
+    this.slot = 0;
+    this.sinceStart = 0;
+    this.shift = 0;
   }
 
   // The high under way when the record breaks off: inside a byte its bit was readable; between bytes it may have been a STOP's.
-  function settleHigh(): void {
-    putPending(Number.NaN, 0);
-    const high = (lines & SCL) !== 0 && !conditionInHigh && !Number.isNaN(at.rise);
-    if (high && open && slot > 0) putBit((lines & SDA) === 0 ? 0 : 1, Number.NaN, 0);
+  private settleHigh(): void {
+    this.putPending(Number.NaN, 0);
+    const high = (this.lines & SCL) !== 0 && !this.conditionInHigh && !Number.isNaN(this.rise);
+    if (high && this.open && this.slot > 0) this.putBit((this.lines & SDA) === 0 ? 0 : 1, Number.NaN, 0);
   }
 
-  function lose(tick: number, edge: number, next: number): void {
-    if ((lines & UNKNOWN) === 0) {
-      settleHigh();
-      put(LOST, 0, open ? 0 : OUTSIDE, tick, edge, Number.NaN, 0);
+  private lose(tick: number, edge: number, next: number): void {
+    if ((this.lines & UNKNOWN) === 0) {
+      this.settleHigh();
+      this.put(LOST, 0, this.open ? 0 : OUTSIDE, tick, edge, Number.NaN, 0);
     }
-    open = false;
-    hs = false;
-    conditionInHigh = false;
-    at.fall = Number.NaN;
-    at.rise = Number.NaN;
-    at.sdaFirst = Number.NaN;
-    at.sdaLast = Number.NaN;
-    lowFlags = 0;
-    lines = next & ~CUT;
-    busy = (lines & (UNKNOWN | SCL)) === 0;
+    this.open = false;
+    this.hs = false;
+    this.conditionInHigh = false;
+    this.fall = Number.NaN;
+    this.rise = Number.NaN;
+    this.sdaFirst = Number.NaN;
+    this.sdaLast = Number.NaN;
+    this.lowFlags = 0;
+    this.lines = next & ~CUT;
+    this.busy = (this.lines & (UNKNOWN | SCL)) === 0;
   }
 
-  function noteSda(tick: number, lead: number): void {
-    if (Number.isNaN(at.sdaFirst)) {
-      at.sdaFirst = tick;
-      at.firstLead = lead;
+  private noteSda(tick: number, lead: number): void {
+    if (Number.isNaN(this.sdaFirst)) {
+      this.sdaFirst = tick;
+      this.firstLead = lead;
     }
-    at.sdaLast = tick;
-    at.lastLead = lead;
+    this.sdaLast = tick;
+    this.lastLead = lead;
   }
 
   // The SCL fall in full: ends a bit or a pending condition, begins a low.
-  function sclFell(tick: number, changed: number, volt: VoltColumns | null, i: number): void {
+  private sclFell(tick: number, changed: number, volt: VoltColumns | null, i: number): void {
     const lead = volt === null ? 0 : volt.leadScl[i];
-    if (pending !== NONE) putPending(tick, lead);
-    else if (!conditionInHigh && !Number.isNaN(at.rise)) putBit((lines & SDA) === 0 ? 0 : 1, tick, lead);
-    if (!open && !conditionInHigh) busy = busy || Number.isNaN(at.rise);
-    conditionInHigh = false;
-    at.fall = tick;
+    if (this.pending !== NONE) this.putPending(tick, lead);
+    else if (!this.conditionInHigh && !Number.isNaN(this.rise)) this.putBit((this.lines & SDA) === 0 ? 0 : 1, tick, lead);
+    if (!this.open && !this.conditionInHigh) this.busy = this.busy || Number.isNaN(this.rise);
+    this.conditionInHigh = false;
+    this.fall = tick;
     const held = (changed & SDA) !== 0;
-    lowFlags = held ? HOLD_WITHIN_SAMPLE : 0;
-    at.sdaFirst = held ? tick : Number.NaN;
-    at.sdaLast = at.sdaFirst;
+    this.lowFlags = held ? HOLD_WITHIN_SAMPLE : 0;
+    this.sdaFirst = held ? tick : Number.NaN;
+    this.sdaLast = this.sdaFirst;
     if (volt === null) return;
-    at.fallLead = lead;
-    at.firstLead = volt.leadSda[i];
-    at.lastLead = at.firstLead;
-    at.sclLow = volt.meanScl[i];
+    this.fallLead = lead;
+    this.firstLead = volt.leadSda[i];
+    this.lastLead = this.firstLead;
+    this.sclLow = volt.meanScl[i];
   }
 
-  function sclRose(tick: number, edge: number, changed: number, volt: VoltColumns | null, i: number): void {
-    at.rise = tick;
-    at.riseEdge = edge;
+  private sclRose(tick: number, edge: number, changed: number, volt: VoltColumns | null, i: number): void {
+    this.rise = tick;
+    this.riseEdge = edge;
     if ((changed & SDA) !== 0) {
-      lowFlags |= SETUP_WITHIN_SAMPLE;
-      noteSda(tick, volt === null ? 0 : volt.leadSda[i]);
+      this.lowFlags |= SETUP_WITHIN_SAMPLE;
+      this.noteSda(tick, volt === null ? 0 : volt.leadSda[i]);
     }
     if (volt === null) return;
-    at.riseLead = volt.leadScl[i];
-    at.sdaHigh = volt.meanSda[i];
+    this.riseLead = volt.leadScl[i];
+    this.sdaHigh = volt.meanSda[i];
   }
 
-  function step(next: number, tick: number, edge: number, volt: VoltColumns | null, i: number): void {
-    if (((next | lines) & (UNKNOWN | CUT)) !== 0) {
-      lose(tick, edge, next);
+  private step(next: number, tick: number, edge: number, volt: VoltColumns | null, i: number): void {
+    if (((next | this.lines) & (UNKNOWN | CUT)) !== 0) {
+      this.lose(tick, edge, next);
       return;
     }
-    const changed = next ^ lines;
+    const changed = next ^ this.lines;
     if ((changed & SCL) !== 0) {
-      if ((next & SCL) === 0) sclFell(tick, changed, volt, i);
-      else sclRose(tick, edge, changed, volt, i);
+      if ((next & SCL) === 0) this.sclFell(tick, changed, volt, i);
+      else this.sclRose(tick, edge, changed, volt, i);
     } else if (changed !== 0) {
       const lead = volt === null ? 0 : volt.leadSda[i];
-      if ((next & SCL) !== 0) condition(tick, edge, (next & SDA) !== 0, lead);
-      else noteSda(tick, lead);
+      if ((next & SCL) !== 0) this.condition(tick, edge, (next & SDA) !== 0, lead);
+      else this.noteSda(tick, lead);
     }
-    if (volt !== null && (next & SCL) === 0 && Number.isNaN(at.sclLow)) at.sclLow = volt.meanScl[i];
-    lines = next;
+    if (volt !== null && (next & SCL) === 0 && Number.isNaN(this.sclLow)) this.sclLow = volt.meanScl[i];
+    this.lines = next;
   }
-
-  // The bits of one byte as they come in lawful traffic, with everything in locals; stops at the first entry that is anything
-  // else, which `step` then takes. Returns the index it stopped at.
-  function runPlain(block: EdgeBlock, from: number, to: number, firstEdge: number): number {
-    const { ticks, lines: levels } = block;
-    const {
-      kind,
-      value,
-      flags,
-      tick: tickColumn,
-      fall: fallColumn,
-      rise: riseColumn,
-      end,
-      sdaFirst: firstColumn,
-      sdaLast,
-      edge,
-    } = out;
-    const carried = hs ? IN_HS : 0;
-    let now = lines;
-    let fall = at.fall;
-    let rise = at.rise;
-    let riseEdge = at.riseEdge;
-    let first = at.sdaFirst;
-    let last = at.sdaLast;
-    let n = out.length;
-    let i = from;
-    // Below the first nine bits of a transaction `putBit` looks for the Hs controller code, so they go through `step`.
-    for (; i < to && n < BIT_BLOCK_CAPACITY; i++) {
-      const next = levels[i];
-      const changed = next ^ now;
-      if (next > LEVELS || changed === (SCL | SDA)) break;
-      if (changed === SCL) {
-        if ((next & SCL) !== 0) {
-          rise = ticks[i];
-          riseEdge = firstEdge + i;
-        } else {
-          kind[n] = BIT;
-          value[n] = now >> 1;
-          flags[n] = carried;
-          tickColumn[n] = rise;
-          fallColumn[n] = fall;
-          riseColumn[n] = rise;
-          end[n] = ticks[i];
-          firstColumn[n] = first;
-          sdaLast[n] = last;
-          edge[n] = riseEdge;
-          n++;
-          slot = slot === SLOTS - 1 ? 0 : slot + 1;
-          fall = ticks[i];
-          first = Number.NaN;
-          last = Number.NaN;
-        }
-      } else if (changed === SDA) {
-        if ((next & SCL) !== 0) break;
-        last = ticks[i];
-        if (Number.isNaN(first)) first = last;
-      }
-      now = next;
-    }
-    lines = now;
-    at.fall = fall;
-    at.rise = rise;
-    at.riseEdge = riseEdge;
-    at.sdaFirst = first;
-    at.sdaLast = last;
-    out.length = n;
-    return i;
-  }
-
-  function run(block: EdgeBlock, from: number, to: number, firstEdge: number): void {
-    const { ticks, volts: volt, lines: levels } = block;
-    let i = from;
-    while (i < to) {
-      if (
-        volt === null &&
-        open &&
-        sinceStart === SLOTS &&
-        lowFlags === 0 &&
-        pending === NONE &&
-        !conditionInHigh &&
-        lines <= LEVELS
-      ) {
-        if (out.length === BIT_BLOCK_CAPACITY) flush();
-        i = runPlain(block, i, to, firstEdge);
-        if (i === to || out.length === BIT_BLOCK_CAPACITY) continue;
-      }
-      step(levels[i], ticks[i], firstEdge + i, volt, i);
-      i++;
-    }
-    if (to > from) {
-      at.lastTick = ticks[to - 1];
-      at.lastEdge = firstEdge + to - 1;
-    }
-  }
-
-  function flush(): void {
-    if (out.length === 0) return;
-    emit(out);
-    out.length = 0;
-  }
-
-  function finish(endTick: number): void {
-    settleHigh();
-    if (open || busy) put(LOST, 0, open ? 0 : OUTSIDE, Math.max(endTick, at.lastTick), at.lastEdge, Number.NaN, 0);
-    open = false;
-    flush();
-  }
-
-  return { run, flush, finish, inHs: () => hs };
 }

@@ -8,6 +8,9 @@ const EXACT = 4096;
 /** 8 exponent bits and 6 mantissa bits of the single-precision value: 64 buckets per octave, found without a logarithm. */
 const BUCKETS = 1 << 14;
 const SHIFT = 17;
+const MASK = BUCKETS - 1;
+/** Buckets from here on hold no number: NaN falls there, which lets `span` pass over gaps without a branch. */
+const NUMBERS = 255 << 6;
 const float = new Float32Array(1);
 const bits = new Uint32Array(float.buffer);
 
@@ -35,10 +38,6 @@ export class Column {
   private buckets: Uint32Array | null = null;
   /** The first value that fell into each bucket. */
   private seen: Float64Array | null = null;
-  /** Intervals of the block under way, and which entry of it each belongs to. */
-  private waiting = 0;
-  private values = new Float64Array(0);
-  private entries = new Uint32Array(0);
 
   /** `judges` has one place per profile tried; `widest` is the widest uncertainty that `add` will be given, in ticks. */
   constructor(
@@ -52,7 +51,7 @@ export class Column {
   get count(): number {
     if (this.buckets === null) return this.few;
     let sum = 0;
-    for (const n of this.buckets) sum += n;
+    for (let b = 0; b < NUMBERS; b++) sum += this.buckets[b];
     return sum;
   }
 
@@ -78,59 +77,30 @@ export class Column {
     return this.judges[profile] ?? null;
   }
 
-  /** Makes room for a block of so many entries, each of which may bring one interval. */
-  expect(entries: number): void {
-    if (this.values.length >= entries) return;
-    this.values = new Float64Array(entries);
-    this.entries = new Uint32Array(entries);
-  }
-
-  /** Sets an interval of entry `entry` of the block aside, in ticks, until `drain`. */
-  take(measured: number, entry: number): void {
-    const n = this.waiting++;
-    this.values[n] = measured;
-    this.entries[n] = entry;
-  }
-
-  /** Counts what was set aside. `starts` and `transactions` tell, by entry, when the interval begins and where it belongs. */
-  drain(doubt: number, starts: Float64Array, transactions: Int32Array): void {
-    const { waiting, values, entries, buckets, seen } = this;
-    this.waiting = 0;
-    let i = 0;
-    if (buckets !== null && seen !== null) {
-      let { calmLow, calmHigh } = this;
-      for (; i < waiting; i++) {
-        const measured = values[i];
-        float[0] = measured;
-        const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
-        if (buckets[bucket]++ === 0) seen[bucket] = measured;
-        if (measured >= calmLow && measured <= calmHigh) continue;
-        this.notable(measured, doubt, starts[entries[i]], transactions[entries[i]]);
-        calmLow = this.calmLow;
-        calmHigh = this.calmHigh;
-      }
-      return;
-    }
-    for (; i < waiting; i++) this.add(values[i], doubt, starts[entries[i]], transactions[entries[i]]);
-  }
-
-  /** Counts the intervals from `starts[i]` to `ends[i]` of a run of entries of one transaction. */
+  /**
+   * Counts the intervals from `starts[i]` to `ends[i]`, none of them negative, of a run of entries of one transaction. Where one
+   * of the two is NaN there is no interval. Nearly all intervals of a long capture pass here.
+   */
   span(ends: Float64Array, starts: Float64Array, from: number, to: number, doubt: number, transaction: number): void {
     const { buckets, seen } = this;
     if (buckets === null || seen === null) {
-      for (let i = from; i < to; i++) this.add(ends[i] - starts[i], doubt, starts[i], transaction);
+      for (let i = from; i < to; i++) {
+        const measured = ends[i] - starts[i];
+        if (!Number.isNaN(measured)) this.add(measured, doubt, starts[i], transaction);
+      }
       return;
     }
     let { calmLow, calmHigh } = this;
     for (let i = from; i < to; i++) {
       const measured = ends[i] - starts[i];
       float[0] = measured;
-      const bucket = measured > 0 ? bits[0] >>> SHIFT : 0;
+      const bucket = (bits[0] >>> SHIFT) & MASK;
       if (buckets[bucket]++ === 0) seen[bucket] = measured;
-      if (measured >= calmLow && measured <= calmHigh) continue;
-      this.notable(measured, doubt, starts[i], transaction);
-      calmLow = this.calmLow;
-      calmHigh = this.calmHigh;
+      if (measured < calmLow || measured > calmHigh) {
+        this.notable(measured, doubt, starts[i], transaction);
+        calmLow = this.calmLow;
+        calmHigh = this.calmHigh;
+      }
     }
   }
 
@@ -187,7 +157,7 @@ export class Column {
     const rank = Math.max(0, Math.ceil(share * count) - 1);
     if (this.buckets === null || this.seen === null) return this.kept.slice(0, count).sort()[rank];
     let passed = 0;
-    for (let b = 0; b < BUCKETS; b++) {
+    for (let b = 0; b < NUMBERS; b++) {
       passed += this.buckets[b];
       if (passed > rank) return Math.min(this.max, Math.max(this.min, this.seen[b]));
     }
@@ -203,7 +173,7 @@ export class Column {
       counts.set(coarse, (counts.get(coarse) ?? 0) + n);
     };
     if (this.buckets === null || this.seen === null) for (let i = 0; i < this.few; i++) note(this.kept[i], 1);
-    else for (let b = 0; b < BUCKETS; b++) if (this.buckets[b] > 0) note(this.seen[b], this.buckets[b]);
+    else for (let b = 0; b < NUMBERS; b++) if (this.buckets[b] > 0) note(this.seen[b], this.buckets[b]);
     return [...counts].sort((a, b) => a[0] - b[0]).map(([coarse, n]) => [lowerEdge(coarse), n]);
   }
 

@@ -5,7 +5,6 @@
 import type { Timebase } from "../base/time";
 import { BIT, type BitBlock, IN_HS, LOST, OUTSIDE, type Spike, START, STOP } from "../engine/bits/bits";
 import type { CaptureHead } from "../engine/samples/reader";
-import type { Column } from "./column";
 import { type ColumnSet, columnsFor, columnsOf } from "./columns";
 import { type LevelColumns, levelColumns, noteLevels } from "./levels";
 import type { LimitTable, Profile } from "./profile";
@@ -89,12 +88,6 @@ export function createMeasurement(head: MeasureHead, tried: readonly Profile[], 
   };
 }
 
-/** Columns that may get an interval from every entry; they are counted a block at a time. */
-function frequent(set: ColumnSet): Column[] {
-  const { period, slow, low, timeout, high, suDat, hdDat, vdDat, vdAck } = set;
-  return [period, slow, low, timeout, high, suDat, hdDat, vdDat, vdAck].filter((column): column is Column => column !== null);
-}
-
 /** The walk over the bits. */
 class Run {
   hs: ColumnSet | null = null;
@@ -104,8 +97,6 @@ class Run {
   private slot = 0;
   private shortestLow = Number.POSITIVE_INFINITY;
   private lastStop = Number.NaN;
-  /** Transaction of each entry of the block under way, or -1. */
-  private belongs = new Int32Array(0);
 
   constructor(
     head: MeasureHead,
@@ -122,53 +113,85 @@ class Run {
 
   bits(block: BitBlock): void {
     const { kind, flags, length } = block;
-    this.expect(length);
-    const { belongs } = this;
     const plain = block.leads === null;
     for (let i = 0; i < length; i++) {
       const k = kind[i];
-      const set = (flags[i] & IN_HS) !== 0 ? this.highSpeed(length) : this.fs;
-      belongs[i] = this.open ? this.transaction : -1;
-      if (k === BIT) {
-        if (plain && this.open && set.slow === null && set.timeout === null && (flags[i] & UNUSUAL) === 0)
-          i = this.plainBits(block, i) - 1;
-        else this.bit(block, i, set);
-        continue;
-      }
       if (k === LOST) {
         this.open = false;
         this.lastStop = Number.NaN;
         continue;
       }
+      const hs = (flags[i] & IN_HS) !== 0;
+      if (k === BIT) {
+        const next = plain && this.open && !hs ? this.plainBits(block, i) : i;
+        if (next > i) i = next - 1;
+        else this.bit(block, i, hs ? this.highSpeed() : this.fs);
+        continue;
+      }
+      const set = hs ? this.highSpeed() : this.fs;
       if (k !== START) this.low(block, i, set);
       if (k === STOP) this.stop(block, i, set);
       else this.start(block, i, set, k === START);
     }
-    this.drain(block, this.fs);
-    if (this.hs !== null) this.drain(block, this.hs);
   }
 
-  private expect(length: number): void {
-    if (this.belongs.length < length) this.belongs = new Int32Array(length);
-    for (const column of frequent(this.fs)) column.expect(length);
-    if (this.hs !== null) for (const column of frequent(this.hs)) column.expect(length);
+  private highSpeed(): ColumnSet {
+    this.hs ??= this.makeHs();
+    return this.hs;
   }
 
-  private drain(block: BitBlock, set: ColumnSet): void {
-    const { doubt, belongs } = this;
-    for (const column of [set.period, set.slow, set.low, set.timeout, set.hdDat, set.vdDat, set.vdAck]) {
-      column?.drain(doubt, block.fall, belongs);
+  // The many: bits of an open F/S transaction on a one-threshold capture, with both their edges. Does what `bit` does, a column
+  // at a time. Returns the entry after them.
+  private plainBits(block: BitBlock, from: number): number {
+    const { kind, flags, length, fall, tick, end, sdaFirst, sdaLast } = block;
+    const { fs, transaction, doubt } = this;
+    let shortest = this.shortestLow;
+    let longest = 0;
+    let to = from;
+    for (; to < length && kind[to] === BIT && (flags[to] & UNUSUAL) === 0; to++) {
+      const lasted = tick[to] - fall[to];
+      if (!(lasted >= 0 && end[to] >= tick[to])) break;
+      if (lasted < shortest) shortest = lasted;
+      if (lasted > longest) longest = lasted;
     }
-    set.high.drain(doubt, block.tick, belongs);
-    set.suDat.drain(doubt, block.sdaLast, belongs);
+    fs.low.span(tick, fall, from, to, doubt, transaction);
+    fs.timeout?.span(tick, fall, from, to, doubt, transaction);
+    fs.high.span(end, tick, from, to, doubt, transaction);
+    fs.period.span(end, fall, from, to, doubt, transaction);
+    fs.hdDat.span(sdaFirst, fall, from, to, doubt, transaction);
+    fs.suDat.span(tick, sdaLast, from, to, doubt, transaction);
+    // Held against the shortest low of all, no low was stretched: none was when its own turn came.
+    if (longest <= this.stretchedFrom(shortest)) this.calmLows(block, from, to);
+    else for (let i = from; i < to; i++) this.oneLow(block, i);
+    this.shortestLow = shortest;
+    return to;
   }
 
-  private highSpeed(length: number): ColumnSet {
-    if (this.hs !== null) return this.hs;
-    const made = this.makeHs();
-    for (const column of frequent(made)) column.expect(length);
-    this.hs = made;
-    return made;
+  /** Lows longer than this are stretched. */
+  private stretchedFrom(shortest: number): number {
+    return STRETCHED * shortest + 2 * this.doubt;
+  }
+
+  // What only lows that are not stretched tell, of a run of them.
+  private calmLows(block: BitBlock, from: number, to: number): void {
+    const { fall, end, sdaLast } = block;
+    const { fs, doubt, transaction } = this;
+    fs.slow?.span(end, fall, from, to, doubt, transaction);
+    for (let i = from; i < to; ) {
+      const ack = this.slot === ACK_SLOT;
+      const next = ack ? i + 1 : Math.min(to, i + ACK_SLOT - this.slot);
+      (ack ? fs.vdAck : fs.vdDat).span(sdaLast, fall, i, next, doubt, transaction);
+      this.slot = ack ? 0 : this.slot + next - i;
+      i = next;
+    }
+  }
+
+  // The same of one low of a run in which some are stretched.
+  private oneLow(block: BitBlock, i: number): void {
+    const lasted = block.tick[i] - block.fall[i];
+    if (lasted < this.shortestLow) this.shortestLow = lasted;
+    if (lasted <= this.stretchedFrom(this.shortestLow)) this.calmLows(block, i, i + 1);
+    else this.slot = this.slot === ACK_SLOT ? 0 : this.slot + 1;
   }
 
   // The low before the high that this entry stands in. Returns whether it was stretched.
@@ -178,66 +201,39 @@ class Run {
     const measured = (leads === null ? block.rise[i] : block.rise[i] - leads.rise[i]) - fall;
     // NaN where the record does not hold this low's beginning.
     if (Number.isNaN(measured)) return true;
-    set.low.take(measured, i);
-    if (set.timeout !== null) set.timeout.take(measured, i);
+    const at = this.current();
+    set.low.add(measured, this.doubt, fall, at);
+    set.timeout?.add(measured, this.doubt, fall, at);
     if (measured < this.shortestLow) this.shortestLow = measured;
     const first = block.sdaFirst[i];
-    if (!Number.isNaN(first)) set.hdDat.take((leads === null ? first : first - leads.sdaFirst[i]) - fall, i);
-    return measured > STRETCHED * this.shortestLow + 2 * this.doubt;
-  }
-
-  // The many: bits of an open F/S transaction on a one-threshold capture. Does what `bit` does, from locals alone.
-  private plainBits(block: BitBlock, from: number): number {
-    const { kind, flags, length, fall, tick, end, sdaFirst, sdaLast } = block;
-    const { fs, belongs, transaction, doubt } = this;
-    const { suDat, hdDat, vdDat, vdAck } = fs;
-    let { slot, shortestLow } = this;
-    let i = from;
-    for (; i < length && kind[i] === BIT && (flags[i] & UNUSUAL) === 0; i++) {
-      const fell = fall[i];
-      const rose = tick[i];
-      const lasted = rose - fell;
-      if (!(lasted >= 0 && end[i] >= rose)) break;
-      if (lasted < shortestLow) shortestLow = lasted;
-      const last = sdaLast[i];
-      if (last >= fell) {
-        belongs[i] = transaction;
-        hdDat.take(sdaFirst[i] - fell, i);
-        suDat.take(rose - last, i);
-        if (lasted <= STRETCHED * shortestLow + 2 * doubt) (slot === ACK_SLOT ? vdAck : vdDat).take(last - fell, i);
-      }
-      slot = slot === ACK_SLOT ? 0 : slot + 1;
+    if (!Number.isNaN(first)) {
+      set.hdDat.add((leads === null ? first : first - leads.sdaFirst[i]) - fall, this.doubt, fall, at);
     }
-    fs.low.span(tick, fall, from, i, doubt, transaction);
-    fs.high.span(end, tick, from, i, doubt, transaction);
-    fs.period.span(end, fall, from, i, doubt, transaction);
-    this.slot = slot;
-    this.shortestLow = shortestLow;
-    if (i > from) return i;
-    this.bit(block, i, fs);
-    return i + 1;
+    return measured > this.stretchedFrom(this.shortestLow);
   }
 
   private bit(block: BitBlock, i: number, set: ColumnSet): void {
     const { leads } = block;
+    const { doubt } = this;
+    const at = this.current();
     const stretched = this.low(block, i, set);
     const outside = (block.flags[i] & OUTSIDE) !== 0;
     const fall = block.fall[i];
     const rise = block.tick[i];
     const end = block.end[i];
     if (!Number.isNaN(end)) {
-      set.high.take((leads === null ? end : end - leads.end[i]) - rise, i);
+      set.high.add((leads === null ? end : end - leads.end[i]) - rise, doubt, rise, at);
       if (!Number.isNaN(fall)) {
-        set.period.take(end - fall, i);
-        if (set.slow !== null && !stretched) set.slow.take(end - fall, i);
+        set.period.add(end - fall, doubt, fall, at);
+        if (!stretched) set.slow?.add(end - fall, doubt, fall, at);
       }
     }
     const last = block.sdaLast[i];
     if (!Number.isNaN(last)) {
-      set.suDat.take((leads === null ? rise : rise - leads.rise[i]) - last, i);
-      if (!stretched && !outside) (this.slot === ACK_SLOT ? set.vdAck : set.vdDat).take(last - fall, i);
+      set.suDat.add((leads === null ? rise : rise - leads.rise[i]) - last, doubt, last, at);
+      if (!stretched && !outside) (this.slot === ACK_SLOT ? set.vdAck : set.vdDat).add(last - fall, doubt, fall, at);
     }
-    if (leads !== null) this.shapes(block, i, set, this.current());
+    if (leads !== null) this.shapes(block, i, set, at);
     if (!outside) this.slot = this.slot === ACK_SLOT ? 0 : this.slot + 1;
   }
 

@@ -3,7 +3,7 @@
 import type { BitBlock, BitLeads } from "./bits";
 
 /** Entries a block holds before it is handed on: large enough to amortise the call, small enough to stay in cache. */
-export const BIT_BLOCK_CAPACITY = 2048;
+export const BIT_BLOCK_CAPACITY = 8192;
 
 export function newBitBlock(volts: boolean): BitBlock {
   const n = BIT_BLOCK_CAPACITY;

@@ -62,7 +62,9 @@ export function openForensics(
 
 function concludeCapture(capture: Capture, traces: readonly TapTrace[], observer: Observer | null): ForensicsOutcome {
   const { ledger, messages, sampling } = capture;
-  const tapped = traces.some((t) => t.used) ? readTaps(ledger, messages, traces, sampling.step) : null;
+  const tapped = traces.some((t) => t.used)
+    ? readTaps(ledger, messages, traces, sampling.step, (ledger.sdaLevel === null ? 0.5 : 1.6) * sampling.step)
+    : null;
   const census =
     observer === null
       ? takeCensus(ledger, messages, sampling, tapped === null ? null : tapped.owner, traces.length)

@@ -58,6 +58,7 @@ const LOOK = 200;
 
 export function learn(ledger: Ledger, messages: Messages, members: readonly number[], sampling: Sampling): Signature {
   const values: number[][] = Array.from({ length: HABITS }, () => []);
+  const after: number[] = [];
   const sda: number[] = [];
   const scl: number[] = [];
   const slots = newSlots();
@@ -71,7 +72,9 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
     }
     for (let s = 0; s < slots.length; s++) {
       const e = slots.entry[s];
-      add(values[slots.lowHabit[s]], ledger.low[e]);
+      // Once it is addressed a target may stretch every bit, so the habit is taken from the address byte.
+      const later = slots.lowHabit[s] === LOW_IN && slots.pulse[s] > 8;
+      add(later ? after : values[slots.lowHabit[s]], ledger.low[e]);
       add(values[slots.highHabit[s]], ledger.high[e]);
       if (slots.dataHabit[s] !== 0) add(values[slots.dataHabit[s]], ledger.first[e]);
       if (ledger.sdaLevel === null || ledger.sclLevel === null || slots.own[s] === 0) continue;
@@ -79,13 +82,22 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
       if (slots.lowHabit[s] === LOW_IN) add(scl, ledger.sclLevel[e]);
     }
   }
-  const base = figure(values[LOW_IN], sampling, true, null);
+  const base = withLater(figure(values[LOW_IN], sampling, true, null), after, sampling);
   const habits = values.map((list, habit) => {
     if (habit === LOW_IN) return base;
     const lengthens = habit === LOW_NINTH || habit === LOW_NEXT || habit === LOW_FIRST || habit === LOW_SR || habit === LOW_STOP;
     return figure(list, sampling, lengthens, base);
   });
   return { habits: filled(habits), sdaLow: level(sda), sclLow: level(scl), messages: members.length };
+}
+
+/** Lows inside later bytes say how often the habit is broken, not what it is. */
+function withLater(base: HabitFigure | null, later: readonly number[], sampling: Sampling): HabitFigure | null {
+  if (base === null) return figure(later, sampling, true, null);
+  const reach = Math.max(1.3 * sampling.step, 5 * Math.sqrt(base.jitter + 2 * sampling.variance));
+  const off = later.filter((x) => Math.abs(x - base.mean) > reach).length;
+  const all = base.count + later.length + 1;
+  return { ...base, broken: (base.broken * base.count + off + 0.5) / all };
 }
 
 function add(list: number[], x: number): void {

@@ -86,7 +86,14 @@ export interface TapFindings {
   readonly foreign: Uint16Array;
 }
 
-export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapTrace[], step: number): TapFindings {
+/** `slack`: how much later than the line itself a tap may show the same edge (sampling; interpolated crossings of a line in volts). */
+export function readTaps(
+  ledger: Ledger,
+  messages: Messages,
+  taps: readonly TapTrace[],
+  step: number,
+  slack: number,
+): TapFindings {
   const owner = new Int16Array(messages.count).fill(-1);
   const joined = new Uint8Array(messages.count);
   const losses: TapLoss[] = [];
@@ -113,11 +120,11 @@ export function readTaps(ledger: Ledger, messages: Messages, taps: readonly TapT
       if (slot < 0) {
         owner[m] = i;
         if (taps[i].hasScl) {
-          foreign[m] = foreignPulls(ledger, slots, taps[i], step);
+          foreign[m] = foreignPulls(ledger, slots, taps[i], slack);
           lags[i].push(...lagsOf(ledger, slots, taps[i], m));
         }
         // SDA fell for the START before this one pulled it.
-        if (taps[i].hasSda && !taps[i].pulls(SDA, start + step / 2)) foreign[m] += 2;
+        if (taps[i].hasSda && !taps[i].pulls(SDA, start + slack)) foreign[m] += 2;
       } else losses.push({ message: m, tap: i, slot });
     }
   }
@@ -150,7 +157,7 @@ function lagsOf(ledger: Ledger, slots: Slots, tap: TapTrace, message: number): L
   return out;
 }
 
-function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, step: number): number {
+function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, slack: number): number {
   let count = 0;
   let at = 0;
   let transaction = -1;
@@ -158,7 +165,7 @@ function foreignPulls(ledger: Ledger, slots: Slots, tap: TapTrace, step: number)
     if (slots.transaction[s] !== transaction) {
       transaction = slots.transaction[s];
       at = ledger.openTick[transaction] + (ledger.hold[transaction] || 0);
-    } else if (!tap.pulls(SCL, at + step / 2)) count++;
+    } else if (!tap.pulls(SCL, at + slack)) count++;
     at += ledger.low[slots.entry[s]] + (ledger.high[slots.entry[s]] || 0);
   }
   return count;

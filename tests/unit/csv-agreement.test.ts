@@ -126,6 +126,18 @@ describe("three ways of reading agree", () => {
   const volts: readonly [string, (at: number, v: number, w: number) => string][] = [
     ["volts", (at, v, w) => `${(at * 1e-9).toFixed(9)},${v.toFixed(3)},${w.toFixed(3)}`],
     ["volts with exponents", (at, v, w) => `${(at * 1e-9).toExponential(9)},${v.toExponential(5)},${w.toExponential(5)}`],
+    [
+      "volts about zero with many decimals",
+      (at, v, w) => `${((at - 1e5) * 1e-9).toFixed(8)},${(v - 1.65).toFixed(6)},${(w - 1.65).toFixed(2)}`,
+    ],
+    [
+      "volts in trimmed numbers",
+      (at, v, w) => `${Number((at * 1e-9).toFixed(9))},${Number(v.toFixed(3))},${Number(w.toFixed(2))}`,
+    ],
+    [
+      "volts at whole microseconds and longer",
+      (at, v, w) => `${(at * 1e-9).toFixed(12)},${v.toFixed(9)},${Math.round(w * 100) / 100}`,
+    ],
   ];
   test.each(volts)("%s", async (_name, row) => {
     await fc.assert(

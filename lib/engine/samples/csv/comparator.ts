@@ -23,17 +23,17 @@ export class Comparator {
   lead = 0;
   readonly vil: number;
   readonly vih: number;
-  readonly settle: number;
+  private readonly settle: number;
   /** A sample stood between the thresholds since the level was last decided or confirmed. */
-  between = false;
+  private between = false;
   private leftAt = Number.NaN;
   private extreme = 0;
   previous = Number.NaN;
   previousTick = Number.NaN;
-  sum = 0;
-  count = 0;
-  readonly ring: Float64Array;
-  at = 0;
+  private sum = 0;
+  private count = 0;
+  private readonly ring: Float64Array;
+  private at = 0;
 
   /** `window`: samples over which a settled line may change by no more than `settle`. */
   constructor(
@@ -72,23 +72,22 @@ export class Comparator {
     }
   }
 
-  /** A sample from `quietLeast` to `quietMost` changes nothing but the mean. */
-  quietLeast(): number {
-    if (this.between || this.level === 2) return Number.POSITIVE_INFINITY;
-    return this.level === 1 ? this.vih : Number.NEGATIVE_INFINITY;
+  /** Whether the sample changes nothing but the mean: the level is decided and the sample lies on its side. */
+  isQuiet(v: number): boolean {
+    return !this.between && (this.level === 1 ? v >= this.vih : this.level === 0 && v <= this.vil);
   }
 
-  quietMost(): number {
-    return this.level === 0 ? this.vil : Number.POSITIVE_INFINITY;
-  }
-
-  /** Notes the previous sample, the settling window and the running mean after quiet samples that went past `detect`. */
-  seen(tick: number, v: number, at: number, sum: number, count: number): void {
+  /** Takes a quiet sample, as `detect` and `add` would. */
+  quiet(tick: number, v: number): void {
     this.previous = v;
     this.previousTick = tick;
-    this.at = at;
-    this.sum = sum;
-    this.count = count;
+    this.add(v);
+  }
+
+  /** Notes the previous sample after quiet ones that went past `detect`. */
+  seen(tick: number, v: number): void {
+    this.previous = v;
+    this.previousTick = tick;
   }
 
   /** Mean of the settled samples since the last call; NaN where there were none. */

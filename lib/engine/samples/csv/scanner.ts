@@ -2,8 +2,8 @@
 // only: no string is made for a regular row, and instants are exact whole-number mantissas until they are ticks.
 
 import type { AsideReason } from "./aside";
-import { BITS, Cell, NUMBER, readText, scaled, UNKNOWN } from "./cell";
-import { number, readDigits } from "./digits";
+import { BITS, Cell, NUMBER, POWERS, readText, scaled, UNKNOWN } from "./cell";
+import { digits, exponent, mantissa, readDigits, readExponent } from "./digits";
 import type { RowTarget } from "./rows";
 import { type Dialect, splitText } from "./split";
 
@@ -46,6 +46,10 @@ const CR = 13;
 const LF = 10;
 
 export interface FastPath {
+  /** False while rows are too irregular for it. */
+  readonly worth: boolean;
+  /** A new chunk begins: irregular rows are behind. */
+  begin(): void;
   /** Takes regular rows from `from` on; returns the position of the first row it leaves to the scanner. */
   scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number;
 }
@@ -70,6 +74,8 @@ export class Scanner {
   private readonly delimiter: number;
   private readonly decimal: number;
   private readonly spaces: boolean;
+  /** The bytes being scanned. */
+  view: DataView = new DataView(this.carry.buffer);
 
   constructor(
     readonly plan: ScanPlan,
@@ -138,14 +144,16 @@ export class Scanner {
 
   /** Whole rows. */
   private region(bytes: Uint8Array, from: number, to: number): void {
+    this.view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+    this.fast?.begin();
     let p = from;
     if (bytes[p] === LF && this.lastByte === CR) p += 1;
     while (p < to && this.line < this.plan.firstLine) p = this.skipLine(bytes, p, to);
     while (p < to) {
-      if (this.fast !== null && this.ready()) {
+      if (this.fast?.worth && this.ready()) {
         p = this.fast.scan(bytes, p, to, this);
         if (p < to) p = this.scan(bytes, p, to, 1);
-      } else p = this.scan(bytes, p, to, this.fast === null ? Number.POSITIVE_INFINITY : 1);
+      } else p = this.scan(bytes, p, to, this.fast?.worth ? 1 : Number.POSITIVE_INFINITY);
     }
     this.lastByte = bytes[to - 1];
   }
@@ -231,18 +239,14 @@ export class Scanner {
   /** Reads a number that is wanted, as the row's instant or as a value; returns the position of the cell's end. */
   private numberCell(bytes: Uint8Array, from: number, column: number, mode: number): number {
     let p = readDigits(bytes, from, this.decimal);
-    const b = p < 0 ? 0 : bytes[p];
-    let known = true;
-    let m = number[0];
-    let e = number[1];
-    if (b !== this.delimiter && b !== LF && b !== CR) {
-      p = this.slowCell(bytes, from);
-      const kind = this.cell.kind;
-      known = kind === NUMBER || (mode === VALUE && kind === BITS);
-      m = this.cell.mantissa;
-      e = this.cell.exponent;
-      if (!known && this.odd === "" && (mode === INSTANT || kind !== UNKNOWN)) this.odd = mode === INSTANT ? "time" : "cell";
+    let e = -digits[2];
+    if (p > 0 && (bytes[p] | 32) === 101) {
+      p = readExponent(bytes, p);
+      e += exponent[0];
     }
+    const b = p < 0 ? 0 : bytes[p];
+    if (b !== this.delimiter && b !== LF && b !== CR) return this.wordCell(bytes, from, column, mode);
+    const m = bytes[from] === 45 ? -mantissa() : mantissa();
     if (mode === INSTANT) {
       this.mantissa = m;
       this.exponent = e;
@@ -250,7 +254,23 @@ export class Scanner {
     }
     const { slots, powers, values } = this.plan;
     e += powers[column];
-    values[slots[column]] = !known ? Number.NaN : e === 0 ? m : scaled(m, e);
+    values[slots[column]] = e <= 0 && e >= -22 ? m / POWERS[-e] : scaled(m, e);
+    return p;
+  }
+
+  /** The same for a cell that is no plain number, by the full grammar. */
+  private wordCell(bytes: Uint8Array, from: number, column: number, mode: number): number {
+    const p = this.slowCell(bytes, from);
+    const { kind } = this.cell;
+    const known = kind === NUMBER || (mode === VALUE && kind === BITS);
+    if (!known && this.odd === "" && (mode === INSTANT || kind !== UNKNOWN)) this.odd = mode === INSTANT ? "time" : "cell";
+    if (mode === INSTANT) {
+      this.mantissa = this.cell.mantissa;
+      this.exponent = this.cell.exponent;
+      return p;
+    }
+    const { slots, powers, values } = this.plan;
+    values[slots[column]] = known ? scaled(this.cell.mantissa, this.cell.exponent + powers[column]) : Number.NaN;
     return p;
   }
 

@@ -85,6 +85,14 @@ export class VoltTaker implements RowTaker {
   take(tick: number, cut: boolean): void {
     const v = this.values[this.sclSlot];
     const w = this.values[this.sdaSlot];
+    if (!cut && !this.first && this.scl.isQuiet(v) && this.sda.isQuiet(w)) {
+      this.scl.quiet(tick, v);
+      this.sda.quiet(tick, w);
+    } else this.loud(tick, cut, v, w);
+    if (this.taps.length > 0) takeTaps(this.taps, tick, cut);
+  }
+
+  private loud(tick: number, cut: boolean, v: number, w: number): void {
     if (cut) {
       this.scl.reset();
       this.sda.reset();
@@ -97,7 +105,6 @@ export class VoltTaker implements RowTaker {
     } else if (sclMoved || sdaMoved) this.moved(sclMoved, sdaMoved);
     this.scl.add(v);
     this.sda.add(w);
-    if (this.taps.length > 0) takeTaps(this.taps, tick, cut);
   }
 
   /** One or two events since the previous sample, the earlier first. */

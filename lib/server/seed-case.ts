@@ -150,13 +150,21 @@ async function noteFault(viewer: MemberViewer, number: number, capture: CaptureF
   });
 }
 
-/** What the reading itself says, so that the demo never claims more than its capture shows. */
+/** Made of what the reading says, so that the demo never claims more than its capture shows. `#` and a number cite a transaction. */
 function findingOf(summary: Summary): string {
-  const lines = [...(summary.lede ?? [])];
-  for (const contest of summary.contests.slice(0, 3)) {
-    lines.push(
-      `Transaction ${contest.transaction}: ${contest.kept ?? "one controller"} kept the bus, ${contest.yielded ?? "the other"} yielded (${contest.grade}).`,
-    );
+  const contest = summary.contests.find(({ retry }) => retry !== null) ?? summary.contests[0];
+  if (contest !== undefined) {
+    const n = summary.contests.length;
+    const retry = contest.retry === null ? "" : ` and its retry #${contest.retry}`;
+    return [
+      `Not a bus fault. The two controllers met ${n} ${n === 1 ? "time" : "times"} in this record, and each time the one that sent a high where the bus stayed low let go; see #${contest.transaction}${retry}.`,
+      "A lost arbitration is an attempt to be made again, not a write that was lost: the driver should count acknowledged writes.",
+    ].join("\n\n");
   }
-  return lines.join("\n\n");
+  const fault = summary.faults.find(({ kind }) => FAULT_WORDS[kind].fails);
+  if (fault !== undefined) {
+    const where = fault.transaction === null ? "" : `, first in #${fault.transaction}`;
+    return `${FAULT_WORDS[fault.kind].title}${where}: ${fault.detail}.\n\n${FAULT_WORDS[fault.kind].advice}`;
+  }
+  return summary.lede?.at(-1) ?? "";
 }

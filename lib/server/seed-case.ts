@@ -4,6 +4,7 @@ import type { DemoCapture } from "@/fixtures/demo/captures";
 import { type CaptureFile, defaultSettings, type Read, type Status } from "@/lib/case/case";
 import type { CaseView } from "@/lib/case/wire";
 import type { Contest, Fault } from "@/lib/diagnosis/report";
+import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { MemberViewer } from "./access/viewer";
 import { addCapture } from "./captures/add";
 import { analyseOriginal } from "./captures/analysis";

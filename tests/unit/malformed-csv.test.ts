@@ -85,6 +85,30 @@ const REFUSED: readonly Bad[] = [
     place: { line: 2 },
   },
   {
+    name: "point or comma that may group, seen late",
+    content: "Time (ns);SCL;SDA\n800;1;1\n1,000;1;1\n1,200;0;1\n",
+    code: "ambiguous-number",
+    words: /mark in the number 1,000 in line 3 is ambiguous/,
+    place: { line: 3 },
+  },
+  {
+    name: "time that runs backwards, by its name",
+    content: `Time,SCL,SDA\n${[...rows]
+      .reverse()
+      .map((s) => `${s.at},${s.scl},${s.sda}`)
+      .join("\n")}\n`,
+    code: "time-runs-backwards",
+    words: /^The column "Time" holds times that decrease from row to row: line 3 reads \d+ after \d+\.$/,
+    place: { line: 3 },
+  },
+  {
+    name: "time that runs backwards, by its unit",
+    content: text([...good].reverse()),
+    code: "time-runs-backwards",
+    words: /line 3 reads/,
+    place: { line: 3 },
+  },
+  {
     name: "one channel",
     content: `Time [s],SCL\n${rows.map((s) => `${s.at * 1e-9},${s.scl}`).join("\n")}\n`,
     code: "one-channel",

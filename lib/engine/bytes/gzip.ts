@@ -51,28 +51,28 @@ export class CompressedDataError extends Error {
   }
 }
 
-export function compressedProblem(name: string, error: CompressedDataError): Problem {
+export function compressedProblem(error: CompressedDataError): Problem {
   return {
     code: "gzip-broken",
-    message: `${name} is gzip-compressed, and the compressed data is corrupt or ends early (near stored byte ${error.storedBytes}).`,
+    message: `The file is gzip-compressed, and the compressed data is corrupt or ends early (near stored byte ${error.storedBytes}).`,
     advice: "Compress the export again, or give the uncompressed file.",
     place: { byte: error.storedBytes },
   };
 }
 
 /** Runs a reading step and turns broken compression into a refusal; every other error is passed on. */
-export async function guardInflate<T>(name: string, run: () => Promise<Result<T>>): Promise<Result<T>> {
+export async function guardInflate<T>(run: () => Promise<Result<T>>): Promise<Result<T>> {
   try {
     return await run();
   } catch (error) {
-    if (error instanceof CompressedDataError) return refuse(compressedProblem(name, error));
+    if (error instanceof CompressedDataError) return refuse(compressedProblem(error));
     throw error;
   }
 }
 
 /** The first bytes of a source, at most `limit`; shorter only where the file is. */
 export async function firstBytes(source: ByteSource, limit: number): Promise<Result<Uint8Array>> {
-  return guardInflate(source.name, async () => {
+  return guardInflate(async () => {
     const head = new Uint8Array(limit);
     let length = 0;
     for await (const chunk of source.open()) {

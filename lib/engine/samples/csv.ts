@@ -8,6 +8,7 @@ import { decode, type Encoding, plainChunks, plainEncoding, textForm } from "../
 import { needsMore, type Proposal, proposeChannels } from "../channels/propose";
 import type { LineTrace } from "../channels/trace";
 import { axisOf } from "./csv/axis";
+import { backwardsTime } from "./csv/backwards";
 import { type Body, bodyOf } from "./csv/body";
 import { findDialect, type HeadRow } from "./csv/dialect";
 import { type Layout, layoutOf } from "./csv/layout";
@@ -45,19 +46,21 @@ export async function openCsv(source: ByteSource, choices: ReadChoices, gzip: bo
 
 export async function examineCsv(source: ByteSource, choices: ReadChoices, gzip: boolean): Promise<CsvOutcome> {
   let view: CsvView | null = null;
-  const opened = await guardInflate(source.name, async () => {
+  const opened = await guardInflate(async () => {
     const head = await firstBytes(source, HEAD_BYTES);
     if (!head.ok) return head;
     const form = textForm(head.value);
     const whole = head.value.length < HEAD_BYTES;
     const text = await plainText(head.value, form);
-    const table = findDialect(text, source.name, whole);
+    const table = findDialect(text, whole);
     if (!table.ok) return table;
     const layout = layoutOf(table.value);
+    const backwards = backwardsTime(layout, table.value.rows);
+    if (backwards !== null) return refuse(backwards);
     const axis = axisOf(layout, table.value.rows, choices, growthOf(source, head.value.length));
     const sources = lineSources(layout);
     const body = bodyOf(source, form, layout, axis);
-    const found = await findLines(body, sources, choices, source.name);
+    const found = await findLines(body, sources, choices);
     if (!found.ok) return found;
     const { proposal, levels, startTick } = found.value;
     const warnings = [...layoutWarnings(layout, sources), ...axis.warnings];
@@ -103,7 +106,7 @@ interface Found {
   readonly startTick: number;
 }
 
-async function findLines(body: Body, sources: readonly LineSource[], choices: ReadChoices, name: string): Promise<Result<Found>> {
+async function findLines(body: Body, sources: readonly LineSource[], choices: ReadChoices): Promise<Result<Found>> {
   const lines = sources.filter(usable);
   const clusters = await surveyLevels(body, lines);
   const levels = levelPlan(lines, clusters, choices);
@@ -114,18 +117,14 @@ async function findLines(body: Body, sources: readonly LineSource[], choices: Re
     return !needsMore(proposal);
   };
   const surveyed = await surveyTraces(body, lines, thresholdsOf(levels), settled);
-  if (surveyed.rows === 0) return refuse(nothingSensible(name, surveyed.asides.count, surveyed.asides.first()));
+  if (surveyed.rows === 0) return refuse(nothingSensible(surveyed.asides.count, surveyed.asides.first()));
   return ok({ proposal, levels, startTick: surveyed.firstTick });
 }
 
-export function nothingSensible(
-  name: string,
-  count: number,
-  first: { readonly line: number; readonly words: string } | null,
-): Problem {
+export function nothingSensible(count: number, first: { readonly line: number; readonly words: string } | null): Problem {
   return {
     code: "no-usable-rows",
-    message: `No row of ${name} can be used: ${count} rows were set aside${first === null ? "" : `; line ${first.line} ${first.words}`}.`,
+    message: `No row of the file can be used: ${count} rows were set aside${first === null ? "" : `; line ${first.line} ${first.words}`}.`,
     advice: "Check that the export is complete and has the same columns in every row.",
     place: first === null ? {} : { line: first.line },
   };

@@ -33,7 +33,7 @@ interface Surveyed {
 
 /** `gzip`: the source inflates a compressed file; only noted in the head. */
 export async function openVcd(source: ByteSource, choices: ReadChoices, gzip: boolean): Promise<Opened> {
-  return guardInflate(source.name, async () => {
+  return guardInflate(async () => {
     const start = await firstBytes(source, 4096);
     if (!start.ok) return start;
     const form = textForm(start.value);
@@ -44,7 +44,7 @@ export async function openVcd(source: ByteSource, choices: ReadChoices, gzip: bo
     const head = headOf(surveyed.value, lines.value, choices, gzip);
     return ok({
       head,
-      read: (sink: EdgeSink) => guardInflate(source.name, () => read(source, form, surveyed.value, lines.value, sink)),
+      read: (sink: EdgeSink) => guardInflate(() => read(source, form, surveyed.value, lines.value, sink)),
     } satisfies OpenCapture);
   });
 }

@@ -31,7 +31,7 @@ const JUDGED_CHARACTERS = 8192;
 const cell = new Cell();
 
 /** `whole`: the text is the entire file; otherwise its last, possibly unfinished row is left out. */
-export function findDialect(text: string, name: string, whole: boolean): Result<HeadTable> {
+export function findDialect(text: string, whole: boolean): Result<HeadTable> {
   let body = lineFeeds(text);
   const hint = /^sep=(.)\n/i.exec(body);
   const skipped = hint === null ? 0 : 1;
@@ -45,8 +45,8 @@ export function findDialect(text: string, name: string, whole: boolean): Result<
     judged === null
       ? bestOf(body, delimiters, skipped, !whole)
       : candidate(numbered(splitText(body, judged.dialect.delimiter, !whole).rows, skipped), judged.dialect, judged.texts);
-  if (best === null) return refuse(noTable(body, name, skipped));
-  const doubt = ambiguousComma(best, name);
+  if (best === null) return refuse(noTable(body, skipped));
+  const doubt = ambiguousComma(best);
   if (doubt !== null) return refuse(doubt);
   return ok({ ...best, dialect: { ...best.dialect, quoted: best.dialect.delimiter !== " " && quotedBody(body, best, skipped) } });
 }
@@ -172,7 +172,7 @@ function quotedBody(body: string, table: HeadTable, skipped: number): boolean {
 }
 
 /** "1,234" in every cell with a comma could be 1.234 or 1234: nothing in the file tells which. */
-function ambiguousComma(table: HeadTable, name: string): Problem | null {
+function ambiguousComma(table: HeadTable): Problem | null {
   if (table.dialect.decimal !== ",") return null;
   let doubt: HeadRow | null = null;
   let text = "";
@@ -186,25 +186,26 @@ function ambiguousComma(table: HeadTable, name: string): Problem | null {
       }
     }
   }
-  return doubt === null ? null : ambiguous(name, doubt.line, text);
+  return doubt === null ? null : ambiguous(doubt.line, text);
 }
 
-function ambiguous(name: string, line: number, text: string): Problem {
+function ambiguous(line: number, text: string): Problem {
   return {
     code: "ambiguous-number",
-    message: `Line ${line} of ${name} has the number ${text}, whose comma or point may be a decimal mark or may group thousands; nothing in the file tells which.`,
-    advice: "Export again without digit grouping, or with more decimals.",
+    message: `The mark in the number ${text} in line ${line} is ambiguous: it may be the decimal mark or may group thousands, and nothing in the file tells which.`,
+    advice:
+      "Export again without digit grouping, or with a decimal mark in every number; or take the grouping marks out of the column.",
     place: { line },
   };
 }
 
-function noTable(body: string, name: string, skipped: number): Problem {
+function noTable(body: string, skipped: number): Problem {
   const lines = body.split("\n");
   for (let i = 0; i < lines.length; i += 1) {
     const grouped = /(?:^|[;\t" ])([+-]?\d{1,3}(?:[.,']\d{3})*(?:\.\d{3},\d+|,\d{3}\.\d+|'\d{3}(?:\.\d+)?))(?:$|[;\t" ,])/.exec(
       lines[i],
     );
-    if (grouped !== null) return ambiguous(name, i + 1 + skipped, grouped[1]);
+    if (grouped !== null) return ambiguous(i + 1 + skipped, grouped[1]);
   }
   const at = Math.max(
     0,
@@ -213,7 +214,7 @@ function noTable(body: string, name: string, skipped: number): Problem {
   const sample = lines[at].trim().slice(0, 60);
   return {
     code: "no-readings",
-    message: `${name} holds text, but no table of readings: no row of numbers or 0/1 levels was found (line ${at + 1 + skipped} reads "${sample}").`,
+    message: `The file holds text, but no table of readings: no row of numbers or 0/1 levels was found (line ${at + 1 + skipped} reads "${sample}").`,
     advice: "Export the sampled channels as CSV (time, SCL, SDA), not a log, a screenshot or a list of decoded messages.",
     place: { line: at + 1 + skipped },
   };

@@ -39,7 +39,7 @@ export async function readBody(job: BodyJob, sink: EdgeSink, plain: boolean): Pr
   const { rows, writers, finish } = parts;
   const plan = scanPlan(body.layout, body.axis, parts.selection);
   const reader = bodyReader(plan, body.form, rows, plain ? parts.fast : null, () => rows.regular);
-  return guardInflate(body.source.name, async () => {
+  return guardInflate(async () => {
     let read = 0;
     for await (const chunk of plainChunks(body.source.open(), body.form)) {
       const slice = read === 0 ? FIRST_FLUSH : chunk.length;
@@ -180,7 +180,7 @@ function tailOf(job: BodyJob, rows: Rows, parts: Parts): Result<CaptureTail> {
     const first = asides.first();
     return refuse({
       code: "too-many-rows-set-aside",
-      message: `${asides.count} of ${asides.count + rows.count} rows of ${job.body.source.name} cannot be used${first === null ? "" : `; line ${first.line} ${first.words}`}.`,
+      message: `${asides.count} of ${asides.count + rows.count} rows of the file cannot be used${first === null ? "" : `; line ${first.line} ${first.words}`}.`,
       advice: "Check that the export is complete and has the same columns in every row.",
       place: first === null ? {} : { line: first.line },
     });

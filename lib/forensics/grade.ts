@@ -3,7 +3,7 @@
 import type { Contest } from "../diagnosis/report";
 
 /** A contest less probable than this is not reported. */
-export const FLOOR = 0.2;
+export const FLOOR = 0.4;
 
 /** certain: drive taps show it. strong: at least 0.9. probable: at least 0.5. weak: below. */
 export function gradeOf(probability: number, tapped: boolean): Contest["grade"] {

@@ -12,13 +12,13 @@ export const NO_ARBITRATION = 16;
 export class Ledger {
   count = 0;
   /** SCL fall to rise, ticks. NaN for START. */
-  low = new Float32Array(16384);
+  low = new Float32Array(65536);
   /** BIT: SCL rise to fall. Sr and STOP: SCL rise to the SDA change (set-up). START: NaN. */
-  high = new Float32Array(16384);
+  high = new Float32Array(65536);
   /** First and last SDA change after the SCL fall, ticks; NaN where SDA rested. */
-  first = new Float32Array(16384);
-  last = new Float32Array(16384);
-  what = new Uint8Array(16384);
+  first = new Float32Array(65536);
+  last = new Float32Array(65536);
+  what = new Uint8Array(65536);
   /** Volts only: SDA over the high, SCL over the beginning of the low. */
   sdaLevel: Float32Array | null;
   sclLevel: Float32Array | null;
@@ -32,8 +32,8 @@ export class Ledger {
   closeEntry = new Uint32Array(256);
 
   constructor(volts: boolean) {
-    this.sdaLevel = volts ? new Float32Array(16384) : null;
-    this.sclLevel = volts ? new Float32Array(16384) : null;
+    this.sdaLevel = volts ? new Float32Array(65536) : null;
+    this.sclLevel = volts ? new Float32Array(65536) : null;
   }
 
   push(block: BitBlock): void {
@@ -103,7 +103,7 @@ export class Ledger {
   private reserve(size: number): void {
     if (size <= this.what.length) return;
     // Fresh memory costs nothing until it is written, copying does: grow in large steps.
-    const room = Math.max(size, 6 * this.what.length);
+    const room = Math.max(size, 8 * this.what.length);
     this.low = grown(this.low, new Float32Array(room));
     this.high = grown(this.high, new Float32Array(room));
     this.first = grown(this.first, new Float32Array(room));

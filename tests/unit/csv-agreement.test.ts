@@ -87,6 +87,7 @@ const BLEMISHES = [
   () => "",
   (row: string) => row.replace(/^[^,]*/, "?!"),
   (row: string) => row.replace(/^[^,]*/, "-1.0"),
+  (row: string) => row.replace(/^[^,]*/, "7.5"),
   (row: string) => `+${row}`,
   (row: string) => row.replace(/^([^,]*)/, "$1e0"),
 ];

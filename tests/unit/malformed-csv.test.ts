@@ -225,6 +225,30 @@ describe("read with warnings", () => {
     expect(read.lines.filter((one) => (one & 16) !== 0)).toHaveLength(1);
   });
 
+  test.each([
+    ["near the start", 40],
+    ["on the first row", 0],
+  ])("one time far ahead in a list of changes costs its own row: %s", async (_name, at) => {
+    const lines = steps.map(row);
+    lines[at] = lines[at].replace(/^[^,]*/, "9.000000000");
+    const read = await readText(text(lines));
+    expect(read.tail.warnings.find((warning) => warning.code === "time-backwards")).toMatchObject({ line: at + 2, count: 1 });
+    expect(read.tail.samples).toBe(steps.length - 1);
+    expect(read.tail.endTick).toBe(steps[steps.length - 1].at * 1000);
+    const kept = steps.filter((_, i) => i !== at);
+    expect(read.ticks).toEqual(kept.slice(0, read.ticks.length).map((step) => step.at * 1000));
+    expect(read.lines.filter((one) => (one & 16) !== 0)).toHaveLength(at === 0 ? 0 : 1);
+    expect(read.capture.head.startTick).toBe(kept[0].at * 1000);
+  });
+
+  test("one time going back in a list of changes costs its own row", async () => {
+    const lines = steps.map(row);
+    lines[40] = lines[40].replace(/^[^,]*/, ((steps[38].at + 1) * 1e-9).toFixed(9));
+    const read = await readText(text(lines));
+    expect(read.tail.warnings.find((warning) => warning.code === "time-backwards")).toMatchObject({ line: 42, count: 1 });
+    expect(read.tail.samples).toBe(steps.length - 1);
+  });
+
   test("many kinds at once are counted one by one", async () => {
     const lines = [...good];
     lines[5] = "a,b,c";

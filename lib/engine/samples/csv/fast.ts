@@ -66,6 +66,7 @@ export class FastLevels implements FastPath {
     let places = -1;
     let multiplier = Number.NaN;
     let last = rows.lastTick;
+    let before = rows.beforeTick;
     let limit = rows.limit;
     let key = taker.lines === 3 ? 0x3131 : -1;
     let p = from;
@@ -106,17 +107,17 @@ export class FastLevels implements FastPath {
       if (negative) tick = -tick;
       // NaN fails as well: a shape whose ticks are not whole numbers goes to the scanner.
       if (!(tick > last && tick < limit) || wholeEnd === first || wholeEnd - first > 9)
-        return this.leave(scanner, start, read, last, limit);
+        return this.leave(scanner, start, read, before, last, limit);
       const end = p + toEnd;
       const ending = bytes[end];
       if (ending !== LF && !(ending === CR && bytes[end + 1] === LF && end + 1 < to))
-        return this.leave(scanner, start, read, last, limit);
+        return this.leave(scanner, start, read, before, last, limit);
       const scl = bytes[p + toScl];
       const sda = bytes[p + toSda];
       const plain = three
         ? bytes[p] === delimiter && bytes[p + 2] === delimiter && ((scl | sda) & 0xfe) === 48 && (scl & sda & 48) === 48
         : this.others(bytes, p);
-      if (!plain) return this.leave(scanner, start, read, last, limit);
+      if (!plain) return this.leave(scanner, start, read, before, last, limit);
       p = ending === LF ? end + 1 : end + 2;
       const now = (scl << 8) | sda;
       if (now !== key) {
@@ -127,11 +128,12 @@ export class FastLevels implements FastPath {
           taker.writer.put(tick, lines);
         }
       }
+      before = last;
       last = tick;
       limit = tick + gap;
       read += 1;
     }
-    return this.leave(scanner, p, read, last, limit);
+    return this.leave(scanner, p, read, before, last, limit);
   }
 
   /** The cells after a time that ends at `p`, for a row of any width. */
@@ -142,8 +144,9 @@ export class FastLevels implements FastPath {
     return true;
   }
 
-  private leave(scanner: Scanner, at: number, read: number, last: number, limit: number): number {
+  private leave(scanner: Scanner, at: number, read: number, before: number, last: number, limit: number): number {
     if (read > 0) {
+      this.rows.beforeTick = before;
       this.rows.lastTick = last;
       this.rows.limit = limit;
     }

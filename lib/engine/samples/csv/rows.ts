@@ -27,6 +27,14 @@ export interface RowTaker {
   take(tick: number, cut: boolean): void;
   /** Whether a lost sample just before these values leaves the order of the lines' changes open. */
   orderLost(): boolean;
+  /** Takes the latest row back, whose time was wrong. False, or absent, where that cannot be. */
+  retract?(tick: number): boolean;
+}
+
+interface HeldRow {
+  readonly tick: number;
+  readonly line: number;
+  readonly values: Float64Array;
 }
 
 /** Set-aside rows between two samples that need not cut the record. */
@@ -35,6 +43,8 @@ const BRIDGED_ROWS = 8;
 export class Rows implements RowTarget {
   count = 0;
   lastTick = Number.NEGATIVE_INFINITY;
+  /** Instant of the row before the latest one. */
+  beforeTick = Number.NEGATIVE_INFINITY;
   firstTick = 0;
   /** Instants from here on are a gap. */
   limit = Number.POSITIVE_INFINITY;
@@ -45,7 +55,9 @@ export class Rows implements RowTarget {
   lastLine = 0;
   readonly gap: number;
   private asideSince = 0;
-  private pending: { tick: number; line: number; values: Float64Array } | null = null;
+  private pending: HeldRow | null = null;
+  /** In a list of changes, a row before the latest one: which of the two times is wrong, the next row tells. */
+  private doubted: HeldRow | null = null;
   private base = 0;
   private counted = 0;
 
@@ -60,11 +72,12 @@ export class Rows implements RowTarget {
 
   /** Whether the next row may be taken by a fast path. */
   get regular(): boolean {
-    return this.pending === null && this.asideSince === 0 && this.count > 0 && !this.pace.rebuilt;
+    return this.pending === null && this.doubted === null && this.asideSince === 0 && this.count > 0 && !this.pace.rebuilt;
   }
 
   row(written: number, line: number): void {
     const tick = this.pace.rebuilt ? this.rebuild(written) : written;
+    if (this.doubted !== null) this.settle(this.doubted, tick);
     if (this.pending === null && tick > this.lastTick && tick < this.limit && this.asideSince === 0) {
       this.accept(tick, false);
       this.lastLine = line;
@@ -78,12 +91,14 @@ export class Rows implements RowTarget {
 
   finish(): void {
     if (this.pending !== null) this.release(this.pending);
+    if (this.doubted !== null) this.aside(this.doubted.line, "backwards");
   }
 
   private accept(tick: number, cut: boolean): void {
     if (this.count === 0) this.firstTick = tick;
     this.count += 1;
     this.taker.take(tick, cut);
+    this.beforeTick = this.lastTick;
     this.lastTick = tick;
     this.limit = tick + this.gap;
   }
@@ -100,6 +115,8 @@ export class Rows implements RowTarget {
     if (this.count === 0) this.accept(tick, false);
     else if (tick <= this.lastTick) {
       if (tick === this.lastTick && this.pace.step === null) this.accept(tick, false);
+      else if (this.pace.step === null && tick > this.beforeTick && this.asideSince === 0)
+        this.doubted = { tick, line, values: this.values.slice() };
       else this.aside(line, "backwards");
       return;
     } else if (this.pace.step === null) {
@@ -114,6 +131,26 @@ export class Rows implements RowTarget {
     this.lastLine = line;
   }
 
+  /** The row at hand goes on from the doubted one, so the row above that had jumped ahead; or the doubted one is wrong. */
+  private settle(doubted: HeldRow, tick: number): void {
+    this.doubted = null;
+    if (tick >= this.lastTick || tick < doubted.tick || !this.taker.retract?.(this.lastTick)) {
+      this.aside(doubted.line, "backwards");
+      return;
+    }
+    this.aside(this.lastLine, "backwards");
+    this.count -= 1;
+    this.lastTick = this.beforeTick;
+    const current = this.values.slice();
+    this.values.set(doubted.values);
+    const cut = this.count > 0;
+    if (cut) this.noteCut(doubted.line, doubted.tick);
+    this.accept(doubted.tick, cut);
+    this.asideSince = 0;
+    this.lastLine = doubted.line;
+    this.values.set(current);
+  }
+
   /** The gap is exactly the rows set aside in it, and no order of changes was lost with them. */
   private bridged(tick: number, step: number): boolean {
     const missing = Math.round((tick - this.lastTick) / step) - 1;
@@ -121,7 +158,7 @@ export class Rows implements RowTarget {
   }
 
   /** Takes the held row: the gap before it is real. */
-  private release(pending: { tick: number; line: number; values: Float64Array }): void {
+  private release(pending: HeldRow): void {
     this.pending = null;
     const current = this.values.slice();
     this.values.set(pending.values);

@@ -122,6 +122,20 @@ class TraceLine {
     this.length += 1;
   }
 
+  /** Takes a change of level at `tick` back. */
+  retract(tick: number): void {
+    if (this.firstTick === tick) {
+      this.firstTick = Number.POSITIVE_INFINITY;
+      this.newest = Number.NEGATIVE_INFINITY;
+      this.level = -1;
+      return;
+    }
+    this.newest = this.firstTick;
+    if (this.length === 0 || this.ticks[this.length - 1] !== tick) return;
+    this.length -= 1;
+    this.level = this.length === 0 ? this.initial : this.levels[this.length - 1];
+  }
+
   trace(): LineTrace {
     const { channel } = this.source;
     return {
@@ -173,6 +187,11 @@ export async function surveyTraces(
       for (const line of lines) line.take(tick, cut);
     },
     orderLost: () => false,
+    retract(tick) {
+      if (!sources.every(isDigital)) return false;
+      for (const line of lines) line.retract(tick);
+      return true;
+    },
   };
   let target = FIRST_CHANGES;
   let last = false;

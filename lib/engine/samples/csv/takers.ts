@@ -60,6 +60,12 @@ export class LevelTaker implements RowTaker {
     this.writer.finish();
   }
 
+  retract(tick: number): boolean {
+    for (const writer of [this.writer, ...this.taps.map((tap) => tap.writer)]) writer.retract(tick);
+    this.lines = -1;
+    return true;
+  }
+
   orderLost(): boolean {
     const changed = (SCL_BITS[this.scl.level()] | SDA_BITS[this.sda.level()]) ^ this.lines;
     return (changed & (SCL | SCL_UNKNOWN)) !== 0 && (changed & (SDA | SDA_UNKNOWN)) !== 0;

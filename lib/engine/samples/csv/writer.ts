@@ -48,6 +48,11 @@ export class EdgeWriter {
     this.leadSda = leadSda;
   }
 
+  /** Takes the event at `tick` back, if there is one. */
+  retract(tick: number): void {
+    if (this.held && this.heldTick === tick) this.held = false;
+  }
+
   private settle(meanScl: number, meanSda: number): void {
     const lines = this.heldLines;
     if (lines === this.written) return;

@@ -143,9 +143,12 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
   );
 
   const moves = useMoves({ capture, rows, selected: state.selected, go });
+  const span = state.reading === "strip" ? state.strip : null;
   async function tag(kind: string) {
-    if (state.selected === null || !of.addTag) return;
-    if ((await of.addTag(state.selected, kind)) === null) moves.step(1);
+    if (!of.addTag) return;
+    if (state.selected === null) {
+      if (span !== null) await of.addTag({ span }, kind);
+    } else if ((await of.addTag({ transaction: state.selected }, kind)) === null) moves.step(1);
   }
   useKeys({
     next: () => moves.step(1),
@@ -180,8 +183,10 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
       capture={capture}
       of={of}
       selected={state.selected}
+      span={span}
       names={names}
       onGo={go}
+      onSpan={(strip) => change({ reading: "strip", strip, selected: null })}
       onTag={tag}
       noteField={noteField}
       onAddress={(address) => change({ reading: "stack", filter: { ...EVERYTHING, address } })}

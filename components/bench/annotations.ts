@@ -1,11 +1,21 @@
 // What people put on a capture, as the bench shows it, and what it may ask for. The case page and the share page fill these
 // from the server; the front door has none.
 
+/** A stretch of the record, in ticks. */
+export interface Span {
+  readonly from: number;
+  readonly to: number;
+}
+
+/** What a note or a tag stands on: a transaction, a stretch of the record, or (a note only) the capture as a whole. */
+export type Place = { readonly transaction: number } | { readonly span: Span } | null;
+
 export interface BenchNote {
   readonly id: string;
   /** Footnote number in the case. */
   readonly number: number;
   readonly transaction: number | null;
+  readonly span: Span | null;
   readonly text: string;
   readonly author: string;
   /** May the present reader change or delete it. */
@@ -15,6 +25,7 @@ export interface BenchNote {
 export interface BenchTag {
   readonly id: string;
   readonly transaction: number | null;
+  readonly span: Span | null;
   /** Id of its TagKind. */
   readonly kind: string;
   readonly author: string;
@@ -46,10 +57,10 @@ export interface BenchCase {
   readonly finding: string;
   readonly devices: readonly BenchDevice[];
   /** Absent functions are not offered: a share link is read-only, a support engineer may not tag. */
-  readonly addNote?: (transaction: number | null, text: string) => Outcome;
+  readonly addNote?: (place: Place, text: string) => Outcome;
   readonly editNote?: (id: string, text: string) => Outcome;
   readonly removeNote?: (id: string) => Outcome;
-  readonly addTag?: (transaction: number, kind: string) => Outcome;
+  readonly addTag?: (place: NonNullable<Place>, kind: string) => Outcome;
   readonly removeTag?: (id: string) => Outcome;
   readonly saveFinding?: (text: string) => Outcome;
 }

@@ -1,4 +1,4 @@
-import type { BenchCase, Outcome } from "@/components/bench/annotations";
+import type { BenchCase, Outcome, Place, Span } from "@/components/bench/annotations";
 import type { Anchor, CaseFile, FaultTagFile } from "@/lib/case/case";
 import type { Action } from "@/lib/case/roles";
 import type { CaseHandle } from "./useCase";
@@ -6,8 +6,17 @@ import type { CaseHandle } from "./useCase";
 const SAVED = null;
 const ELSEWHERE = "It was not saved; see the notice above.";
 
-function transactionOf(anchor: Anchor): number | null {
-  return anchor.kind === "transaction" ? anchor.transaction : null;
+function placed(anchor: Anchor): { readonly transaction: number | null; readonly span: Span | null } {
+  return {
+    transaction: anchor.kind === "transaction" ? anchor.transaction : null,
+    span: anchor.kind === "range" ? { from: anchor.from_tick, to: anchor.to_tick } : null,
+  };
+}
+
+function anchorOf(place: Place): Anchor {
+  if (place === null) return { kind: "whole" };
+  if ("transaction" in place) return { kind: "transaction", transaction: place.transaction };
+  return { kind: "range", from_tick: Math.round(place.span.from), to_tick: Math.round(place.span.to) };
 }
 
 /** Notes, tags and finding of one capture, as anybody may read them. */
@@ -21,7 +30,7 @@ export function readOnly(
       .map((note) => ({
         id: note.id,
         number: note.number,
-        transaction: transactionOf(note.anchor),
+        ...placed(note.anchor),
         text: note.text,
         author: note.author,
         mine: false,
@@ -30,7 +39,7 @@ export function readOnly(
       .filter((tag) => tag.capture === capture)
       .map((tag) => ({
         id: tag.id,
-        transaction: transactionOf(tag.anchor),
+        ...placed(tag.anchor),
         kind: tag.fault_tag,
         author: tag.author,
         mine: false,
@@ -50,8 +59,6 @@ export function editable(handle: CaseHandle, capture: string | null, me: string,
   const told = async (done: Promise<boolean>): Outcome => ((await done) ? SAVED : ELSEWHERE);
   const plain = readOnly(view, capture);
   const own = (author: string) => author === me || may("case.edit");
-  const place = (transaction: number | null): Anchor =>
-    transaction === null ? { kind: "whole" } : { kind: "transaction", transaction };
   const noteOf = (id: string) => view.notes.find((note) => note.id === id);
   const noted = (id: string, act: (note: (typeof view.notes)[number]) => Promise<boolean>): Outcome => {
     const note = noteOf(id);
@@ -64,14 +71,13 @@ export function editable(handle: CaseHandle, capture: string | null, me: string,
     tags: plain.tags.map((tag) => ({ ...tag, mine: own(tag.author) })),
     tagKinds: [...catalogue, ...view.fault_tags.filter((tag) => !known.has(tag.id))],
     ...(may("note.add") && {
-      addNote: (transaction, text) => told(handle.addNote(transaction === null ? null : capture, place(transaction), text)),
+      addNote: (place, text) => told(handle.addNote(place === null ? null : capture, anchorOf(place), text)),
       editNote: (id, text) => noted(id, (note) => handle.editNote(note, text)),
       removeNote: (id) => noted(id, handle.removeNote),
     }),
     ...(may("tag.add") &&
       capture !== null && {
-        addTag: (transaction, kind) =>
-          told(handle.changeTags({ add: [{ capture, fault_tag: kind, anchor: place(transaction) }] })),
+        addTag: (place, kind) => told(handle.changeTags({ add: [{ capture, fault_tag: kind, anchor: anchorOf(place) }] })),
         removeTag: (id) => told(handle.changeTags({ remove: [id] })),
       }),
     ...(may("finding.write") && { saveFinding: (text) => told(handle.edit({ finding: text })) }),

@@ -1,22 +1,27 @@
 "use client";
 
 import { type RefObject, useState } from "react";
-import type { BenchCase, BenchNote } from "@/components/bench/annotations";
+import type { BenchCase, BenchNote, Place, Span } from "@/components/bench/annotations";
 import { Button } from "@/components/ui/Button";
 import { TextField } from "@/components/ui/Field";
-import { count } from "@/lib/view/format";
+import type { Timebase } from "@/lib/base/time";
+import { count, instant, span } from "@/lib/view/format";
 import { MarginHead } from "./MarginHead";
 
 export interface NotesProps {
   of: BenchCase;
   selected: number | null;
+  /** The stretch that the strip shows, while it is the open reading. */
+  span: Span | null;
+  base: Timebase;
   onGo: (transaction: number) => void;
+  onSpan: (span: Span) => void;
   /** The field for a new note, so that a key can reach it. */
   field: RefObject<HTMLTextAreaElement | null>;
 }
 
 /** Numbered footnotes: the number stands on the trace, the text here. */
-export function Notes({ of, selected, onGo, field }: NotesProps) {
+export function Notes({ of, selected, span, base, onGo, onSpan, field }: NotesProps) {
   if (of.notes.length === 0 && !of.addNote) return null;
   return (
     <section>
@@ -27,12 +32,14 @@ export function Notes({ of, selected, onGo, field }: NotesProps) {
             key={note.id}
             note={note}
             of={of}
+            base={base}
             onGo={onGo}
+            onSpan={onSpan}
             current={note.transaction !== null && note.transaction === selected}
           />
         ))}
       </ol>
-      {of.addNote && <NewNote add={of.addNote} selected={selected} field={field} />}
+      {of.addNote && <NewNote add={of.addNote} selected={selected} span={span} base={base} field={field} />}
     </section>
   );
 }
@@ -40,17 +47,21 @@ export function Notes({ of, selected, onGo, field }: NotesProps) {
 function NoteItem({
   note,
   of,
+  base,
   onGo,
+  onSpan,
   current,
 }: {
   note: BenchNote;
   of: BenchCase;
+  base: Timebase;
   onGo: (index: number) => void;
+  onSpan: (span: Span) => void;
   current: boolean;
 }) {
   const [editing, setEditing] = useState<string | null>(null);
   const [error, setError] = useState("");
-  const { transaction } = note;
+  const { transaction, span: stretch } = note;
 
   async function save() {
     if (editing === null || !of.editNote) return;
@@ -91,6 +102,11 @@ function NoteItem({
             {count(transaction)}
           </button>
         )}
+        {stretch !== null && (
+          <button type="button" onClick={() => onSpan(stretch)} className="tabular border-b border-field hover:text-ink">
+            {span(stretch.to - stretch.from, base)} from {instant(stretch.from, base, 6)}
+          </button>
+        )}
         {note.mine && of.editNote && editing === null && (
           <button
             type="button"
@@ -114,13 +130,22 @@ function NoteItem({
   );
 }
 
+function placeWords(place: Place, base: Timebase): string {
+  if (place === null) return "Note on the whole capture";
+  if ("transaction" in place) return `Note on ${count(place.transaction)}`;
+  return `Note on the ${span(place.span.to - place.span.from, base)} shown`;
+}
+
 interface NewNoteProps {
   add: NonNullable<BenchCase["addNote"]>;
   selected: number | null;
+  span: Span | null;
+  base: Timebase;
   field: RefObject<HTMLTextAreaElement | null>;
 }
 
-function NewNote({ add, selected, field }: NewNoteProps) {
+function NewNote({ add, selected, span: shown, base, field }: NewNoteProps) {
+  const place: Place = selected !== null ? { transaction: selected } : shown !== null ? { span: shown } : null;
   const [text, setText] = useState("");
   const [error, setError] = useState("");
   const [busy, setBusy] = useState(false);
@@ -128,7 +153,7 @@ function NewNote({ add, selected, field }: NewNoteProps) {
   async function save() {
     if (text.trim() === "") return;
     setBusy(true);
-    const refused = await add(selected, text.trim());
+    const refused = await add(place, text.trim());
     setBusy(false);
     setError(refused ?? "");
     if (!refused) setText("");
@@ -144,7 +169,7 @@ function NewNote({ add, selected, field }: NewNoteProps) {
     >
       <div>
         <label className="block font-sans text-label text-quiet">
-          {selected === null ? "Note on the whole capture" : `Note on ${count(selected)}`}
+          {placeWords(place, base)}
           <textarea
             ref={field}
             rows={2}

@@ -1,7 +1,7 @@
 "use client";
 
 import { useState } from "react";
-import type { BenchCase } from "@/components/bench/annotations";
+import type { BenchCase, Span } from "@/components/bench/annotations";
 import { TagShape } from "@/components/ui/Icon";
 import { count } from "@/lib/view/format";
 import { MarginHead } from "./MarginHead";
@@ -9,14 +9,20 @@ import { MarginHead } from "./MarginHead";
 export interface TagsPartProps {
   of: BenchCase;
   selected: number | null;
+  /** With no transaction selected, tags stand on the stretch that is shown. */
+  span: Span | null;
   onTag: (kind: string) => void;
 }
 
+function overlaps(a: Span | null, b: Span | null): boolean {
+  return a !== null && b !== null && a.from <= b.to && b.from <= a.to;
+}
+
 /** Fault tags of the selected transaction, and the catalogue to choose from; each category may have a key. */
-export function TagsPart({ of, selected, onTag }: TagsPartProps) {
+export function TagsPart({ of, selected, span, onTag }: TagsPartProps) {
   const [error, setError] = useState("");
-  if (selected === null || (!of.addTag && of.tags.length === 0)) return null;
-  const here = of.tags.filter((tag) => tag.transaction === selected);
+  if ((selected === null && span === null) || (!of.addTag && of.tags.length === 0)) return null;
+  const here = of.tags.filter((tag) => (selected === null ? overlaps(tag.span, span) : tag.transaction === selected));
   const offered = of.addTag ? of.tagKinds.filter((kind) => !kind.retired && !here.some((tag) => tag.kind === kind.id)) : [];
   if (here.length === 0 && offered.length === 0) return null;
 
@@ -26,7 +32,7 @@ export function TagsPart({ of, selected, onTag }: TagsPartProps) {
 
   return (
     <section>
-      <MarginHead>Tags on {count(selected)}</MarginHead>
+      <MarginHead>{selected === null ? "Tags on the span shown" : `Tags on ${count(selected)}`}</MarginHead>
       <ul className="mt-2 font-sans text-label">
         {here.map((tag) => (
           <li key={tag.id} className="flex items-baseline gap-2 py-0.5">

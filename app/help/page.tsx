@@ -2,10 +2,10 @@ import type { Metadata } from "next";
 import type { ReactNode } from "react";
 import { Masthead } from "@/components/account/Masthead";
 import { Cautions } from "@/components/bench/Cautions";
-import { KEY_WORDS } from "@/components/bench/keys";
 import { Calibration } from "@/components/help/Calibration";
+import { Keys } from "@/components/help/Keys";
 import { EvidenceKinds, Words } from "@/components/help/Words";
-import figures from "@/fixtures/calibration/result.json";
+import { CALIBRATION } from "@/lib/forensics/calibration";
 import { pageViewer } from "@/lib/server/access/page";
 import { nameplate } from "@/lib/server/access/viewer";
 
@@ -28,16 +28,7 @@ export default async function HelpPage() {
           </p>
         </Part>
         <Part id="keys" title="Keys">
-          <dl className="mt-2 grid max-w-[60rem] grid-cols-[5rem_1fr] gap-x-6 gap-y-1.5 font-serif text-body">
-            {KEY_WORDS.map(([key, words]) => (
-              <div key={key} className="contents">
-                <dt>
-                  <kbd>{key}</kbd>
-                </dt>
-                <dd>{words}</dd>
-              </div>
-            ))}
-          </dl>
+          <Keys />
         </Part>
         <Part id="evidence" title="Evidence of a contest">
           <p className="mt-2 max-w-[68ch] font-serif text-body">
@@ -48,7 +39,7 @@ export default async function HelpPage() {
           <EvidenceKinds />
         </Part>
         <Part id="sure" title="How sure is sure">
-          <Calibration figures={figures} />
+          <Calibration figures={CALIBRATION} />
         </Part>
         <Part id="cautions" title="Cautions">
           <div className="mt-2">

@@ -1,30 +1,6 @@
 import { Cell, Table } from "@/components/ui/Table";
+import type { CalibrationFigures } from "@/lib/forensics/calibration-figures";
 import { count, probability } from "@/lib/view/format";
-
-/** Figures of a calibration run, as fixtures/calibration writes them. */
-export interface CalibrationFigures {
-  readonly corpus: { readonly first: number; readonly count: number };
-  readonly captures: number;
-  readonly transactions: number;
-  readonly contests: number;
-  readonly reliability: readonly {
-    readonly from: number;
-    readonly to: number;
-    readonly claims: number;
-    readonly stated: number;
-    readonly real: number;
-  }[];
-  readonly ece: number;
-  readonly roc: readonly { readonly threshold: number; readonly found: number; readonly falsePer2000: number }[];
-  readonly visible: {
-    readonly contests: number;
-    readonly found: number;
-    readonly exactBit: number;
-    readonly bothParties: number;
-  };
-  readonly tapped: { readonly contests: number; readonly found: number; readonly exactBit: number; readonly false: number };
-  readonly attribution: { readonly given: number; readonly right: number };
-}
 
 function percent(share: number): string {
   return `${Number((share * 100).toFixed(1))} %`;

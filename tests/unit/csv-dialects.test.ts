@@ -362,6 +362,40 @@ describe("columns", () => {
     expect(swapped.capture.head.proposal).toMatchObject({ scl: "@3", sda: "@2", basis: "given" });
   });
 
+  test("drive taps in a file with a time column for each channel", async () => {
+    const changes = (line: "scl" | "sda") => steps.filter((step, i) => i === 0 || step[line] !== steps[i - 1][line]);
+    const scl = changes("scl");
+    const sda = changes("sda");
+    const cells = (list: readonly Step[], i: number, level: (step: Step) => number) =>
+      i < list.length ? `${seconds(list[i].at)},${level(list[i])}` : ",";
+    const lines = scl.map((_, i) =>
+      [
+        cells(scl, i, (s) => s.scl),
+        cells(sda, i, (s) => s.sda),
+        cells(scl, i, (s) => 1 - s.scl),
+        cells(sda, i, (s) => 1 - s.sda),
+      ].join(","),
+    );
+    const read = await readText(`T1 [s],SCL,T2 [s],SDA,T3 [s],drv_scl,T4 [s],drv_sda\n${lines.join("\n")}\n`, {
+      scl: "SCL",
+      sda: "SDA",
+      taps: [
+        { label: "M1", scl: "drv_scl", sda: "drv_sda", polarity: "drive" },
+        { label: "M2", scl: null, sda: "drv_sda", polarity: "release" },
+      ],
+    });
+    same(read);
+    const of = (index: number) => read.taps.filter((tap) => tap.index === index);
+    expect(of(0).flatMap((tap) => [...tap.block.lines])).toEqual(expected().lines);
+    expect(of(0).flatMap((tap) => [...tap.block.ticks])).toEqual(expected().ticks);
+    expect(of(1).flatMap((tap) => [...tap.block.ticks])).toEqual(sda.map((step) => step.at * 1000));
+    expect(
+      of(1)
+        .flatMap((tap) => [...tap.block.lines])
+        .slice(0, 3),
+    ).toEqual([4, 6, 4]);
+  });
+
   test("drive taps: 1 = released whatever the polarity of the file", async () => {
     const text = `Time [s],SCL,SDA,drv_scl,drv_sda\n${table(rows, (s) => `${plainRow(s)},${1 - s.scl},${1 - s.sda}`)}`;
     const read = await readText(text, {

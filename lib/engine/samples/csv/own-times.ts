@@ -6,6 +6,7 @@ import { SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../edges";
 import type { Comparator } from "./comparator";
 import type { DigitalTap } from "./lines";
 import type { RowTaker } from "./rows";
+import { released } from "./takers";
 import type { EdgeWriter } from "./writer";
 
 const SCL_BITS = [0, SCL, SCL_UNKNOWN];
@@ -93,46 +94,37 @@ export class OwnTimeLine {
   }
 }
 
-export class OwnTimesTaker implements RowTaker {
+/** A pair of lines in such a file, the bus or a drive tap, and where its merged events go. A line that is not there is unknown. */
+export class OwnTimesPair {
   private sclLevel = 2;
   private sdaLevel = 2;
 
   constructor(
-    private readonly scl: OwnTimeLine,
-    private readonly sda: OwnTimeLine,
-    readonly writer: EdgeWriter,
+    readonly scl: OwnTimeLine | null,
+    readonly sda: OwnTimeLine | null,
+    private readonly inverted: boolean,
+    private readonly writer: EdgeWriter,
   ) {}
 
   take(): void {
-    this.scl.take();
-    this.sda.take();
-    this.drain(Math.min(this.scl.reached, this.sda.reached));
-  }
-
-  orderLost(): boolean {
-    return false;
+    this.scl?.take();
+    this.sda?.take();
+    this.drain(Math.min(this.scl?.reached ?? Number.POSITIVE_INFINITY, this.sda?.reached ?? Number.POSITIVE_INFINITY));
   }
 
   /** Changes before `until` are complete on both lines. */
   private drain(until: number): void {
     for (;;) {
-      const scl = this.scl.peek();
-      const sda = this.sda.peek();
+      const scl = this.scl?.peek() ?? Number.POSITIVE_INFINITY;
+      const sda = this.sda?.peek() ?? Number.POSITIVE_INFINITY;
       const tick = Math.min(scl, sda);
       if (!(tick < until)) return;
-      let leadScl = 0;
-      let leadSda = 0;
-      if (scl === tick) {
-        const found = this.scl.shift();
-        this.sclLevel = found.level;
-        leadScl = found.lead;
-      }
-      if (sda === tick) {
-        const found = this.sda.shift();
-        this.sdaLevel = found.level;
-        leadSda = found.lead;
-      }
-      this.writer.putVolts(tick, SCL_BITS[this.sclLevel] | SDA_BITS[this.sdaLevel], leadScl, leadSda, Number.NaN, Number.NaN);
+      const sclChange = scl === tick ? this.scl?.shift() : undefined;
+      const sdaChange = sda === tick ? this.sda?.shift() : undefined;
+      if (sclChange !== undefined) this.sclLevel = released(sclChange.level, this.inverted);
+      if (sdaChange !== undefined) this.sdaLevel = released(sdaChange.level, this.inverted);
+      const lines = SCL_BITS[this.sclLevel] | SDA_BITS[this.sdaLevel];
+      this.writer.putVolts(tick, lines, sclChange?.lead ?? 0, sdaChange?.lead ?? 0, Number.NaN, Number.NaN);
     }
   }
 
@@ -140,13 +132,38 @@ export class OwnTimesTaker implements RowTaker {
     this.drain(Number.POSITIVE_INFINITY);
     this.writer.finish();
   }
+}
+
+export class OwnTimesTaker implements RowTaker {
+  constructor(
+    private readonly bus: OwnTimesPair,
+    private readonly taps: readonly OwnTimesPair[],
+  ) {}
+
+  take(): void {
+    this.bus.take();
+    for (const tap of this.taps) tap.take();
+  }
+
+  orderLost(): boolean {
+    return false;
+  }
+
+  finish(): void {
+    this.bus.finish();
+    for (const tap of this.taps) tap.finish();
+  }
+
+  private get lines(): OwnTimeLine[] {
+    return [this.bus, ...this.taps].flatMap((pair) => [pair.scl, pair.sda]).filter((line) => line !== null);
+  }
 
   get endTick(): number {
-    return Math.max(this.scl.end, this.sda.end);
+    return Math.max(...this.lines.map((line) => line.end));
   }
 
   warnings(): Warning[] {
-    const count = this.scl.backwards + this.sda.backwards;
+    const count = this.lines.reduce((sum, line) => sum + line.backwards, 0);
     if (count === 0) return [];
     return [
       {

@@ -11,7 +11,7 @@ import { FastLevels } from "./fast";
 import { FastVolts } from "./fast-volts";
 import { timeColumnOf } from "./layout";
 import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
-import { OwnTimeLine, OwnTimesTaker } from "./own-times";
+import { OwnTimeLine, OwnTimesPair, OwnTimesTaker } from "./own-times";
 import { Rows, type RowTaker } from "./rows";
 import type { FastPath } from "./scanner";
 import { type LevelSource, LevelTaker, type TapLines, VoltTaker } from "./takers";
@@ -82,7 +82,7 @@ function assemble(job: BodyJob, sink: EdgeSink): Parts {
   );
   const excursions = new Excursions(job.head.vdd_v !== null);
   const line = busLine(job, selection, judged, excursions);
-  const bound = body.layout.ownTimes ? ownTimes(line, bus) : volts ? inVolts(line, taps, bus) : inLevels(line, taps, bus);
+  const bound = body.layout.ownTimes ? ownTimes(line, taps, bus) : volts ? inVolts(line, taps, bus) : inLevels(line, taps, bus);
   const finish = () => {
     bound.finish();
     for (const tap of taps) tap.writer.finish();
@@ -132,25 +132,40 @@ function inVolts(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bou
   return bind(line, taker, (rows) => FastVolts.for(body, selection, scl, sda, rows, taker));
 }
 
-function ownTimes(line: BusLine, bus: EdgeWriter): Bound {
+function ownTimes(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bound {
   const { selection, job, comparator } = line;
   const { layout, axis } = job.body;
-  const of = (source: LineSource, which: "scl" | "sda") => {
+  const of = (source: LineSource, compared: () => Comparator | null) => {
     const time = timeColumnOf(layout, source.column);
     const digital = isDigital(source) ? new DigitalTap(source, selection) : null;
     const valueSlot = selection.slots[source.column.index];
-    const compared = digital === null ? comparator(which) : null;
     return new OwnTimeLine(
       selection.values,
       selection.slots[time?.index ?? 0],
       valueSlot,
       digital,
-      compared,
+      digital === null ? compared() : null,
       axis.timebase.ticksPerSecond,
     );
   };
-  const taker = new OwnTimesTaker(of(job.scl, "scl"), of(job.sda, "sda"), bus);
+  const tapLine = (source: LineSource | null) => (source === null ? null : of(source, () => tapComparator(source, job.levels)));
+  const busPair = new OwnTimesPair(
+    of(job.scl, () => comparator("scl")),
+    of(job.sda, () => comparator("sda")),
+    false,
+    bus,
+  );
+  const tapPairs = job.taps.map(
+    (tap, index) => new OwnTimesPair(tapLine(tap.scl), tapLine(tap.sda), tap.inverted, taps[index].writer),
+  );
+  const taker = new OwnTimesTaker(busPair, tapPairs);
   return { ...bind(line, taker, () => null), endTick: () => taker.endTick, warnings: () => taker.warnings() };
+}
+
+/** Null where the column's levels were not found: the line stays unknown. */
+function tapComparator(source: LineSource, levels: LevelPlan): Comparator | null {
+  const thresholds = levels.columns.get(source.column.index);
+  return thresholds === undefined ? null : new Comparator(thresholds, 1, () => undefined);
 }
 
 function windowOf(body: Body): number {
@@ -161,9 +176,8 @@ function windowOf(body: Body): number {
 
 function levelSource(source: LineSource, selection: Selection, levels: LevelPlan): LevelSource {
   if (isDigital(source)) return new DigitalTap(source, selection);
-  const thresholds = levels.columns.get(source.column.index);
-  if (thresholds === undefined) return { level: () => 2 };
-  const comparator = new Comparator(thresholds, 1, () => undefined);
+  const comparator = tapComparator(source, levels);
+  if (comparator === null) return { level: () => 2 };
   const slot = selection.slots[source.column.index];
   return {
     level(tick, cut) {

@@ -31,7 +31,8 @@ function takeTaps(taps: readonly TapLines[], tick: number, cut: boolean): void {
   }
 }
 
-function released(level: number, inverted: boolean): number {
+/** Level of a tap as the bus would have it: 1 = released, 2 = unknown. */
+export function released(level: number, inverted: boolean): number {
   return inverted && level !== 2 ? 1 - level : level;
 }
 

@@ -29,8 +29,8 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
   for (let s = 0; s < n; s++) {
     const e = slots.entry[s];
     if (slots.pulse[s] === 0) chain.restart();
-    out.low[s] = interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]);
-    out.high[s] = interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]);
+    out.low[s] = sampling.trust * interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]);
+    out.high[s] = sampling.trust * interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]);
     const habit = slots.dataHabit[s];
     if (habit === DATA_FALL || habit === DATA_RISE) {
       const figure = signature.habits[habit];
@@ -84,8 +84,8 @@ export function freshGain(
   for (let s = from; s < end; s++) {
     const e = slots.entry[s];
     if (slots.pulse[s] === 0) chain.restart();
-    gain += interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]) - running.low[s];
-    gain += interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]) - running.high[s];
+    gain += sampling.trust * interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]) - running.low[s];
+    gain += sampling.trust * interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]) - running.high[s];
   }
   return gain;
 }

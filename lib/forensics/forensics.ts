@@ -49,7 +49,7 @@ export function openForensics(
         messages: messagesOf(ledger),
         endTick: joinDoubles(ends, ledger.transactions),
         address: joinAddresses(addresses, ledger.transactions),
-        sampling: { step, variance: head.levels === "volts" ? (0.03 * step) ** 2 : (step * step) / 12 },
+        sampling: samplingOf(ledger, step, head.levels === "volts"),
         timebase: head.timebase,
         vdd: head.vdd_v,
         roster: options.roster,
@@ -134,6 +134,20 @@ function perTransaction(messages: Messages, by: Int16Array, index: Int16Array): 
     if (c >= 0) out[t] = index[c];
   }
   return out;
+}
+
+/** Samples in a low from which its clock is believed in full. */
+const FINE = 10;
+
+function samplingOf(ledger: Ledger, step: number, volts: boolean): Sampling {
+  // Crossings of a line in volts are interpolated between samples.
+  if (volts) return { step, variance: (0.03 * step) ** 2, trust: 1 };
+  const lows = ledger.low
+    .slice(0, Math.min(ledger.count, 2000))
+    .filter((low) => low > 0)
+    .sort();
+  const typical = lows.length > 0 ? lows[lows.length >> 1] : 0;
+  return { step, variance: (step * step) / 12, trust: Math.min(1, Math.max(0.3, typical / step / FINE)) };
 }
 
 /** Step of the time grid that the events stand on: the greatest common divisor of many intervals. */

@@ -51,6 +51,11 @@ export interface Sampling {
   readonly step: number;
   /** Variance of one instant. */
   readonly variance: number;
+  /**
+   * How far the clock's evidence is believed, 0 to 1: with few samples in a low the sampling errors of neighbouring bits go
+   * together, which the filter does not know.
+   */
+  readonly trust: number;
 }
 
 const ENOUGH = 400;

@@ -277,7 +277,7 @@ function slow(ledger: Ledger, slots: Slots, signature: Signature, one: Trace, sa
     if (n < 3 || mean <= 0) continue;
     const fit = -0.5 * n * Math.log(2 * Math.PI * variance) - square / (2 * variance);
     const width = 0.5 * Math.log((2 * Math.PI * variance) / n) - Math.log(mean * Math.log(1000));
-    out = logAdd(out, fit + width - given);
+    out = logAdd(out, sampling.trust * (fit + width) - given);
   }
   return out - Math.log(slots.length + 1);
 }

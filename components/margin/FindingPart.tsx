@@ -1,6 +1,6 @@
 "use client";
 
-import { useEffect, useState } from "react";
+import { useEffect, useRef, useState } from "react";
 import type { BenchCase } from "@/components/bench/annotations";
 import { Button } from "@/components/ui/Button";
 import { count } from "@/lib/view/format";
@@ -25,7 +25,11 @@ export function FindingPart({ of, onGo }: { of: BenchCase; onGo: (transaction: n
   const [draft, setDraft] = useState<string | null>(null);
   const [error, setError] = useState("");
   const [busy, setBusy] = useState(false);
+  // A conflict settled in favour of this draft saves it from elsewhere: then the finding becomes what the draft says.
+  const stood = useRef(of.finding);
   useEffect(() => {
+    if (stood.current === of.finding) return;
+    stood.current = of.finding;
     if (draft === of.finding) setDraft(null);
   }, [draft, of.finding]);
   if (of.finding === "" && !of.saveFinding) return null;

@@ -1,9 +1,10 @@
 // What the engine needs of its host, on web standards alone, so the same file serves the browser's worker and Node 20.
 
 import type { ByteSource, Host } from "../lib/engine/bytes/source";
+import { inflateMembers } from "./members";
 
 export const host: Host = {
-  inflate: (chunks) => through(chunks, new DecompressionStream("gzip")),
+  inflate: inflateMembers,
   deflate: (chunks) => through(chunks, new CompressionStream("gzip")),
 };
 

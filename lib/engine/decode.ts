@@ -1,10 +1,13 @@
 // In: edges, block by block. Out: bits, then transactions and bytes, block by block; see decoder.ts for the contract.
 
 import { ConditionDecoder } from "./bits/conditions";
-import { createSpikeFilter, spikesAreBelowResolution } from "./bits/spikes";
+import { createSpikeFilter, spikesAreBelowResolution, view } from "./bits/spikes";
 import { Assembler } from "./bus/assembler";
 import type { CreateDecoder } from "./decoder";
 import type { EdgeBlock } from "./samples/edges";
+
+/** Edges looked at at once: the filter looks ahead over as many, and they are still at hand when they are decoded. */
+const PIECE = 1 << 14;
 
 export const createDecoder: CreateDecoder = (head, listener) => {
   const assembler = new Assembler(listener);
@@ -25,7 +28,9 @@ export const createDecoder: CreateDecoder = (head, listener) => {
   return {
     push(block) {
       if (filter === null) decode(block);
-      else filter.push(block);
+      else
+        for (let from = 0; from < block.length; from += PIECE)
+          filter.push(view(block, from, Math.min(block.length, from + PIECE)));
       conditions.flush();
       assembler.flush();
     },

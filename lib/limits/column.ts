@@ -147,7 +147,7 @@ export class Column {
     if (this.few < EXACT) return;
     this.buckets = new Uint32Array(BUCKETS);
     this.seen = new Float64Array(BUCKETS);
-    for (const value of this.kept) this.bucket(value);
+    for (let i = 0; i < this.few; i++) this.bucket(this.kept[i]);
   }
 
   /** The value that `share` of all intervals do not exceed; NaN without any interval. */

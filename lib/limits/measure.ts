@@ -140,8 +140,8 @@ class Run {
     return this.hs;
   }
 
-  // The many: bits of an open F/S transaction on a one-threshold capture, with both their edges. Does what `bit` does, a column
-  // at a time. Returns the entry after them.
+  // The many: bits of an open F/S transaction on a one-threshold capture. Does what `bit` does, a column at a time; a time that
+  // the record does not hold is NaN, and so is then every interval from or to it. Returns the entry after them.
   private plainBits(block: BitBlock, from: number): number {
     const { kind, flags, length, fall, tick, end, sdaFirst, sdaLast } = block;
     const { fs, transaction, doubt } = this;
@@ -150,7 +150,6 @@ class Run {
     let to = from;
     for (; to < length && kind[to] === BIT && (flags[to] & UNUSUAL) === 0; to++) {
       const lasted = tick[to] - fall[to];
-      if (!(lasted >= 0 && end[to] >= tick[to])) break;
       if (lasted < shortest) shortest = lasted;
       if (lasted > longest) longest = lasted;
     }

@@ -89,6 +89,12 @@ function bareLoop(blocks: readonly EdgeBlock[]): number {
   return sum + levels;
 }
 
+/**
+ * What the last runs were made of. The collection between rounds would else throw away the compiled code with the last object
+ * that it was compiled for, and every round would time the compiler anew.
+ */
+const kept: unknown[] = [];
+
 function decodeAndMeasure(blocks: readonly EdgeBlock[], book: RuleBook | null): number {
   const measurement = createMeasurement(
     HEAD,
@@ -112,6 +118,7 @@ function decodeAndMeasure(blocks: readonly EdgeBlock[], book: RuleBook | null): 
   const last = blocks[blocks.length - 1];
   decoder.finish(last.ticks[last.length - 1]);
   if (measurement.measured.fs.low.count === 0 || transactions === 0) throw new Error("nothing was decoded");
+  kept.splice(0, Math.max(0, kept.length - 4), [decoder, measurement, book]);
   return transactions;
 }
 

@@ -132,18 +132,18 @@ function pulseEnd(block: EdgeBlock, i: number, line: number, limit: number): num
 }
 
 function hasShortPulse(block: EdgeBlock, before: number, limit: number): boolean {
-  const { ticks: at, lines } = block;
+  const { ticks: at, lines, length } = block;
   // Nearly always no two entries are that close, and the look at each line can be spared.
-  let closest = Number.POSITIVE_INFINITY;
-  for (let i = 1; i < block.length; i++) {
-    const gap = at[i] - at[i - 1];
-    if (gap < closest) closest = gap;
+  let close = 1;
+  for (let last = at[0]; close < length; close++) {
+    if (at[close] - last < limit) break;
+    last = at[close];
   }
-  if (closest >= limit) return false;
+  if (close >= length) return false;
   let sclAt = Number.NEGATIVE_INFINITY;
   let sdaAt = Number.NEGATIVE_INFINITY;
   let prev = before;
-  for (let i = 0; i < block.length; i++) {
+  for (let i = 0; i < length; i++) {
     const next = lines[i];
     const changed = next ^ prev;
     if ((changed & SCL) !== 0) {
@@ -190,7 +190,7 @@ function slice(block: EdgeBlock, from: number, to: number): EdgeBlock {
 }
 
 /** The same memory: for handing on, never for changing. */
-function view(block: EdgeBlock, from: number, to: number): EdgeBlock {
+export function view(block: EdgeBlock, from: number, to: number): EdgeBlock {
   const { volts } = block;
   return {
     length: to - from,

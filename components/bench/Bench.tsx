@@ -136,8 +136,9 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
     (transaction: number) => {
       if (transaction < 0 || transaction >= capture.ledger.length) return;
       const hidden = rows !== null && !has(rows, transaction);
-      const strip = state.reading === "strip" ? spanAround(capture, transaction) : { reading: "stack" as const };
-      change({ ...strip, selected: transaction, ...(hidden ? { filter: EVERYTHING } : {}) });
+      const stays = state.reading === "contests" && capture.marks.of(transaction).contest !== null;
+      const place = state.reading === "strip" ? spanAround(capture, transaction) : stays ? {} : { reading: "stack" as const };
+      change({ ...place, selected: transaction, ...(hidden ? { filter: EVERYTHING } : {}) });
     },
     [capture, rows, state.reading, change],
   );

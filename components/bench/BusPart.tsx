@@ -46,7 +46,7 @@ export function BusPart({ capture, version, names, onAddress }: BusPartProps) {
             <button
               type="button"
               onClick={() => onAddress(entry.address)}
-              className="grid w-full grid-cols-[3.2rem_4rem_1fr_auto] items-baseline text-left hover:text-accent"
+              className="grid min-h-6 w-full grid-cols-[3.2rem_4rem_1fr_auto] items-baseline text-left hover:text-accent"
             >
               <span className="tabular text-hex">{address(entry.address, entry.bits)}</span>
               <span className="tabular text-[0.75rem] text-quiet">{addressBytes(entry.address, entry.bits)}</span>

@@ -6,6 +6,7 @@ import { Filters } from "@/components/ledger/Filters";
 import { Limits } from "@/components/ledger/Limits";
 import { ScaleBar } from "@/components/ledger/ScaleBar";
 import { Search } from "@/components/ledger/Search";
+import { ContestReading } from "@/components/race/ContestReading";
 import { Stack } from "@/components/stack/Stack";
 import { InView } from "@/components/strip/InView";
 import { StripTrace } from "@/components/strip/StripTrace";
@@ -31,15 +32,25 @@ export interface ReadingsProps {
   onView: (first: number, last: number) => void;
 }
 
-const READING_WORDS: Record<Reading, string> = { stack: "Stack", strip: "Strip", limits: "Limits", faults: "Faults" };
+const READING_WORDS: Record<Reading, string> = {
+  stack: "Stack",
+  strip: "Strip",
+  contests: "Contests",
+  limits: "Limits",
+  faults: "Faults",
+};
 
 function ReadingName({ reading, capture }: { reading: Reading; capture: Capture }) {
   const faults = capture.summary?.faults.length ?? 0;
+  const contests = capture.summary?.contests.length ?? 0;
   const broken = (capture.summary?.measurements ?? []).filter((row) => row.below + row.above > 0).length;
   return (
     <>
       {READING_WORDS[reading]}
       {reading === "faults" && faults > 0 && <span className="tabular ml-1.5 text-[0.75rem]">{count(faults)}</span>}
+      {reading === "contests" && contests > 0 && (
+        <span className="tabular ml-1.5 text-[0.75rem] text-contest">{count(contests)}</span>
+      )}
       {reading === "limits" && broken > 0 && <span className="tabular ml-1.5 text-[0.75rem] text-broken">{count(broken)}</span>}
     </>
   );
@@ -52,6 +63,17 @@ export function Readings(props: ReadingsProps) {
   const contents: Record<Reading, ReactNode> = {
     stack: <StackReading {...props} />,
     strip: <StripReading {...props} />,
+    contests: summary && (
+      <ContestReading
+        capture={capture}
+        names={props.names}
+        selected={state.selected}
+        onGo={(transaction) => {
+          onGo(transaction);
+          onState({ reading: "stack" });
+        }}
+      />
+    ),
     limits: summary && <Limits summary={summary} onGo={onGo} />,
     faults: summary && <Faults summary={summary} capture={capture} onGo={onGo} />,
   };

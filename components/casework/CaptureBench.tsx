@@ -11,6 +11,8 @@ import type { ReadChoices } from "@/lib/engine/samples/reader";
 import { editable } from "./annotations";
 import { readOnServer } from "./archive";
 import { type Item, localSource } from "./items";
+import { LogImport } from "./LogImport";
+import { SettingsDialog } from "./SettingsDialog";
 import { useArchive } from "./useArchive";
 import type { CaseHandle } from "./useCase";
 
@@ -81,8 +83,28 @@ export function CaptureBench({ item, handle, me, catalogue, above, onShare }: Ca
 function Actions({ item, handle, onShare }: Pick<CaptureBenchProps, "item" | "handle" | "onShare">) {
   const { may } = handle.view;
   const { capture } = item;
+  const [dialog, setDialog] = useState<"settings" | "log" | null>(null);
   return (
     <>
+      {may.includes("case.edit") && (
+        <Button look="word" onClick={() => setDialog("settings")}>
+          Limits and roster
+        </Button>
+      )}
+      {capture && may.includes("capture.upload") && (
+        <Button look="word" onClick={() => setDialog("log")}>
+          {capture.log === null ? "Attach a log" : "Log"}
+        </Button>
+      )}
+      <SettingsDialog open={dialog === "settings"} onOpenChange={(open) => setDialog(open ? "settings" : null)} handle={handle} />
+      {capture && (
+        <LogImport
+          open={dialog === "log"}
+          onOpenChange={(open) => setDialog(open ? "log" : null)}
+          capture={capture}
+          onKept={handle.refresh}
+        />
+      )}
       {may.includes("brief.print") && (
         <Button look="word" onClick={() => window.print()}>
           Brief

@@ -3,7 +3,7 @@
 
 import { EVERYTHING, type LedgerFilter, SHOWS, type Show } from "./filter";
 
-export const READINGS = ["stack", "strip", "limits", "faults"] as const;
+export const READINGS = ["stack", "strip", "contests", "limits", "faults"] as const;
 export type Reading = (typeof READINGS)[number];
 
 export interface ViewState {

@@ -62,10 +62,15 @@ export function bodyOf(source: ByteSource, form: TextForm, layout: Layout, axis:
     axis,
     async walk(selection, target, enough) {
       const reader = bodyReader(scanPlan(layout, axis, selection), form, target, null, () => false);
+      // Asked at fixed places of the file, whatever lengths its bytes come in: a survey must find the same everywhere.
+      let read = 0;
       for await (const chunk of plainChunks(source.open(), form)) {
-        for (let from = 0; from < chunk.length; from += SLICE) {
-          reader.push(chunk.subarray(from, Math.min(chunk.length, from + SLICE)));
-          if (enough()) return;
+        for (let from = 0; from < chunk.length; ) {
+          const to = Math.min(chunk.length, from + SLICE - (read % SLICE));
+          reader.push(chunk.subarray(from, to));
+          read += to - from;
+          from = to;
+          if (read % SLICE === 0 && enough()) return;
         }
       }
       reader.finish();

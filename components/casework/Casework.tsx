@@ -13,7 +13,7 @@ import { CaptureBench } from "./CaptureBench";
 import { CaptureNav } from "./CaptureNav";
 import { CaseHead } from "./CaseHead";
 import { ConflictDialog } from "./ConflictDialog";
-import { useItems } from "./items";
+import { type Item, useItems } from "./items";
 import { useCase } from "./useCase";
 import { useKeeping } from "./useKeeping";
 
@@ -28,12 +28,11 @@ export function Casework({ initial, me }: CaseworkProps) {
   const handle = useCase(initial);
   const { view, refresh } = handle;
   const items = useItems(view.number, view.captures, refresh);
-  const [chosen, choose] = useChosen();
+  const [item, choose] = useChosen(items);
   const [sharing, setSharing] = useState(false);
   const tags = useSWR("/api/fault-tags", (path) => ask({ path, answer: FaultTagListSchema }));
   const catalogue = useMemo(() => tags.data?.fault_tags ?? [], [tags.data]);
   const keeping = useKeeping(items, view.may.includes("capture.upload"), refresh);
-  const item = items[Math.min(chosen, items.length) - 1] ?? items[0] ?? null;
   const openDialog = useCallback(() => setSharing(true), []);
 
   const above = (
@@ -91,21 +90,34 @@ export function Casework({ initial, me }: CaseworkProps) {
   );
 }
 
-/** Which capture is open, counted from 1, kept in the address bar. */
-function useChosen(): [number, (ordinal: number) => void] {
-  const [chosen, setChosen] = useState(1);
+function asked(): number {
+  const ordinal = Number(new URLSearchParams(window.location.search).get("capture"));
+  return Number.isInteger(ordinal) && ordinal > 0 ? ordinal : 1;
+}
+
+function write(query: URLSearchParams, ordinal: number): void {
+  if (ordinal === 1) query.delete("capture");
+  else query.set("capture", String(ordinal));
+  const text = query.toString();
+  window.history.replaceState(window.history.state, "", `${window.location.pathname}${text === "" ? "" : `?${text}`}`);
+}
+
+/**
+ * Which capture is open. It is held by its key, because captures on their way are numbered in the order they arrive; its number
+ * stands in the address bar and follows.
+ */
+function useChosen(items: readonly Item[]): [Item | null, (ordinal: number) => void] {
+  const [key, setKey] = useState<string | null>(null);
+  const place = items.findIndex((item) => item.key === key);
   useEffect(() => {
-    const asked = Number(new URLSearchParams(window.location.search).get("capture"));
-    if (Number.isInteger(asked) && asked > 0) setChosen(asked);
-  }, []);
-  const choose = useCallback((ordinal: number) => {
-    setChosen(ordinal);
-    // Another capture is another view: what was selected in the last one means nothing here.
-    window.history.replaceState(
-      window.history.state,
-      "",
-      `${window.location.pathname}${ordinal === 1 ? "" : `?capture=${ordinal}`}`,
-    );
-  }, []);
-  return [chosen, choose];
+    if (items.length === 0) return;
+    if (place === -1) setKey((items[asked() - 1] ?? items[0]).key);
+    else if (asked() !== place + 1) write(new URLSearchParams(window.location.search), place + 1);
+  }, [items, place]);
+  // Another capture is another view: what was selected in the last one means nothing here.
+  const choose = (ordinal: number) => {
+    write(new URLSearchParams(), ordinal);
+    setKey(items[ordinal - 1].key);
+  };
+  return [items[place] ?? items[0] ?? null, choose];
 }

@@ -116,15 +116,21 @@ export function Stack(props: StackProps) {
     };
   }, []);
 
-  // A new selection is brought into view with the least movement; the first one of a page too.
-  const shown = useRef<number | null>(null);
+  // A new selection is brought into view with the least movement; the one that the address names too, as soon as it has been
+  // read, and once more when the sentences that appear above at the end have moved everything.
+  const shown = useRef<string | null>(null);
+  const reached = selected !== null && placeOf(rows, selected) < total;
+  const concluded = capture.summary !== null;
+  const arrived = useRef(concluded);
   useEffect(() => {
     const element = list.current;
-    if (selected === null || width === 0 || !element || selected === shown.current) return;
+    const key = arrived.current ? `${selected}` : `${selected} ${concluded}`;
+    if (selected === null || !reached || width === 0 || !element || key === shown.current) return;
     const place = placeOf(rows, selected);
     const { extent: now, position: from } = live.current;
-    if (place >= now.rows) return;
-    shown.current = selected;
+    shown.current = key;
+    if (concluded) arrived.current = true;
+    if (arrived.current) shown.current = `${selected}`;
     const rect = element.getBoundingClientRect();
     const offset = rect.top > 0 ? -rect.top : from.offset;
     const wanted = revealing(now, offset, place, ABOVE);
@@ -137,7 +143,7 @@ export function Stack(props: StackProps) {
     live.current.position = next;
     setPosition(next);
     window.scrollTo({ top: window.scrollY + rect.top + next.top, behavior: "instant" });
-  }, [selected, rows, width]);
+  }, [selected, rows, width, reached, concluded]);
 
   const { onSelect } = props;
   const select = useCallback(

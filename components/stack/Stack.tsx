@@ -148,7 +148,7 @@ export function Stack(props: StackProps) {
   const { onSelect } = props;
   const select = useCallback(
     (index: number) => {
-      shown.current = index;
+      shown.current = `${index}`;
       onSelect(index);
     },
     [onSelect],

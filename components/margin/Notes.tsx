@@ -176,7 +176,10 @@ function NewNote({ add, selected, span: shown, base, field }: NewNoteProps) {
             value={text}
             onChange={(event) => setText(event.target.value)}
             onKeyDown={(event) => {
-              if (event.key === "Enter" && (event.ctrlKey || event.metaKey)) save();
+              const sent = event.key === "Enter" && (event.ctrlKey || event.metaKey);
+              if (sent) save();
+              // Back to the stack, where the keys move on.
+              if (sent || event.key === "Escape") event.currentTarget.blur();
             }}
             className="mt-1 w-full resize-y border-0 border-b border-field bg-transparent font-serif text-body text-ink hover:border-ink"
           />

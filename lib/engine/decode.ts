@@ -23,7 +23,15 @@ export const createDecoder: CreateDecoder = (head, listener) => {
   const passAll = head.levels === "digital" && spikesAreBelowResolution(head.timebase, head.sampleTicks);
   const filter = passAll
     ? null
-    : createSpikeFilter(head.timebase, { edges: decode, spike: listener.spike, inHs: () => conditions.inHs() });
+    : createSpikeFilter(head.timebase, {
+        edges: decode,
+        spike(spike) {
+          // Whoever hears of a spike has by then heard of every bit before it, and knows the transaction it stands in.
+          conditions.flush();
+          listener.spike(spike);
+        },
+        inHs: () => conditions.inHs(),
+      });
 
   return {
     push(block) {

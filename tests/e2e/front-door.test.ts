@@ -1,6 +1,6 @@
 import type { Page, Request } from "@playwright/test";
 import { busCsv } from "./support/captures";
-import { kept, readCase, rows } from "./support/casework";
+import { kept, readCase, rows, visit } from "./support/casework";
 import { account } from "./support/people";
 import { expect, test } from "./support/test";
 
@@ -18,7 +18,7 @@ test("without an account a file and the sample are read, and nothing leaves the 
   test.slow();
   const sent = listen(page);
   const file = busCsv("bench-export.csv");
-  await page.goto("/");
+  await visit(page, "/");
   await page.getByRole("button", { name: "or try a sample" }).click();
   await expect(page.getByRole("heading", { name: "Valve write repeated now and then" })).toBeVisible();
   await expect(page.getByText(/was contested: Pump controller and Gateway both started/)).toBeVisible();

@@ -42,9 +42,16 @@ export async function readCase(page: Page, number: number): Promise<CaseView> {
   return CaseViewSchema.parse(await done(await call(page, "GET", `/api/cases/${number}`)));
 }
 
+/** Goes to a page and waits until its scripts answer: a file picked before that would be overlooked. */
+export async function visit(page: Page, path: string): Promise<void> {
+  await page.goto(path);
+  // The server does not know the theme of the system; the name of this button says it once the page has come alive.
+  await expect(page.getByRole("button", { name: /^Theme: (paper|night)/ })).toBeVisible();
+}
+
 /** Picks files on the intake page, opens them as one case, and answers its number. */
 export async function openCase(page: Page, title: string, ...files: TestFile[]): Promise<number> {
-  await page.goto("/cases/new");
+  await visit(page, "/cases/new");
   await page.getByLabel("Capture files").setInputFiles(files);
   await page.getByLabel("Title of the case").fill(title);
   await page.getByRole("button", { name: "Open the case" }).click();

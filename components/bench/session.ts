@@ -80,15 +80,26 @@ async function run(worker: DecodeClient, source: Source, settings: AnalysisSetti
     if (!worker.stopped) told.setStage(stage);
   };
   try {
-    if (source.kind === "file") {
-      const preview = await worker.preview(source, settings.read);
-      if (worker.stopped) return;
-      told.setPreview(preview);
-      if (preview.problem) return end({ is: "refused", problem: preview.problem });
-    }
-    end(await read(worker, source, settings, told, frames));
+    // In a worker of its own, so that the first rows need not wait for it; a file that cannot be read is refused by the reading.
+    const preview = source.kind === "file" ? previewed(source, settings, worker, told) : null;
+    const stage = await read(worker, source, settings, told, frames);
+    // A refusal is answered beside what the file looks like.
+    if (stage.is === "refused") await preview;
+    end(stage);
   } catch (error) {
     end({ is: "crashed", message: error instanceof Error ? error.message : String(error) });
+  }
+}
+
+async function previewed(source: Source, settings: AnalysisSettings, worker: DecodeClient, told: Told): Promise<void> {
+  const beside = new DecodeClient();
+  try {
+    const preview = await beside.preview(source, settings.read);
+    if (!worker.stopped) told.setPreview(preview);
+  } catch {
+    // It reads what the reading itself reads; what made it crash makes that crash, and is told there.
+  } finally {
+    beside.stop();
   }
 }
 

@@ -105,6 +105,8 @@ test("a forgotten password is replaced by mail, and other browsers are signed ou
   const other = await elsewhere.newPage();
   await other.goto("/sign-in");
   await other.getByRole("link", { name: "Forgot the password?" }).click();
+  // Both pages have a field of this name; the one to fill is that of the page being gone to.
+  await expect(other.getByRole("button", { name: "Mail me a link" })).toBeVisible();
   await other.getByLabel("E-mail").fill(email.toUpperCase());
   await other.getByRole("button", { name: "Mail me a link" }).click();
   await expect(other.getByText("a mail with a link is on its way")).toBeVisible();

@@ -11,8 +11,7 @@ export default defineConfig({
   outputDir: path.join(output, "browser"),
   // Two cores at most are promised, and the server needs one of them.
   workers: 1,
-  // A loaded machine can miss a time limit; a test that passes only when tried again is listed as flaky.
-  retries: 1,
+  retries: 0,
   timeout: 60_000,
   expect: { timeout: 10_000 },
   forbidOnly: true,

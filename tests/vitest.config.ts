@@ -28,8 +28,6 @@ export default defineConfig({
           testTimeout: 60_000,
           hookTimeout: 60_000,
           maxWorkers: 1,
-          // Mail and storage answer over sockets; a loaded machine can be late once.
-          retry: 1,
         },
       },
     ],

@@ -48,9 +48,9 @@ export function FrontDoor({ keep }: FrontDoorProps) {
     });
   }
 
-  async function keepIt({ source }: Laid) {
+  async function keepIt({ source, settings }: Laid) {
     try {
-      await carry(source.blob, source.name);
+      await carry(source.blob, source.name, settings.read);
       router.push(keep.href);
     } catch (error) {
       setTrouble(error instanceof Error ? error.message : String(error));

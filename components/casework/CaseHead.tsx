@@ -10,6 +10,7 @@ import { statuses, statusWords, TEXT_LIMIT } from "@/lib/case/case";
 import { PeopleSchema } from "@/lib/case/catalogue";
 import type { Action } from "@/lib/case/roles";
 import type { CaseView } from "@/lib/case/wire";
+import { AddCaptures } from "./AddCaptures";
 import { ask } from "./api";
 import type { EditFields } from "./useCase";
 
@@ -53,6 +54,7 @@ export function CaseHead({ view, edit }: CaseHeadProps) {
         <p className="font-sans text-label text-quiet">with {view.assignee?.name ?? "nobody"}</p>
       )}
       {may("case.edit") && <Rename key={view.title} title={view.title} save={(title) => edit({ title })} />}
+      {may("capture.upload") && <AddCaptures caseNumber={view.number} />}
     </div>
   );
 }

@@ -1,6 +1,6 @@
 "use client";
 
-import { useCallback, useEffect, useMemo, useState } from "react";
+import { useCallback, useEffect, useMemo, useRef, useState } from "react";
 import useSWR from "swr";
 import { TransferLine } from "@/components/intake/TransferLine";
 import { ShareDialog } from "@/components/share/ShareDialog";
@@ -64,7 +64,7 @@ export function Casework({ initial, me }: CaseworkProps) {
         <div className="mx-auto max-w-[90rem] px-4 py-5 sm:px-10">
           {above}
           <h1 className="font-serif text-head">{view.title}</h1>
-          <p className="mt-3 font-serif text-lede">This case holds no capture. Add one, or conclude it without.</p>
+          <p className="mt-3 font-serif text-lede">This case holds no capture. Add one above, or conclude it without.</p>
         </div>
       ) : (
         <CaptureBench
@@ -109,7 +109,16 @@ function write(query: URLSearchParams, ordinal: number): void {
 function useChosen(items: readonly Item[]): [Item | null, (ordinal: number) => void] {
   const [key, setKey] = useState<string | null>(null);
   const place = items.findIndex((item) => item.key === key);
+  const seen = useRef<ReadonlySet<string> | null>(null);
   useEffect(() => {
+    // What somebody here adds is opened; what somebody else adds only joins the row.
+    const added = seen.current && items.find((item) => item.transfer !== null && !seen.current?.has(item.key));
+    seen.current = new Set(items.map((item) => item.key));
+    if (added) {
+      write(new URLSearchParams(), items.indexOf(added) + 1);
+      setKey(added.key);
+      return;
+    }
     if (items.length === 0) return;
     if (place === -1) setKey((items[asked() - 1] ?? items[0]).key);
     else if (asked() !== place + 1) write(new URLSearchParams(window.location.search), place + 1);

@@ -1,6 +1,6 @@
 "use client";
 
-import { useEffect, useState } from "react";
+import { useCallback, useEffect, useSyncExternalStore } from "react";
 import type { CaptureFile } from "@/lib/case/case";
 import type { Source } from "@/workers/protocol";
 import { useShelf } from "../intake/shelf";
@@ -31,37 +31,46 @@ function stateOf(transfer: Transfer): string {
   return `${transfer.view().state} ${JSON.stringify(transfer.read)}`;
 }
 
-/** The captures of a case and what is on its way to it. `onArrival` is called when a transfer has become a capture. */
+/** Draws anew with every change of state, also one that came between the drawing and the listening. */
+function useStates(transfers: readonly Transfer[]): void {
+  const subscribe = useCallback(
+    (listener: () => void) => {
+      const ends = transfers.map((transfer) => transfer.subscribe(listener));
+      return () => {
+        for (const end of ends) end();
+      };
+    },
+    [transfers],
+  );
+  useSyncExternalStore(
+    subscribe,
+    () => transfers.map(stateOf).join("\n"),
+    () => "",
+  );
+}
+
+/**
+ * The captures of a case and what is on its way to it. `onArrival` is called when a transfer has become a capture that
+ * `captures` lacks, also where it did so before this page stood: a small file can be quicker than the page.
+ */
 export function useItems(caseNumber: number, captures: readonly CaptureFile[], onArrival: () => void): readonly Item[] {
   const transfers = useShelf(caseNumber);
-  const [, setRound] = useState(0);
-  useEffect(() => {
-    const states = new Map(transfers.map((transfer) => [transfer, stateOf(transfer)]));
-    const ends = transfers.map((transfer) =>
-      transfer.subscribe(() => {
-        const state = stateOf(transfer);
-        const before = states.get(transfer);
-        if (before === state) return;
-        states.set(transfer, state);
-        setRound((now) => now + 1);
-        if (transfer.view().state === "done" && !before?.startsWith("done")) onArrival();
-      }),
-    );
-    return () => {
-      for (const end of ends) end();
-    };
-  }, [transfers, onArrival]);
-
+  useStates(transfers);
   const arrived = new Map<string, Transfer>();
   for (const transfer of transfers) {
     const capture = transfer.view().capture;
     if (capture) arrived.set(capture.id, transfer);
   }
+  const known = new Set(captures.map((capture) => capture.id));
+  const missing = [...arrived.keys()].filter((id) => !known.has(id)).join(" ");
+  useEffect(() => {
+    if (missing !== "") onArrival();
+  }, [missing, onArrival]);
+
   const kept = captures.map((capture) => {
     const transfer = arrived.get(capture.id) ?? null;
     return { key: transfer?.key ?? capture.id, name: capture.name, capture, transfer };
   });
-  const known = new Set(captures.map((capture) => capture.id));
   const coming = transfers.filter((transfer) => {
     const { state, capture } = transfer.view();
     return state !== "cancelled" && !(capture && known.has(capture.id));

@@ -13,16 +13,17 @@ import { type Item, localSource } from "./items";
 export function useKeeping(items: readonly Item[], may: boolean, refresh: () => Promise<void>) {
   const [trouble, setTrouble] = useState<string | null>(null);
   const [round, setRound] = useState(0);
-  const begun = useRef(new Set<string>());
+  // The last reading begun for each capture: one that failed is not begun again by itself, an earlier one come back to is.
+  const begun = useRef(new Map<string, string>());
   const busy = useRef(false);
-  const next = may ? items.find((item) => item.capture !== null && !begun.current.has(markOf(item)) && wants(item)) : undefined;
+  const next = may ? items.find((item) => wants(item) && begun.current.get(item.key) !== markOf(item)) : undefined;
   const mark = next ? markOf(next) : null;
 
   // biome-ignore lint/correctness/useExhaustiveDependencies: the mark stands for the item it is made of
   useEffect(() => {
     if (!next?.capture || mark === null || busy.current) return;
     busy.current = true;
-    begun.current.add(mark);
+    begun.current.set(next.key, mark);
     const { capture, transfer } = next;
     const kept = transfer
       ? storeAnalysis(capture.id, localSource(transfer), transfer.read, capture.log)

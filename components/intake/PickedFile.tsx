@@ -1,11 +1,30 @@
+import { Answers } from "@/components/bench/Answers";
 import { Button } from "@/components/ui/Button";
 import { Notice } from "@/components/ui/Notice";
-import type { Picked } from "./Intake";
+import type { Picked, Picking } from "./picking";
 import { size } from "./size";
 
-/** What a picked file turns out to be, in words, before it is opened. */
-export function PickedFile({ picked, onRemove }: { picked: Picked; onRemove: () => void }) {
-  const { file, preview, crashed } = picked;
+/** The files picked so far, each with what it turns out to be. */
+export function PickedFiles({ picking }: { picking: Picking }) {
+  return picking.files.map((picked) => (
+    <PickedFile
+      key={`${picked.file.name}-${picked.file.size}-${picked.file.lastModified}`}
+      picked={picked}
+      onRead={(read) => picking.answer(picked, read)}
+      onRemove={() => picking.leaveOut(picked)}
+    />
+  ));
+}
+
+interface PickedFileProps {
+  picked: Picked;
+  onRead: (read: Picked["read"]) => void;
+  onRemove: () => void;
+}
+
+/** What a picked file turns out to be, in words, before it is opened; what it takes to read it is asked here. */
+function PickedFile({ picked, onRead, onRemove }: PickedFileProps) {
+  const { file, read, preview, crashed } = picked;
   return (
     <section aria-label={file.name} className="border-b border-hairline pb-4">
       <div className="flex flex-wrap items-baseline gap-x-5 gap-y-1 font-sans text-label">
@@ -24,7 +43,8 @@ export function PickedFile({ picked, onRemove }: { picked: Picked; onRemove: () 
         )}
         {preview?.problem && (
           <Notice kind="broken" title={preview.problem.message}>
-            {preview.problem.advice}
+            <p>{preview.problem.advice}</p>
+            <Answers read={read} preview={preview} onRead={onRead} />
           </Notice>
         )}
         {preview !== null && preview.problem === null && preview.proposal !== null && (

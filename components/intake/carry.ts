@@ -1,6 +1,8 @@
 // A file opened at the front door, carried in this browser across signing in to the intake page. It leaves the browser only
 // when it is opened as a case there.
 
+import type { ReadChoices } from "@/lib/engine/samples/reader";
+
 const DATABASE = "firstlow-carry";
 const STORE = "file";
 const KEY = "carried";
@@ -29,15 +31,23 @@ async function within<T>(mode: IDBTransactionMode, act: (store: IDBObjectStore) 
   }
 }
 
+/** What was laid aside: the file, and what the person answered about it. */
+export interface Carried {
+  readonly file: File;
+  readonly read: ReadChoices;
+}
+
 /** Lays a file aside for the intake page. */
-export async function carry(blob: Blob, name: string): Promise<void> {
-  await within("readwrite", (store) => store.put({ blob, name, at: Date.now() }, KEY));
+export async function carry(blob: Blob, name: string, read: ReadChoices): Promise<void> {
+  await within("readwrite", (store) => store.put({ blob, name, read, at: Date.now() }, KEY));
 }
 
 /** The file laid aside, once; null where there is none. */
-export async function fetchCarried(): Promise<File | null> {
-  const found: { blob: Blob; name: string; at: number } | undefined = await within("readonly", (store) => store.get(KEY));
+export async function fetchCarried(): Promise<Carried | null> {
+  const found: { blob: Blob; name: string; read: ReadChoices; at: number } | undefined = await within("readonly", (store) =>
+    store.get(KEY),
+  );
   if (!found) return null;
   await within("readwrite", (store) => store.delete(KEY));
-  return Date.now() - found.at > KEPT_MS ? null : new File([found.blob], found.name);
+  return Date.now() - found.at > KEPT_MS ? null : { file: new File([found.blob], found.name), read: found.read };
 }

@@ -1,5 +1,5 @@
 import type { Page } from "@playwright/test";
-import { busCsv, longCsv, motorCsv, savedPage, type TestFile } from "./support/captures";
+import { busCsv, busVcd, longCsv, motorCsv, savedPage, type TestFile } from "./support/captures";
 import { call, kept, openCase, readCase, rows, titled, visit } from "./support/casework";
 import { signIn } from "./support/people";
 import { calmStorage, planFault, storageRequests } from "./support/storage";
@@ -134,4 +134,46 @@ test("files that are no capture are refused with what they are, and nothing is s
   expect(told.body.title).toContain("is a web page, not a capture");
   expect((await readCase(page, number)).captures).toHaveLength(1);
   expect((await storageRequests()).some(({ method }) => method === "DELETE")).toBe(true);
+});
+
+test("a file that has arrived before the page of its case stands is kept all the same", async ({ page }) => {
+  await signIn(page, "technician");
+  await visit(page, "/cases/new");
+  await page.getByLabel("Capture files").setInputFiles(busCsv("quick.csv"));
+  // The server draws the page of the case at once, and the answer is held back until the upload is complete.
+  const arrived = page.waitForResponse(/\/complete$/);
+  await page.route(/\/cases\/\d+(\?|$)/, async (route) => {
+    const drawn = await route.fetch();
+    await arrived;
+    await route.fulfill({ response: drawn });
+  });
+  await page.getByLabel("Title of the case").fill(titled("Quick"));
+  await page.getByRole("button", { name: "Open the case" }).click();
+  await expect(page).toHaveURL(/\/cases\/\d+/);
+  await kept(page, Number(/\/cases\/(\d+)/.exec(page.url())?.[1]));
+});
+
+test("a case takes further captures, and a file that asks is answered before it is sent", async ({ page }) => {
+  test.slow();
+  await signIn(page, "technician");
+  const number = await openCase(page, titled("Two ends"), busCsv("near-end.csv"));
+  await kept(page, number);
+  await page.getByRole("button", { name: "Add a capture" }).click();
+  const dialog = page.getByRole("dialog", { name: "Add a capture to this case" });
+  await dialog.getByLabel("Capture files").setInputFiles([motorCsv("motor.csv"), busVcd("far-end.vcd")]);
+  const motor = dialog.getByRole("region", { name: "motor.csv" });
+  await expect(motor).toContainText("No two lines of this file behave as SCL and SDA");
+  await motor.getByLabel("SCL").selectOption({ label: "U (@2)" });
+  await motor.getByLabel("SDA").selectOption({ label: "V (@3)" });
+  await motor.getByRole("button", { name: "read it again" }).click();
+  await expect(motor).toContainText("A CSV with 3 usable channels.");
+  await motor.getByRole("button", { name: "Leave out" }).click();
+  await dialog.getByRole("button", { name: "Add to the case" }).click();
+  const captures = page.getByRole("navigation", { name: "Captures of this case" });
+  await expect(captures.getByRole("button", { name: "far-end.vcd" })).toHaveAttribute("aria-pressed", "true");
+  await expect(page).toHaveURL(/[?&]capture=2/);
+  await kept(page, number);
+  expect((await readCase(page, number)).captures.map(({ name }) => name)).toEqual(["near-end.csv", "far-end.vcd"]);
+  await page.reload();
+  await expect(captures.getByRole("button", { name: "far-end.vcd" })).toHaveAttribute("aria-pressed", "true");
 });

@@ -137,12 +137,16 @@ function howItStands(summary: Facts): string {
   const { capture, limits, verdict, measurements } = summary;
   if (capture.time_base === "assumed") return "No time base is known, so no limit was judged: give the sample interval.";
   if (verdict === "fail") return `By ${limits.profile} this capture fails.`;
-  const close = measurements.filter(
+  const open = measurements.filter(
     (row) => row.verdict === "too-close" && !settledByFraming({ limitMin: row.limit_min_s, min: row.min_s }),
   );
+  const close = open.filter((row) => row.uncertain > 0);
   if (close.length > 0) return tooClose(close, limits.profile);
   if (verdict === "undecided") return "There is nothing here to judge.";
-  return `Everything that could be measured is within ${limits.profile}.`;
+  const within = `Everything that could be measured is within ${limits.profile}`;
+  if (open.length === 0) return `${within}.`;
+  const names = open.map((row) => row.parameter).join(", ");
+  return `${within}; for ${names} levels alone are no proof, as slow edges could hide a shorter interval: record volts to be sure.`;
 }
 
 function tooClose(rows: readonly Measurement[], profile: string): string {

@@ -124,8 +124,12 @@ export const MeasurementSchema = z.object({
   p1_s: z.number().nullable().optional(),
   p99_s: z.number().nullable().optional(),
   verdict: z.enum(["pass", "fail", "too-close", "not-measurable", "not-seen", "no-limit"]).optional(),
+  /** Passes that a one-threshold capture cannot prove: nearer to the least value than `bias_s`. */
+  unproven: z.int().optional(),
   /** Of one interval; 0 where times are exact to their own step. */
   uncertainty_s: z.number().optional(),
+  /** The most by which one threshold over-reports it on edges that the profile allows; 0 in volts. */
+  bias_s: z.number().optional(),
   /** From where to where it is measured. */
   points: z.string().optional(),
   /** Document, revision and table of the limit. */

@@ -79,6 +79,11 @@ function* measurementLines(summary: Summary): Generator<string> {
       .map((cell, c) => cell.padEnd(widths[c]))
       .join("  ")
       .trimEnd()}\n`;
+  const open = summary.measurements.filter((row) => (row.unproven ?? 0) > 0);
+  if (open.length > 0) {
+    const least = open.map((row) => `${row.parameter} ${duration(row.bias_s ?? 0)}`).join(", ");
+    yield `  One threshold: a pass nearer to its least value than slow edges may hide is no proof (${least}); a fail stands.\n`;
+  }
   for (const row of summary.measurements) {
     if (row.needs_rate === null || row.needs_rate === undefined) continue;
     yield `  ${row.parameter}: a value near this limit cannot be judged at this sample rate; ${rate(row.needs_rate, "S/s")} would do.\n`;
@@ -104,12 +109,14 @@ function cellsOf(row: Measurement): string[] {
 }
 
 function judgement(row: Measurement): string {
-  const close = row.uncertain === 0 ? "" : ` (${row.uncertain} too close to call)`;
+  const unproven = (row.unproven ?? 0) === 0 ? "" : `${row.unproven} by one threshold`;
+  const open = [row.uncertain === 0 ? "" : String(row.uncertain), unproven].filter((part) => part !== "").join(", ");
+  const close = open === "" ? "" : ` (${open} too close to call)`;
   switch (row.verdict) {
     case "fail":
       return `FAIL ${row.below + row.above}${close}`;
     case "too-close":
-      return `too close to call: ${row.uncertain}`;
+      return `too close to call: ${open}`;
     case "not-measurable":
       return "needs a capture in volts";
     case "not-seen":

@@ -1,7 +1,8 @@
 // In: rows, faults and what was decoded. Out: the verdict of a capture.
 // fail: a limit is certainly broken, or a fault occurred that is not merely worth knowing (wording.ts says which).
 // undecided: nothing failed, but something is too close to call, limits could not be judged, or nothing was decoded.
-// pass: everything else.
+// pass: everything else. A pass that one threshold cannot prove makes its row "too close to call" and not the capture undecided:
+// nearly every logic-level capture has one, and what the report counts did pass.
 
 import type { MeasurementRow } from "../limits/rows";
 import type { FaultKind, Report } from "./report";
@@ -16,7 +17,7 @@ export function verdictOf(
   if (rows.some((row) => row.verdict === "fail")) return "fail";
   for (const [kind, count] of faults) if (count > 0 && FAULT_WORDS[kind].fails) return "fail";
   if (!judged || transactions === 0) return "undecided";
-  return rows.some((row) => row.verdict === "too-close" && !settledByFraming(row)) ? "undecided" : "pass";
+  return rows.some((row) => row.uncertain > 0 && !settledByFraming(row)) ? "undecided" : "pass";
 }
 
 /**

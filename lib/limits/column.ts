@@ -164,6 +164,15 @@ export class Column {
     return this.max;
   }
 
+  /** How many intervals are shorter than `bound`; within 1/64 octave of it where quantiles are. */
+  countBelow(bound: number): number {
+    if (this.min >= bound) return 0;
+    let n = 0;
+    if (this.buckets === null || this.seen === null) for (let i = 0; i < this.few; i++) n += this.kept[i] < bound ? 1 : 0;
+    else for (let b = 0; b < NUMBERS; b++) if (this.buckets[b] > 0 && this.seen[b] < bound) n += this.buckets[b];
+    return Math.max(1, n);
+  }
+
   /** Pairs of a value and how many intervals lie near it (within 1/8 octave), in rising order. */
   distribution(): [number, number][] {
     const counts = new Map<number, number>();

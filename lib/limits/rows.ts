@@ -1,6 +1,7 @@
 // In: the columns of a capture and the profile it is judged by. Out: one row per parameter, with a verdict, in seconds.
 
 import { seconds, type Timebase } from "../base/time";
+import { biasNs } from "./bias";
 import type { Column, Extreme } from "./column";
 import { type ColumnSet, columnsOf } from "./columns";
 import type { Judge, Worst } from "./judge";
@@ -9,11 +10,12 @@ import * as P from "./parameters";
 import { listedAs, type Parameter } from "./parameters";
 import type { LimitTable, Profile } from "./profile";
 import { SOURCES } from "./published/sources";
-import { boundsNs } from "./ticks";
+import { boundsNs, ticksOfNs } from "./ticks";
 
 /**
- * too-close: nothing certainly broken, but something nearer to its limit than the uncertainty. not-measurable: a logic-level
- * capture cannot show it. not-seen: it did not occur. no-limit: the profile sets none, or the time base is assumed.
+ * too-close: nothing certainly broken, but something nearer to its limit than the uncertainty, or a pass of a one-threshold
+ * capture nearer to a least value than its bias (bias.ts). not-measurable: a logic-level capture cannot show it. not-seen: it did
+ * not occur. no-limit: the profile sets none, or the time base is assumed.
  */
 export type RowVerdict = "pass" | "fail" | "too-close" | "not-measurable" | "not-seen" | "no-limit";
 
@@ -33,8 +35,12 @@ export interface MeasurementRow {
   readonly below: number;
   readonly above: number;
   readonly uncertain: number;
+  /** Passes that one threshold cannot prove: nearer to the least value than `bias`. Beyond 4096 intervals within 1/64 octave. */
+  readonly unproven: number;
   readonly verdict: RowVerdict;
   readonly uncertainty: number;
+  /** The most by which one threshold over-reports this interval on edges that the profile allows; 0 in volts. */
+  readonly bias: number;
   readonly points: string;
   /** Document, revision and table of the limit; empty where there is none. */
   readonly clause: string;
@@ -128,6 +134,10 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
   const limitMin = bounds.min === null ? null : bounds.min / 1e9;
   const limitMax = bounds.max === null ? null : bounds.max / 1e9;
   const measurable = volts || !parameter.volts;
+  const biased = volts || by === null ? 0 : biasNs(parameter.symbol, by.table);
+  const least = bounds.min === null ? null : ticksOfNs(bounds.min, base);
+  const within = least === null || biased === 0 ? null : least + ticksOfNs(biased, base) + measured.doubt;
+  const unproven = within === null ? 0 : Math.max(0, column.countBelow(within) - below - uncertain);
   const nearest = seconds(Math.min(...judges.map((judge) => judge.nearest)), base);
   const needsRate = measurable ? neededRate(limitMin, limitMax, seconds(measured.doubt, base), nearest) : null;
   return {
@@ -144,11 +154,13 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     below,
     above,
     uncertain,
-    verdict: verdictOf(column.count, !measurable, limitMin === null && limitMax === null, below + above, uncertain),
+    unproven,
+    verdict: verdictOf(column.count, !measurable, limitMin === null && limitMax === null, below + above, uncertain + unproven),
     uncertainty: seconds(measured.doubt, base),
+    bias: limitMin === null ? 0 : biased / 1e9,
     points: parameter.points,
     clause: limit === null ? "" : clauseOf(limit.source),
-    note: noteOf(limit?.note ?? "", parameter, volts, limitMin),
+    note: noteOf(limit?.note ?? "", parameter, volts, limitMin !== null && biased > 0),
     needsRate,
     distribution: column.distribution().map(([from, count]) => [seconds(from, base), count] as const),
     smallest: column.count === 0 ? null : place(column.smallest(), base),
@@ -173,12 +185,12 @@ function isJudge(judge: Judge | null): judge is Judge {
   return judge !== null;
 }
 
-function verdictOf(count: number, needsVolts: boolean, noLimit: boolean, broken: number, uncertain: number): RowVerdict {
+function verdictOf(count: number, needsVolts: boolean, noLimit: boolean, broken: number, close: number): RowVerdict {
   if (needsVolts && count === 0) return "not-measurable";
   if (count === 0) return "not-seen";
   if (noLimit) return "no-limit";
   if (broken > 0) return "fail";
-  return uncertain > 0 ? "too-close" : "pass";
+  return close > 0 ? "too-close" : "pass";
 }
 
 /**
@@ -195,15 +207,16 @@ function neededRate(min: number | null, max: number | null, doubt: number, neare
   return Math.max(2 / doubt, nearest > 0 ? 1 / nearest : 0);
 }
 
-function noteOf(published: string, parameter: Parameter, volts: boolean, limitMin: number | null): string {
+function noteOf(published: string, parameter: Parameter, volts: boolean, biased: boolean): string {
   const notes = published === "" ? [] : [published];
   if (parameter.volts && !volts)
     notes.push("A logic-level capture cannot show the shape of an edge: record volts to measure this.");
-  else if (!volts && limitMin !== null && limitMin > 0) {
+  else if (biased)
     notes.push(
-      "One threshold: intervals with a least value are over-reported by part of the rise time, so a pass near the limit is not proof.",
+      "One threshold over-reports this interval by part of its edges: a fail stands, a pass nearer to the limit than that is no proof. Record volts to prove it, or judge by a profile with the tr and tf of this bus.",
     );
-  }
+  else if (!volts && /^tVD/.test(parameter.symbol))
+    notes.push("One threshold may show this by part of an edge too long or too short.");
   return notes.join(" ");
 }
 

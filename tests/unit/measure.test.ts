@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { biasNs, RISE_FROM_HALF, RISE_TO_HALF } from "@/lib/limits/bias";
 import { createMeasurement, type MeasureHead } from "@/lib/limits/measure";
 import { builtIn, type LimitTable, type Profile, type ProfileName } from "@/lib/limits/profile";
 import { type MeasurementRow, measurementRows } from "@/lib/limits/rows";
@@ -73,18 +74,29 @@ const MINIMA = ["tLOW", "tHIGH", "tHD;STA", "tSU;STA", "tSU;STO", "tBUF", "tSU;D
 describe.each(MODES)("one tick either side of each limit, %s", (name) => {
   const profile = builtIn(name);
   const usual = comfortable(profile.limits);
-  const measured = (symbol: string, v: number) => {
+  const measured = (symbol: string, v: number, head: MeasureHead = EXACT) => {
     const train = new BitTrain(usual, 5);
     INJECT[symbol](train, v, usual);
-    return row(rowsOf(train, profile), symbol);
+    return row(rowsOf(train, profile, head), symbol);
   };
+  const least = MINIMA.filter((symbol) => (profile.limits[symbol].min ?? 0) > 0);
 
-  test.each(MINIMA.filter((symbol) => (profile.limits[symbol].min ?? 0) > 0))("%s at least", (symbol) => {
+  test.each(least)("%s at least, in volts", (symbol) => {
     const limit = (profile.limits[symbol].min ?? 0) * PS;
-    expect(measured(symbol, limit)).toMatchObject({ below: 0, above: 0, uncertain: 0, verdict: "pass" });
-    expect(measured(symbol, limit + 1)).toMatchObject({ below: 0, verdict: "pass" });
+    expect(measured(symbol, limit, VOLTS)).toMatchObject({ below: 0, above: 0, uncertain: 0, unproven: 0, verdict: "pass" });
+    expect(measured(symbol, limit + 1, VOLTS)).toMatchObject({ below: 0, verdict: "pass", bias: 0 });
+    expect(measured(symbol, limit - 1, VOLTS)).toMatchObject({ below: 1, above: 0, uncertain: 0, verdict: "fail" });
+  });
+
+  // A value on the limit is counted on neither side; what one threshold shows of it is no proof.
+  test.each(least)("%s at least, in levels", (symbol) => {
+    const limit = (profile.limits[symbol].min ?? 0) * PS;
+    const hidden = Math.ceil(biasNs(symbol, profile.limits) * PS);
+    expect(measured(symbol, limit)).toMatchObject({ below: 0, above: 0, uncertain: 0, unproven: 1, verdict: "too-close" });
+    expect(measured(symbol, limit + hidden - 1)).toMatchObject({ below: 0, uncertain: 0, unproven: 1, verdict: "too-close" });
+    expect(measured(symbol, limit + hidden)).toMatchObject({ below: 0, unproven: 0, verdict: "pass" });
     const broken = measured(symbol, limit - 1);
-    expect(broken).toMatchObject({ below: 1, above: 0, uncertain: 0, verdict: "fail" });
+    expect(broken).toMatchObject({ below: 1, above: 0, uncertain: 0, unproven: 0, verdict: "fail" });
     expect(broken.violations).toHaveLength(1);
     expect(broken.violations[0]).toMatchObject({ side: "min", limit: limit / 1e12, measured: (limit - 1) / 1e12 });
   });
@@ -123,6 +135,47 @@ describe.each(MODES)("one tick either side of each limit, %s", (name) => {
     expect(shaped(limit)).toMatchObject({ count: 1, above: 0, verdict: "pass" });
     // Leads are single precision, whose step at 300 000 ps is a thirty-second of a picosecond.
     expect(shaped(limit + 1)).toMatchObject({ above: 1, verdict: "fail" });
+  });
+});
+
+describe("the bias of one threshold", () => {
+  const { limits } = builtIn("Standard-mode");
+
+  // REFERENCE 7, derived from UM10204 7.1: 39.7 % and 60.3 % of tr; 397 ns and 603 ns with tr 1000 ns.
+  test("a rise of 1000 ns crosses the half 397 ns after 30 % and 603 ns before 70 %", () => {
+    expect(RISE_TO_HALF * 1000).toBeCloseTo(397, 0);
+    expect(RISE_FROM_HALF * 1000).toBeCloseTo(603, 0);
+  });
+
+  // REFERENCE 7: tLOW by up to 0.397 tr + 0.5 tf, tHIGH by up to 0.603 tr + 0.5 tf, tSU;DAT after a rising SDA by up to 1.0 tr.
+  test.each([
+    ["tLOW", 397 + 150],
+    ["tHIGH", 603 + 150],
+    ["tSU;DAT", 1000],
+    ["tHD;STA", 300],
+    ["tSU;STO", 1000],
+    ["fSCL", 0],
+    ["tVD;DAT", 0],
+  ])("%s in Standard-mode: %d ns", (symbol, ns) => {
+    expect(biasNs(symbol, limits)).toBeCloseTo(ns, 0);
+  });
+
+  test("a profile with the bus's own edges puts fewer passes in doubt", () => {
+    const sharp = { ...limits, tr: { ...limits.tr, max: 100 }, tf: { ...limits.tf, max: 20 } };
+    expect(biasNs("tLOW", sharp)).toBeCloseTo(39.7 + 10, 0);
+  });
+
+  test("sampling and threshold add up, and what the sampling leaves open is counted there", () => {
+    const profile = builtIn("Standard-mode");
+    const sampled: MeasureHead = { ...EXACT, sampleTicks: 100 * PS };
+    const low = (ns: number) =>
+      row(
+        rowsOf(whole(new BitTrain(comfortable(limits)).start().bit(1, { low: ns * PS, hold: 0, valid: 0 })), profile, sampled),
+        "tLOW",
+      );
+    expect(low(4700)).toMatchObject({ uncertain: 1, unproven: 0, verdict: "too-close" });
+    expect(low(5300)).toMatchObject({ uncertain: 0, unproven: 1, verdict: "too-close" });
+    expect(low(5400)).toMatchObject({ uncertain: 0, unproven: 0, verdict: "pass" });
   });
 });
 

@@ -120,6 +120,7 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels, ros
     verdict: verdictOf(rows, totals(), judged, book.places.count),
     levels: levelsOf(head, levels, rows, profile),
     fault_totals: Object.fromEntries(totals()),
+    log: outcome.log,
   };
   const told = (transaction: number) => book.places.told(transaction);
   return { ...summary, lede: ledeOf(summary, { told, timebase: head.timebase, roster }) };

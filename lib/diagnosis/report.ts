@@ -175,6 +175,18 @@ export const LevelsSchema = z.object({
   rc_max_s: z.number().nullable(),
 });
 
+/** A controller log beside the capture. Times are on the capture's clock: (time in the log - offset_s) / (1 + drift). */
+export const LogSchema = z.object({
+  /** Whether the two clocks could be brought together, from the reported losses and the contests; without that no line has a place. */
+  aligned: z.boolean(),
+  entries: z.int(),
+  offset_s: z.number().nullable(),
+  drift: z.number().nullable(),
+  tolerance_s: z.number().nullable(),
+  /** Those that fall into the record, in order, at most 5,000. */
+  lines: z.array(z.object({ time_s: z.number(), controller: z.string().nullable(), message: z.string(), loss: z.boolean() })),
+});
+
 export const ReportSchema = z.object({
   schema: z.literal(REPORT_SCHEMA),
   capture: CaptureSchema,
@@ -197,11 +209,13 @@ export const ReportSchema = z.object({
   fault_totals: z.record(z.string(), z.int()).optional(),
   /** Two or three plain sentences. */
   lede: z.array(z.string()).optional(),
+  log: LogSchema.nullable().optional(),
 });
 
 export type Report = z.infer<typeof ReportSchema>;
 /** The report without its transactions: small however long the capture, so it crosses threads and is stored as a summary. */
 export type Summary = Omit<Report, "transactions"> & { readonly transactionCount: number };
+export type PlacedLog = z.infer<typeof LogSchema>;
 export type Contest = z.infer<typeof ContestSchema>;
 export type Fault = z.infer<typeof FaultSchema>;
 export type FaultKind = Fault["kind"];

@@ -9,6 +9,7 @@ import { type Census, takeCensus } from "./census";
 import { contestsOf } from "./contests";
 import type { CreateForensics, Forensics, ForensicsOptions, ForensicsOutcome, RosterEntry } from "./contract";
 import { Ledger } from "./ledger";
+import { placed } from "./log-match";
 import { lookAlikesOf } from "./look-alikes";
 import { HIGH_IN, LOW_IN, type Messages, messagesOf } from "./message";
 import type { Sampling, Signature } from "./signature";
@@ -41,7 +42,7 @@ export function openForensics(
       addresses.push(block.address.subarray(0, block.length));
     },
     tap: (index, block) => traces[index]?.push(block),
-    conclude() {
+    conclude(endTick) {
       ledger.finish();
       const step = head.sampleTicks ?? gridOf(ledger);
       const capture: Capture = {
@@ -55,13 +56,19 @@ export function openForensics(
         roster: options.roster,
         log: options.log,
       };
-      return concludeCapture(capture, traces, observer);
+      return concludeCapture(capture, traces, observer, [head.startTick, endTick]);
     },
   };
 }
 
-function concludeCapture(capture: Capture, traces: readonly TapTrace[], observer: Observer | null): ForensicsOutcome {
+function concludeCapture(
+  capture: Capture,
+  traces: readonly TapTrace[],
+  observer: Observer | null,
+  record: readonly [number, number],
+): ForensicsOutcome {
   const { ledger, messages, sampling } = capture;
+  const perSecond = capture.timebase.ticksPerSecond;
   const tapped = traces.some((t) => t.used)
     ? readTaps(ledger, messages, traces, sampling.step, (ledger.sdaLevel === null ? 0.5 : 1.6) * sampling.step)
     : null;
@@ -77,6 +84,7 @@ function concludeCapture(capture: Capture, traces: readonly TapTrace[], observer
     attribution: perTransaction(messages, found.by, ordered.index),
     stretches: stretchesOf({ ...capture, census, by: found.by, contestedUntil: found.contestedUntil }),
     lookAlikes: lookAlikesOf(capture, found),
+    log: placed(capture.log, found.alignment, record[0] / perSecond, record[1] / perSecond),
   };
 }
 

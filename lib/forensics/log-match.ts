@@ -1,6 +1,7 @@
 // In: a controller log and the times of likely contests. Out: the offset and drift between the log's clock and the capture's, found
 // from the events themselves, and what each log line then says for or against a contest.
 
+import type { PlacedLog } from "../diagnosis/report";
 import type { Capture } from "./capture";
 import type { LogEntry } from "./contract";
 import type { Evidence } from "./evidence";
@@ -91,6 +92,27 @@ function straightLine(matched: readonly { log: number; event: number }[], offset
   }
   const drift = xx > 0 ? xy / xx : 0;
   return Math.abs(drift) > 5e-4 ? { offset, drift: 0 } : { offset: y - drift * x, drift };
+}
+
+/** Lines of a log that one report carries. */
+const LINES = 5000;
+
+/** The log as the report carries it: its lines on the capture's clock, as far as they fall into the record. Null without a log. */
+export function placed(log: readonly LogEntry[], alignment: Alignment, from_s: number, to_s: number): PlacedLog | null {
+  if (log.length === 0) return null;
+  const { found, offset_s, drift, tolerance_s } = alignment;
+  if (!found) return { aligned: false, entries: log.length, offset_s: null, drift: null, tolerance_s: null, lines: [] };
+  const lines = log
+    .map((entry) => ({
+      time_s: (entry.time_s - offset_s) / (1 + drift),
+      controller: entry.controller,
+      message: entry.message,
+      loss: reportsLoss(entry),
+    }))
+    .filter((line) => line.time_s >= from_s - tolerance_s && line.time_s <= to_s + tolerance_s)
+    .sort((a, b) => a.time_s - b.time_s)
+    .slice(0, LINES);
+  return { aligned: true, entries: log.length, offset_s, drift, tolerance_s, lines };
 }
 
 /** Probability of a contest once the log is heard, and the log's share in it. */

@@ -12,7 +12,7 @@ import { neighbour } from "@/lib/view/marks";
 import type { Bounds } from "@/lib/view/scale";
 import { verdicts } from "@/lib/view/words";
 import type { Source } from "@/workers/protocol";
-import { type BenchCase, NO_CASE } from "./annotations";
+import { type BenchCase, NO_CASE, spansOf } from "./annotations";
 import { Brief } from "./Brief";
 import { Channels } from "./Channels";
 import { Help } from "./Help";
@@ -125,6 +125,7 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
   const noteField = useRef<HTMLTextAreaElement>(null);
   const tagged = useMemo(() => ascending(of.tags.map((tag) => tag.transaction)), [of.tags]);
   const noted = useMemo(() => ascending(of.notes.map((note) => note.transaction)), [of.notes]);
+  const spans = useMemo(() => spansOf(of), [of]);
   const names = useMemo(() => namesOf(of, settings), [of, settings]);
   // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place, the version says when
   const rows = useMemo(
@@ -213,6 +214,7 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
           onSpan={(strip) => change({ reading: "strip", strip })}
           tagged={tagged}
           noted={noted}
+          spans={spans}
         />
         <div className="mt-3">
           <Readings
@@ -227,6 +229,7 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
             names={names}
             searchField={searchField}
             onView={onView}
+            spans={spans}
           />
         </div>
         <Brief capture={capture} of={of} names={names} />

@@ -9,6 +9,7 @@ import { Search } from "@/components/ledger/Search";
 import { ContestReading } from "@/components/race/ContestReading";
 import { Stack } from "@/components/stack/Stack";
 import { InView } from "@/components/strip/InView";
+import { LogInView } from "@/components/strip/LogInView";
 import { StripTrace } from "@/components/strip/StripTrace";
 import { Tabs } from "@/components/ui/Tabs";
 import { type Capture, longest, usualScale } from "@/lib/view/capture";
@@ -16,7 +17,7 @@ import { addressesSeen, SHOWS, type Show } from "@/lib/view/filter";
 import { count } from "@/lib/view/format";
 import { transactionNear } from "@/lib/view/hit";
 import { READINGS, type Reading, type ViewState } from "@/lib/view/state";
-import type { BenchCase } from "./annotations";
+import type { BenchCase, NamedSpan } from "./annotations";
 
 export interface ReadingsProps {
   capture: Capture;
@@ -30,6 +31,8 @@ export interface ReadingsProps {
   names: ReadonlyMap<number, string>;
   searchField: RefObject<HTMLInputElement | null>;
   onView: (first: number, last: number) => void;
+  /** Notes and tags on stretches of the record. */
+  spans: readonly NamedSpan[];
 }
 
 const READING_WORDS: Record<Reading, string> = {
@@ -91,7 +94,7 @@ export function Readings(props: ReadingsProps) {
   );
 }
 
-function StripReading({ capture, version, state, onState, names }: ReadingsProps) {
+function StripReading({ capture, version, state, onState, names, spans }: ReadingsProps) {
   return (
     <>
       <StripTrace
@@ -104,6 +107,7 @@ function StripReading({ capture, version, state, onState, names }: ReadingsProps
           const near = transactionNear(capture.ledger, tick);
           if (near !== null) onState({ selected: near });
         }}
+        spans={spans}
       />
       <InView
         capture={capture}
@@ -112,6 +116,7 @@ function StripReading({ capture, version, state, onState, names }: ReadingsProps
         names={names}
         onSelect={(selected) => onState({ selected })}
       />
+      <LogInView capture={capture} span={state.strip ?? capture.record} />
     </>
   );
 }

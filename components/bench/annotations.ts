@@ -66,3 +66,20 @@ export interface BenchCase {
 }
 
 export const NO_CASE: BenchCase = { notes: [], tags: [], tagKinds: [], finding: "", devices: [] };
+
+/** A stretch that carries a note or a tag. */
+export interface NamedSpan extends Span {
+  readonly kind: "note" | "tag";
+  readonly label: string;
+}
+
+/** Notes and tags on stretches of the record, each with its footnote number or its word. */
+export function spansOf({ notes, tags, tagKinds }: BenchCase): NamedSpan[] {
+  const words = new Map(tagKinds.map((kind) => [kind.id, kind.name]));
+  return [
+    ...notes.flatMap(({ span, number }) => (span === null ? [] : [{ ...span, kind: "note" as const, label: String(number) }])),
+    ...tags.flatMap(({ span, kind }) =>
+      span === null ? [] : [{ ...span, kind: "tag" as const, label: words.get(kind) ?? "tag" }],
+    ),
+  ];
+}

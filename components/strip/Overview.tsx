@@ -19,6 +19,7 @@ export interface OverviewProps {
   onSpan: (span: Bounds) => void;
   tagged: readonly number[];
   noted: readonly number[];
+  spans: readonly { readonly kind: "tag" | "note"; readonly from: number }[];
 }
 
 const HEIGHT = 46;
@@ -100,7 +101,7 @@ function paint(canvas: HTMLCanvasElement, scene: OverviewScene, shown: Bounds | 
 
 /** The whole recording in one line: how busy the bus was, and where faults, contests, tags and notes stand. */
 export function Overview(props: OverviewProps) {
-  const { capture, version, tagged, noted } = props;
+  const { capture, version, tagged, noted, spans } = props;
   const ink = useInk();
   const canvas = useRef<HTMLCanvasElement>(null);
   const [width, setWidth] = useState(0);
@@ -118,10 +119,10 @@ export function Overview(props: OverviewProps) {
   const scene = useMemo(() => {
     const { edges, ledger, summary, record, head } = capture;
     return overviewScene(
-      { edges, ledger, summary, record, tagged, noted, ticksPerSecond: head.timebase.ticksPerSecond },
+      { edges, ledger, summary, record, tagged, noted, spans, ticksPerSecond: head.timebase.ticksPerSecond },
       Math.max(1, width),
     );
-  }, [capture, version, tagged, noted, width]);
+  }, [capture, version, tagged, noted, spans, width]);
 
   const shown = drag
     ? { from: tickAt(scene.scale, Math.min(drag.from, drag.to)), to: tickAt(scene.scale, Math.max(drag.from, drag.to)) }

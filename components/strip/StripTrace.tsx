@@ -9,7 +9,7 @@ import { duration, instant, span as spanWords, timeDigits } from "@/lib/view/for
 import { type Bounds, endOf, fitted, panned, type TimeScale, zoomed } from "@/lib/view/scale";
 import { nearestEdge } from "@/lib/view/strip";
 import { useInk } from "./ink";
-import { type Live, makePlot, type StripTraceProps, show } from "./plot";
+import { hasLog, type Live, makePlot, type StripTraceProps, show } from "./plot";
 
 /** The same for those without keys and wheel. */
 const STEPS = [
@@ -52,7 +52,9 @@ export function StripTrace(props: StripTraceProps) {
   const latest = useRef({ shown, bounds });
   latest.current = { shown, bounds };
 
-  // The plot is made again for another capture or theme; everything else is told to it.
+  const logged = hasLog(capture);
+  // The plot is made again for another capture, theme, or a log that found its place; everything else is told to it.
+  // biome-ignore lint/correctness/useExhaustiveDependencies: whether there is a log decides how tall the plot is
   useEffect(() => {
     const element = host.current;
     if (!element || !ink) return;
@@ -93,12 +95,12 @@ export function StripTrace(props: StripTraceProps) {
       made.destroy();
       plot.current = null;
     };
-  }, [capture, ink]);
+  }, [capture, ink, logged]);
 
   // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place, the version says when
   useEffect(() => {
     if (plot.current) show(plot.current, capture, { from: shown.from, to: shown.to });
-  }, [capture, version, shown.from, shown.to, selected]);
+  }, [capture, version, shown.from, shown.to, selected, props.spans]);
 
   function act(key: string): boolean {
     const next = keyed(key, fitted(shown, plot.current?.over.clientWidth ?? 800), bounds);

@@ -2,6 +2,7 @@ import uPlot from "uplot";
 import type { Capture } from "@/lib/view/capture";
 import { axisTime, volts } from "@/lib/view/format";
 import { type Bounds, endOf, fitted, roundStep, type TimeScale } from "@/lib/view/scale";
+import { paintLog, paintSpans, type Span } from "./beside";
 import type { Ink } from "./ink";
 import { levelData } from "./levels";
 import { type Lane, paintLanes, paintMarks, paintScore } from "./paint";
@@ -15,6 +16,8 @@ export interface StripTraceProps {
   onSpan: (span: Bounds) => void;
   selected: number | null;
   onSelectAt: (tick: number) => void;
+  /** Notes and tags on stretches of the record. */
+  spans: readonly Span[];
 }
 
 const GUTTER = 56;
@@ -25,6 +28,8 @@ const SCORE = 34;
 const ANALOG = 84;
 const ANALOG_GAP = 14;
 const AXIS = 34;
+/** Height of the lane of a controller log. */
+const LOG = 26;
 
 function lanesOf(capture: Capture): Lane[] {
   const lanes: Lane[] = [];
@@ -59,16 +64,25 @@ interface Plan {
   readonly lanes: readonly Lane[];
   readonly score: number;
   readonly digital: number;
+  /** Top of the lane of the controller log, or null without one. */
+  readonly log: number | null;
   /** Tops of the voltage lanes of SCL and SDA; none for a digital capture. */
   readonly levels: readonly number[];
   readonly height: number;
 }
 
 function planOf(capture: Capture): Plan {
-  const { lanes, score, digital } = place(lanesOf(capture));
+  const { lanes, score, digital: lines } = place(lanesOf(capture));
+  const log = hasLog(capture) ? lines : null;
+  const digital = log === null ? lines : lines + LOG;
   const analog = capture.head.levels === "volts" && capture.head.vdd_v !== null;
   const levels = analog ? [0, 1].map((lane) => digital + ANALOG_GAP + lane * (ANALOG + ANALOG_GAP)) : [];
-  return { lanes, score, digital, levels, height: digital + levels.length * (ANALOG + ANALOG_GAP) };
+  return { lanes, score, digital, log, levels, height: digital + levels.length * (ANALOG + ANALOG_GAP) };
+}
+
+/** Whether a controller log has found its place beside the capture, and so gets a lane. */
+export function hasLog({ summary }: Capture): boolean {
+  return (summary?.log?.lines.length ?? 0) > 0;
 }
 
 /** Volts shown in a voltage lane. */
@@ -177,11 +191,19 @@ function drawLanes(plot: uPlot, plan: Plan, { props, ink }: Live, scale: TimeSca
     paintLevels(context, props.capture, top, scale, ink);
     context.fillText(lane === 0 ? "SCL" : "SDA", -8, top + 10);
   });
+  if (plan.log !== null) {
+    context.fillStyle = ink.quiet;
+    context.textAlign = "right";
+    context.fillText("log", -8, plan.log + 12);
+  }
   context.beginPath();
   context.rect(0, 0, scale.width, plot.bbox.height / ratio);
   context.clip();
   paintLanes(context, plan.lanes, scale, props.capture.record, ink);
   paintScore(context, props.capture, scale, plan.score, ink);
+  const { log } = props.capture.summary ?? {};
+  if (log && plan.log !== null) paintLog(context, log, scale, props.capture.head.timebase.ticksPerSecond, plan.log, ink);
+  paintSpans(context, props.spans, scale, ink);
   paintMarks(context, props.capture, scale, props.selected, plan.digital - 4, ink);
   context.restore();
 }

@@ -74,6 +74,8 @@ export interface OverviewInput {
   readonly record: Bounds;
   readonly tagged: readonly number[];
   readonly noted: readonly number[];
+  /** Stretches of the record that carry a tag or a note of their own, by their first tick. */
+  readonly spans: readonly { readonly kind: "tag" | "note"; readonly from: number }[];
 }
 
 export function overviewScene(input: OverviewInput, width: number): OverviewScene {
@@ -93,6 +95,7 @@ export function overviewScene(input: OverviewInput, width: number): OverviewScen
   }
   for (const transaction of input.tagged) places.push({ kind: "tag", tick: at(transaction), transaction });
   for (const transaction of input.noted) places.push({ kind: "note", tick: at(transaction), transaction });
+  for (const { kind, from } of input.spans) places.push({ kind, tick: from, transaction: null });
   return { scale, density: densityOf(input.edges, scale), pitch: PITCH, marks: gathered(places, scale) };
 }
 

@@ -164,6 +164,16 @@ describe("forensics on simulated buses", () => {
     expect(outcome.lookAlikes).toHaveLength(1);
     expect(outcome.lookAlikes[0]).toMatchObject({ kind: "look-alike", transaction: innocent });
     expect(outcome.lookAlikes[0].detail).toContain("Wire legal, flag set");
+    // The report carries the log on the capture's clock: each line within its tolerance of where it happened.
+    expect(outcome.log).toMatchObject({ aligned: true, entries: 13 });
+    expect(outcome.log?.drift).toBeCloseTo(80e-6, 5);
+    const happened = [...yields.map((y) => y.decided_s), transactions[innocent].end_s].sort((a, b) => a - b);
+    expect(outcome.log?.lines.map((line) => line.loss)).toEqual(happened.map(() => true));
+    for (const [i, line] of (outcome.log?.lines ?? []).entries())
+      expect(Math.abs(line.time_s - happened[i])).toBeLessThan(outcome.log?.tolerance_s ?? 0);
+    const silent = concludeTrial(setting, false, { roster: [], log: [spurious] }, plain.recording).outcome;
+    expect(silent.log).toMatchObject({ aligned: false, entries: 1, lines: [] });
+    expect(plain.outcome.log).toBeNull();
   });
 
   test("a target that goes on holding SDA after its controller was reset is a look-alike, not a contest", () => {

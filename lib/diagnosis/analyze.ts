@@ -16,6 +16,7 @@ import { levelsOf } from "./levels";
 import { resolveProfile } from "./profile-file";
 import { REPORT_SCHEMA, type Summary } from "./report";
 import { RuleBook } from "./rulebook";
+import { withRunts } from "./runts";
 import { verdictOf } from "./verdict";
 
 /** Analyses one capture. Rejects only where the listener threw (a cancelled run) or we are at fault. */
@@ -64,13 +65,15 @@ export async function analyze(
   if (!read.ok) return read;
   const tail = read.value;
   decoder.finish(tail.endTick);
-  const outcome = forensics.conclude(tail.endTick);
+  const concluded = forensics.conclude(tail.endTick);
   const { measured } = measurement;
   const chosen = chosenProfile(measured, tried, settings.cb_pf);
-  const rows = judgedRows(measured, chosen, head.levels === "volts", outcome.stretches, (transaction) =>
+  const rows = judgedRows(measured, chosen, head.levels === "volts", concluded.stretches, (transaction) =>
     book.places.opening(transaction),
   );
-  book.conclude({ head, tail, rows, profile: chosen?.profile ?? null, lookAlikes: outcome.lookAlikes });
+  const outcome = { ...concluded, stretches: withRunts(concluded.stretches, rows) };
+  const { lookAlikes, stretches } = outcome;
+  book.conclude({ head, tail, rows, profile: chosen?.profile ?? null, lookAlikes, stretches });
   const summary = summaryOf({
     head,
     tail,
@@ -119,6 +122,7 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels, ros
     },
     verdict: verdictOf(rows, totals(), judged, book.places.count),
     levels: levelsOf(head, levels, rows, profile),
+    harmless: book.harmless(),
     fault_totals: Object.fromEntries(totals()),
     log: outcome.log,
   };

@@ -2,7 +2,8 @@
 // kind only so many are listed, and the rest are counted.
 
 import { seconds, type Timebase } from "../base/time";
-import type { Fault, FaultKind } from "./report";
+import { HarmlessList } from "./harmless";
+import type { Fault, FaultKind, Harmless, HarmlessKind } from "./report";
 import type { Findings } from "./rule";
 
 /** Faults listed per kind. */
@@ -19,7 +20,19 @@ export class FaultList implements Findings {
   private readonly found: Found[] = [];
   private readonly counts = new Map<FaultKind, number>();
 
-  constructor(readonly base: Timebase) {}
+  private readonly lawful: HarmlessList;
+
+  constructor(readonly base: Timebase) {
+    this.lawful = new HarmlessList(base);
+  }
+
+  harmless(kind: HarmlessKind, tick: number, transaction?: number | null): void {
+    this.lawful.add(kind, tick, transaction);
+  }
+
+  harmlessOnes(transactionAt: (tick: number) => number | null): Harmless[] {
+    return this.lawful.told(transactionAt);
+  }
 
   add(kind: FaultKind, tick: number, detail: string, transaction?: number | null): void {
     const count = (this.counts.get(kind) ?? 0) + 1;

@@ -4,6 +4,7 @@
 import { ticks } from "../base/time";
 import { BIT, type BitBlock, LOST, OUTSIDE, START, STOP } from "../engine/bits/bits";
 import type { CaptureHead } from "../engine/samples/reader";
+import type { Findings } from "./rule";
 
 export type MomentKind =
   /** An SCL high far shorter than the one before it in the same transaction. */
@@ -23,7 +24,9 @@ export type MomentKind =
   /** Volts: SDA was still rising when SCL had risen. */
   | "slow-rise"
   /** Volts: zeros of one read byte stand at two levels. */
-  | "two-levels";
+  | "two-levels"
+  /** SDA went high and low again within one SCL low, between two zeros of one byte. `count`: SCL pulses before it. */
+  | "notch";
 
 export interface Moment {
   readonly kind: MomentKind;
@@ -75,6 +78,7 @@ export class Moments {
   private read = false;
   private lastHigh = Number.NaN;
   private sdaFell = Number.NaN;
+  private lastValue = 1;
   /** The condition before this one, while no bit came between. */
   private conditionTick = Number.NaN;
   private conditionInByte = false;
@@ -87,7 +91,10 @@ export class Moments {
   private levels = new Float64Array(8);
   private levelCount = 0;
 
-  constructor(head: Pick<CaptureHead, "timebase" | "vdd_v">) {
+  constructor(
+    head: Pick<CaptureHead, "timebase" | "vdd_v">,
+    private readonly findings: Pick<Findings, "harmless">,
+  ) {
     this.longLow = head.timebase.origin === "assumed" ? Number.POSITIVE_INFINITY : ticks(LONG_LOW_S, head.timebase);
     const vdd = head.vdd_v ?? Number.NaN;
     this.lowLimit = (vdd > 2 ? 0.4 : 0.2 * vdd) + LEVEL_SLACK * vdd;
@@ -111,6 +118,11 @@ export class Moments {
     return this.pulse;
   }
 
+  /** SCL pulses of the byte so far, 0 to 8; -1 where no transaction is open or none of its bits has come. */
+  get slot(): number {
+    return this.open && this.pulse > 0 ? this.pulse % 9 : -1;
+  }
+
   bits(block: BitBlock): void {
     const { kind, length } = block;
     for (let i = 0; i < length; i++) {
@@ -123,7 +135,7 @@ export class Moments {
 
   // The many: bits in which nothing happens. Does what `bit` does, from locals alone; hands `bit` the first that is not calm.
   private calm(block: BitBlock, from: number): number {
-    const { kind, flags, value, length, fall, tick, end, sdaLast } = block;
+    const { kind, flags, value, length, fall, tick, end, sdaFirst, sdaLast } = block;
     if (block.leads !== null || this.clearing >= 0) {
       this.bit(block, from);
       return from + 1;
@@ -136,6 +148,7 @@ export class Moments {
       const whole = end[i] - fall[i];
       const calm = high <= HELD_BITS * period && high >= RUNT_SHARE * lastHigh && rose - fall[i] < this.longLow;
       if (!calm || (flags[i] & OUTSIDE) !== 0) break;
+      if (sdaFirst[i] < sdaLast[i]) this.twice(block, i, pulse);
       if (value[i] === 0 && !Number.isNaN(sdaLast[i])) sdaFell = sdaLast[i];
       if (pulse === 7) read = value[i] === 1;
       pulse++;
@@ -147,7 +160,10 @@ export class Moments {
     this.pulse = pulse;
     this.read = read;
     this.sdaFell = sdaFell;
-    if (i > from) this.conditionTick = Number.NaN;
+    if (i > from) {
+      this.conditionTick = Number.NaN;
+      this.lastValue = value[i - 1];
+    }
     if (i < length && kind[i] === BIT) {
       this.bit(block, i);
       return i + 1;
@@ -163,6 +179,7 @@ export class Moments {
     const outside = (block.flags[i] & OUTSIDE) !== 0;
     if (rise - fall >= this.longLow) this.note("long-low", fall, rise - fall);
     const last = block.sdaLast[i];
+    if (!outside && block.sdaFirst[i] < last) this.twice(block, i, this.pulse);
     if (value === 0 && !Number.isNaN(last)) this.sdaFell = last;
     if (outside) this.outsideBit(value, rise);
     else {
@@ -171,6 +188,7 @@ export class Moments {
     }
     if (this.clearing >= 0) this.clearingBit(value);
     this.conditionTick = Number.NaN;
+    this.lastValue = value;
     const high = end - rise;
     if (high > HELD_BITS * this.period && value === 0) this.held(rise, high);
     else if (high < RUNT_SHARE * this.lastHigh) this.note("runt", rise, high);
@@ -178,6 +196,17 @@ export class Moments {
     const period = end - fall;
     if (period > 0) this.learn(period);
     if (block.leads !== null) this.volts(block, i, value);
+  }
+
+  // SDA changed more than once in the low before this bit: lawful, whoever did it. `pulse` counts the pulses before this one.
+  private twice(block: BitBlock, i: number, pulse: number): void {
+    const slot = pulse % 9;
+    const first = block.sdaFirst[i];
+    const handover = pulse > 0 && (slot === 0 || slot === 8);
+    this.findings.harmless(handover ? "ack-handover" : "low-pulse", first, this.transaction);
+    if (handover || pulse === 0) return;
+    const before = i > 0 ? block.value[i - 1] : this.lastValue;
+    if (before === 0 && block.value[i] === 0) this.note("notch", first, block.sdaLast[i] - first, pulse);
   }
 
   // A median that follows: up a little when the period is longer, down a little when it is shorter.

@@ -50,6 +50,8 @@ export const StretchSchema = z.object({
   low_s: z.number(),
   excess_s: z.number(),
   by: z.enum(["target", "controller", "unknown"]),
+  /** Length of the first SCL high after it, where that is shorter than tHIGH allows. */
+  runt_s: z.number().optional(),
 });
 
 export const EvidenceSchema = z.object({
@@ -95,6 +97,8 @@ export const FAULT_KINDS = [
   "slow-rise",
   "between-thresholds",
   "address-collision",
+  "suspected-collision",
+  "runt-after-stretch",
   "bit-slip",
   "look-alike",
 ] as const;
@@ -104,6 +108,15 @@ export const FaultSchema = z.object({
   transaction: z.int().nullable(),
   time_s: z.number(),
   detail: z.string(),
+});
+
+export const HARMLESS_KINDS = ["read-end-nack", "ack-handover", "low-pulse"] as const;
+
+/** What looks like a fault and is none: every occurrence is counted, the first hundred are listed. */
+export const HarmlessSchema = z.object({
+  kind: z.enum(HARMLESS_KINDS),
+  count: z.int(),
+  places: z.array(z.object({ transaction: z.int().nullable(), time_s: z.number() })),
 });
 
 const occurrence = z.object({ transaction: z.int().nullable(), time_s: z.number(), measured_s: z.number() });
@@ -205,6 +218,7 @@ export const ReportSchema = z.object({
   }),
   verdict: z.enum(["pass", "fail", "undecided"]),
   levels: LevelsSchema.nullable().optional(),
+  harmless: z.array(HarmlessSchema).optional(),
   /** Faults of each kind, listed or not. */
   fault_totals: z.record(z.string(), z.int()).optional(),
   /** Two or three plain sentences. */
@@ -219,6 +233,8 @@ export type PlacedLog = z.infer<typeof LogSchema>;
 export type Contest = z.infer<typeof ContestSchema>;
 export type Fault = z.infer<typeof FaultSchema>;
 export type FaultKind = Fault["kind"];
+export type Harmless = z.infer<typeof HarmlessSchema>;
+export type HarmlessKind = Harmless["kind"];
 export type Stretch = z.infer<typeof StretchSchema>;
 export type Measurement = z.infer<typeof MeasurementSchema>;
 export type Violation = z.infer<typeof ViolationSchema>;

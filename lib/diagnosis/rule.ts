@@ -7,7 +7,7 @@ import type { CaptureHead, CaptureTail } from "../engine/samples/reader";
 import type { Profile } from "../limits/profile";
 import type { MeasurementRow } from "../limits/rows";
 import type { Moment } from "./moments";
-import type { Fault, FaultKind } from "./report";
+import type { Fault, FaultKind, HarmlessKind, Stretch } from "./report";
 
 /** One transaction as a rule sees it. The same object is filled again for each transaction: keep numbers, not the row. */
 export interface Row {
@@ -46,6 +46,7 @@ export interface End {
   /** Moments that lie in no transaction. */
   readonly outside: readonly Moment[];
   readonly lookAlikes: readonly Fault[];
+  readonly stretches: readonly Stretch[];
   /** Last transaction, and pulses seen in it; -1 where there was none. */
   readonly lastTransaction: number;
   readonly lastPulses: number;
@@ -56,12 +57,15 @@ export interface Findings {
   readonly base: Timebase;
   /** `transaction`: undefined is found by time when the record has ended; null belongs to none. */
   add(kind: FaultKind, tick: number, detail: string, transaction?: number | null): void;
+  /** The same for what is no fault and is worth naming. */
+  harmless(kind: HarmlessKind, tick: number, transaction?: number | null): void;
 }
 
 /** A rule at work on one capture. */
 export interface Watch {
   transaction?(row: Row): void;
-  spike?(tick: number, width: number, line: "scl" | "sda", sclHigh: boolean | null): void;
+  /** `slot`: SCL pulses of its byte before it, 0 to 8; -1 where no transaction is open. */
+  spike?(tick: number, width: number, line: "scl" | "sda", sclHigh: boolean | null, slot: number): void;
   remnant?(remnant: Remnant): void;
   conclude?(end: End): void;
 }

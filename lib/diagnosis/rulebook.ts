@@ -10,7 +10,7 @@ import type { CaptureHead } from "../engine/samples/reader";
 import { FaultList } from "./findings";
 import { type Moment, Moments } from "./moments";
 import { LineWatch, TransactionPlaces } from "./places";
-import type { Fault } from "./report";
+import type { Fault, Harmless } from "./report";
 import type { End, Row, Watch } from "./rule";
 import { RULES } from "./rules";
 import { FAULT_WORDS } from "./wording";
@@ -31,7 +31,7 @@ export class RuleBook {
 
   constructor(head: CaptureHead) {
     this.list = new FaultList(head.timebase);
-    this.moments = new Moments(head);
+    this.moments = new Moments(head, this.list);
     this.watches = Object.values(RULES).map((rule) => rule.watch(this.list));
     this.forRows = this.watches.filter((watch) => watch.transaction !== undefined);
     this.forSpikes = this.watches.filter((watch) => watch.spike !== undefined);
@@ -48,7 +48,8 @@ export class RuleBook {
   spike(spike: Spike): void {
     const { tick, width, line } = spike;
     const sclHigh = line === "sda" ? this.lines.sclHighAt(tick) : null;
-    for (const watch of this.forSpikes) watch.spike?.(tick, width, line, sclHigh);
+    const { slot } = this.moments;
+    for (const watch of this.forSpikes) watch.spike?.(tick, width, line, sclHigh, slot);
   }
 
   remnant(remnant: Remnant): void {
@@ -64,7 +65,7 @@ export class RuleBook {
     if (block.length > 0) this.lastCloses = block.closes[block.length - 1];
   }
 
-  conclude(end: Pick<End, "head" | "tail" | "rows" | "profile" | "lookAlikes">): void {
+  conclude(end: Pick<End, "head" | "tail" | "rows" | "profile" | "lookAlikes" | "stretches">): void {
     const whole: End = {
       ...end,
       lines: this.lines.atEnd(),
@@ -78,6 +79,7 @@ export class RuleBook {
   }
 
   faults = (): Fault[] => this.list.faults((tick) => this.places.at(tick));
+  harmless = (): Harmless[] => this.list.harmlessOnes((tick) => this.places.at(tick));
   totals = () => this.list.totals();
 
   warnings(): Warning[] {

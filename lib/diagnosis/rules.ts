@@ -16,6 +16,7 @@ import { missingStop } from "./rules/missing-stop";
 import { pecMismatch } from "./rules/pec-mismatch";
 import { phantomStart } from "./rules/phantom-start";
 import { reservedAddress } from "./rules/reserved-address";
+import { runtAfterStretch } from "./rules/runt-after-stretch";
 import { sclStuckLow } from "./rules/scl-stuck-low";
 import { sdaChangeWhileHigh } from "./rules/sda-change-while-high";
 import { sdaStuckLow } from "./rules/sda-stuck-low";
@@ -23,6 +24,7 @@ import { shortByte } from "./rules/short-byte";
 import { slowRise } from "./rules/slow-rise";
 import { smbusTimeout } from "./rules/smbus-timeout";
 import { spike } from "./rules/spike";
+import { suspectedCollision } from "./rules/suspected-collision";
 import { voidMessage } from "./rules/void-message";
 
 export const RULES: Readonly<Record<FaultKind, Rule>> = {
@@ -40,6 +42,7 @@ export const RULES: Readonly<Record<FaultKind, Rule>> = {
   "pec-mismatch": pecMismatch,
   "phantom-start": phantomStart,
   "reserved-address": reservedAddress,
+  "runt-after-stretch": runtAfterStretch,
   "scl-stuck-low": sclStuckLow,
   "sda-change-while-high": sdaChangeWhileHigh,
   "sda-stuck-low": sdaStuckLow,
@@ -47,5 +50,6 @@ export const RULES: Readonly<Record<FaultKind, Rule>> = {
   "slow-rise": slowRise,
   "smbus-timeout": smbusTimeout,
   spike: spike,
+  "suspected-collision": suspectedCollision,
   "void-message": voidMessage,
 };

@@ -1,6 +1,7 @@
 // In: a summary and the transactions one by one. Out: the report for reading, line by line.
 
 import { duration, hex, instant, rate } from "./format";
+import { HARMLESS_WORDS } from "./harmless";
 import type { Measurement, Summary } from "./report";
 import type { ReportTransaction } from "./transaction";
 import { FAULT_WORDS } from "./wording";
@@ -21,6 +22,7 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
   const kinds = [...new Set(summary.faults.map((fault) => fault.kind))];
   if (kinds.length > 0) yield "\nWhat to do\n";
   for (const kind of kinds) yield `  ${FAULT_WORDS[kind].title}: ${FAULT_WORDS[kind].meaning} ${FAULT_WORDS[kind].advice}\n`;
+  yield* harmlessLines(summary);
   yield* listed("Contests", summary.contests, (contest) => {
     const { kept, yielded } = contest;
     const parties = kept === null && yielded === null ? "" : `; ${kept ?? "?"} kept the bus, ${yielded ?? "?"} yielded`;
@@ -28,9 +30,23 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
     return `  #${contest.transaction} decided at ${instant(contest.decided_s)}, byte ${contest.byte} bit ${contest.bit}${parties}; probability ${contest.probability.toFixed(2)} (${contest.grade}); ${evidence}`;
   });
   yield* listed("Clock stretching", summary.stretches, (stretch) => {
-    return `  #${stretch.transaction} byte ${stretch.byte} bit ${stretch.bit}: SCL low for ${duration(stretch.low_s)}, ${duration(stretch.excess_s)} more than usual, by ${stretch.by}`;
+    return `  #${stretch.transaction} byte ${stretch.byte} bit ${stretch.bit}: SCL low for ${duration(stretch.low_s)}, ${duration(stretch.excess_s)} more than usual, by ${stretch.by}${stretch.runt_s === undefined ? "" : `; the first high after it is a runt of ${duration(stretch.runt_s)}`}`;
   });
   yield `\nVerdict: ${summary.verdict} (${summary.limits.profile}${summary.limits.source === "" ? "" : `, ${summary.limits.source}`})\n`;
+}
+
+/** Places of each harmless thing that are printed. */
+const PLACES = 5;
+
+function* harmlessLines({ harmless = [] }: Summary): Generator<string> {
+  if (harmless.length === 0) return;
+  yield "\nHarmless, and no fault\n";
+  for (const { kind, count, places } of harmless) {
+    const at = places
+      .slice(0, PLACES)
+      .map((place) => (place.transaction === null ? instant(place.time_s) : `#${place.transaction}`));
+    yield `  ${HARMLESS_WORDS[kind].title}: ${count}, ${count > at.length ? "first " : ""}in ${at.join(", ")}. ${HARMLESS_WORDS[kind].meaning}\n`;
+  }
 }
 
 function* captureLines({ capture }: Summary): Generator<string> {

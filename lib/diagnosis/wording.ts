@@ -134,6 +134,21 @@ export const FAULT_WORDS: Readonly<Record<FaultKind, Words>> = {
     advice: "Give one of them another address, or take it off the bus and read again.",
     fails: true,
   },
+  "suspected-collision": {
+    title: "Perhaps two targets on one address",
+    meaning:
+      "Data read moves as if two devices answered with different bytes. A recording of levels cannot prove it; other mechanisms may look the same.",
+    advice:
+      "Record volts, where two drivers show two low levels, or a drive tap at one device; or take the device off the bus and see whether the address still answers.",
+    fails: false,
+  },
+  "runt-after-stretch": {
+    title: "Runt clock after a stretch",
+    meaning: "When the stretched SCL was let go, the first high was shorter than tHIGH: devices may or may not count this clock.",
+    advice:
+      "Look at the controller's handling of clock stretching: lower its rate, or use one that times its high from the rise it sees. From here on bits may be off by one.",
+    fails: true,
+  },
   "bit-slip": {
     title: "Bits slipped after a runt",
     meaning: "A clock pulse was too short for some devices, which then count one bit less than the others.",

@@ -36,6 +36,8 @@ const SHORT_WORDS: Record<FaultKind, string> = {
   "slow-rise": "slow rise",
   "between-thresholds": "between thresholds",
   "address-collision": "two targets answer",
+  "suspected-collision": "perhaps two targets",
+  "runt-after-stretch": "runt after a stretch",
   "bit-slip": "bit slip",
   "look-alike": "looks like lost arbitration",
 };

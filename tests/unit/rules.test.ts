@@ -31,9 +31,13 @@ describe("harmless things are no faults", () => {
     expect(report).toMatchObject({ verdict: "pass", limits: { profile: "Standard-mode", source: "UM10204" } });
   });
 
-  test("a controller's NACK that ends a read", async () => {
-    const report = await scripted(new LineScript().start().byte(0xa1).byte(0x12).byte(0x34, false).stop());
+  test("a controller's NACK that ends a read is named with its place", async () => {
+    const bus = new LineScript().write(0xa0, 1).start().byte(0xa1).byte(0x12).byte(0x34, false).stop();
+    const report = await scripted(bus);
     expect(report.faults).toEqual([]);
+    expect(report.harmless).toEqual([
+      { kind: "read-end-nack", count: 1, places: [{ transaction: 1, time_s: expect.any(Number) }] },
+    ]);
   });
 
   test.each([
@@ -44,10 +48,29 @@ describe("harmless things are no faults", () => {
     expect((await scripted(new LineScript().start().byte(byte, false).stop().write(0xa0, 1))).faults).toEqual([]);
   });
 
-  test("a handover pulse on SDA while SCL is low", async () => {
+  test.each([
+    ["shorter than tSP", 40],
+    ["longer than tSP", 300],
+  ])("a handover pulse on SDA while SCL is low, %s", async (_, width) => {
     const bus = new LineScript().start().byte(0xa0);
-    bus.wait(200).move(0, 1).wait(40).move(0, 0);
-    expect((await scripted(bus.byte(7).stop())).faults).toEqual([]);
+    bus.wait(200).move(0, 1).wait(width).move(0, 0);
+    const report = await scripted(bus.byte(7).stop().write(0xa0, 1));
+    expect(report.faults).toEqual([]);
+    expect(report.harmless).toEqual([
+      { kind: "ack-handover", count: 1, places: [{ transaction: 0, time_s: expect.any(Number) }] },
+    ]);
+    expect(report.transactions[0].bytes.map((byte) => byte.value)).toEqual([7]);
+  });
+
+  test.each([40, 300])("a pulse of %d ns on SDA while SCL is low inside a byte is no handover", async (width) => {
+    const bus = new LineScript().start().byte(0xa0);
+    for (const value of [0, 0, 0] as const) bus.bit(value);
+    bus.wait(200).move(0, 1).wait(width).move(0, 0);
+    for (const value of [0, 0, 0, 1, 1, 0] as const) bus.bit(value);
+    const report = await scripted(bus.stop());
+    expect(report.faults).toEqual([]);
+    expect(report.harmless).toMatchObject([{ kind: "low-pulse", count: 1 }]);
+    expect(report.transactions[0].bytes.map((byte) => byte.value)).toEqual([3]);
   });
 
   test("a long stretch, where no SMBus profile judges", async () => {
@@ -344,7 +367,11 @@ describe("in volts", () => {
 
 test("look-alike: what forensics concluded is listed, and does not fail a capture by itself", () => {
   const found: unknown[] = [];
-  const watch = RULES["look-alike"].watch({ base: SCRIPT_HEAD.timebase, add: (...fault) => found.push(fault) });
+  const watch = RULES["look-alike"].watch({
+    base: SCRIPT_HEAD.timebase,
+    add: (...fault) => found.push(fault),
+    harmless() {},
+  });
   const concluded: Fault = { kind: "look-alike", transaction: 3, time_s: 2e-3, detail: "a target held SDA" };
   const end = { lookAlikes: [concluded] };
   watch.conclude?.(end as unknown as Parameters<NonNullable<typeof watch.conclude>>[0]);

@@ -1,7 +1,7 @@
 // In: transactions. Out: data bytes that the receiver refused. A controller's NACK that ends a read is lawful and no fault
 // (UM10204 3.1.6 reason 5); one after which the read went on is.
 
-import { KIND, READ } from "../../engine/bus/address";
+import { CLOSE, KIND, READ } from "../../engine/bus/address";
 import { NACK } from "../../engine/bus/transactions";
 import { addressText, hex } from "../format";
 import type { Rule } from "../rule";
@@ -19,7 +19,10 @@ export const dataNack: Rule = {
         const i = row.at + n;
         if (row.bytes.ack[i] !== NACK || row.bytes.bits[i] !== 8) continue;
         const read = row.direction === READ;
-        if (read && n === last) return;
+        if (read && n === last) {
+          if (row.closes !== CLOSE.none) findings.harmless("read-end-nack", row.bytes.endTick[i], row.index);
+          return;
+        }
         const nth = n - row.addressBytes;
         const text = read
           ? `the controller sent NACK for data byte ${nth} (${hex(row.bytes.value[i])}) from ${addressText(row)} and went on reading`

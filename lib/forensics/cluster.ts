@@ -3,11 +3,11 @@
 // what is not a controller is taken out: groups that are the longest-low, shortest-high mixture of two others (contests), and
 // groups that differ only by a longer low.
 
-import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
+import { bias, F_FALL, F_HIGH, F_LOW, F_PERIOD, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
 import { splitGroups } from "./split";
 
 /** Not the level of SCL: a target that stretches pulls it lower too. */
-const TOLD_BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL] as const;
+const TOLD_BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL, F_PERIOD] as const;
 /** Two messages are neighbours when no figure differs by more than this many standard errors. */
 const NEAR = 4.5;
 /** Figures nearer than this share of themselves are never told apart, whatever the statistics say: timers drift. */
@@ -24,6 +24,8 @@ export interface Group {
   readonly error: Float64Array;
   /** Error of one message's figure. */
   readonly typical: Float64Array;
+  /** What rounding alone may put between two messages: see `bias` of the features. */
+  readonly bias: Float64Array;
 }
 
 export function clusters(features: Features): Group[] {
@@ -41,7 +43,7 @@ export function clusters(features: Features): Group[] {
 }
 
 function grain(f: number, value: number): number {
-  return f >= F_SDA_LEVEL ? GRAIN_V : GRAIN * value;
+  return f === F_SDA_LEVEL ? GRAIN_V : GRAIN * value;
 }
 
 /** Largest difference of two messages in standard errors. */
@@ -52,7 +54,8 @@ function distance(features: Features, i: number, j: number): number {
     const b = features.value[f][j];
     if (Number.isNaN(a) || Number.isNaN(b)) continue;
     const g = grain(f, a);
-    const d = Math.abs(a - b) / Math.sqrt(variance(features, f, i) + variance(features, f, j) + g * g);
+    const far = Math.max(0, Math.abs(a - b) - Math.max(bias(features, f, i), bias(features, f, j)));
+    const d = far / Math.sqrt(variance(features, f, i) + variance(features, f, j) + g * g);
     if (d > worst) {
       worst = d;
       if (worst > NEAR) break;
@@ -103,6 +106,7 @@ function summary(features: Features, members: readonly number[]): Group {
   const mean = new Float64Array(features.value.length).fill(Number.NaN);
   const error = new Float64Array(features.value.length).fill(Number.NaN);
   const typical = new Float64Array(features.value.length).fill(Number.NaN);
+  const rounding = new Float64Array(features.value.length);
   for (let f = 0; f < mean.length; f++) {
     let weight = 0;
     let sum = 0;
@@ -114,12 +118,12 @@ function summary(features: Features, members: readonly number[]): Group {
     }
     if (weight === 0) continue;
     mean[f] = sum / weight;
-    let common = 0;
-    for (const i of members) common += f === F_LOW || f === F_HIGH ? features.coherent[i] : 0;
-    error[f] = Math.sqrt(features.spread[f] ** 2 / weight + common / members.length ** 2);
-    typical[f] = Math.sqrt(features.spread[f] ** 2 / (weight / members.length) + common / members.length);
+    for (const i of members) rounding[f] += bias(features, f, i) / members.length;
+    // Rounded at a phase of its own, each message is off by up to half the bound either way.
+    error[f] = Math.sqrt(features.spread[f] ** 2 / weight + rounding[f] ** 2 / 6 / members.length);
+    typical[f] = Math.sqrt(features.spread[f] ** 2 / (weight / members.length));
   }
-  return { members, mean, error, typical };
+  return { members, mean, error, typical, bias: rounding };
 }
 
 function apart(features: Features, f: number, a: number, b: number, ea: number, eb: number): number {
@@ -144,12 +148,14 @@ function withoutMixtures(features: Features, groups: readonly Group[]): Group[] 
 
 /** How far apart two groups are in units of one message's error, all figures together. */
 function blur(group: Group, other: Group): number {
-  let square = 0;
-  for (const f of TOLD_BY) {
-    const d = (group.mean[f] - other.mean[f]) ** 2 / (group.typical[f] ** 2 + grain(f, group.mean[f]) ** 2);
-    if (!Number.isNaN(d)) square += d;
-  }
-  return Math.sqrt(square);
+  const square = (f: number): number => {
+    const far = Math.max(0, Math.abs(group.mean[f] - other.mean[f]) - Math.max(group.bias[f], other.bias[f]));
+    const d = far ** 2 / (group.typical[f] ** 2 + grain(f, group.mean[f]) ** 2);
+    return Number.isNaN(d) ? 0 : d;
+  };
+  // The period is low and high once more, only sharper.
+  const clock = Math.max(square(F_LOW) + square(F_HIGH), square(F_PERIOD));
+  return Math.sqrt(clock + square(F_FALL) + square(F_RISE) + square(F_SDA_LEVEL));
 }
 
 /** A rare group must differ in a figure that no target and no bystander can change: the high, or the data delays. */
@@ -168,23 +174,39 @@ function sameButLonger(features: Features, group: Group, other: Group): boolean 
   return longer && same && small;
 }
 
-/** LOW the longer, HIGH the shorter, SDA falling at the earlier and rising at the later of two others: UM10204 3.1.7. */
+/**
+ * LOW the longer, HIGH the shorter, SDA falling at the earlier and rising at the later of two others: UM10204 3.1.7. Where one of them
+ * kept the bus and was alone for part of the message, the figures lie between those of both together and its own.
+ */
 function isMixture(features: Features, group: Group, kept: readonly Group[]): boolean {
-  for (let a = 0; a < kept.length; a++) {
-    for (let b = a + 1; b < kept.length; b++) {
-      if (group.members.length > 0.6 * Math.min(kept[a].members.length, kept[b].members.length)) continue;
-      const x = kept[a];
-      const y = kept[b];
-      const fits = (f: number, pick: (p: number, q: number) => number): boolean => {
-        const m = Number.isNaN(x.mean[f]) || Number.isNaN(y.mean[f]) ? Number.NaN : pick(x.mean[f], y.mean[f]);
-        const e = Math.max(x.error[f], y.error[f]) + 0.4 * features.spread[f];
-        return Math.abs(apart(features, f, group.mean[f], m, group.error[f], e)) < 3.5;
-      };
-      const clocks = fits(F_LOW, Math.max) && fits(F_HIGH, Math.min);
-      // In a few messages the data delays are a mixture of contested and uncontested bits.
-      if (clocks && group.members.length <= 3) return true;
-      if (clocks && fits(F_FALL, Math.min) && fits(F_RISE, Math.max)) return true;
-    }
+  return kept.some((keeper) => kept.some((other) => other !== keeper && isMixtureOf(features, group, keeper, other)));
+}
+
+/** Groups of so few messages may be contested for any part of their length; larger ones must be so throughout. */
+const FEW = 4;
+
+function isMixtureOf(features: Features, group: Group, keeper: Group, other: Group): boolean {
+  const least = Math.min(keeper.members.length, other.members.length);
+  if (group.members.length > least) return false;
+  const both = (f: number): number => {
+    const pick = f === F_LOW || f === F_RISE ? Math.max : Math.min;
+    return pick(keeper.mean[f], other.mean[f]);
+  };
+  const error = (f: number): number => Math.max(keeper.error[f], other.error[f]) + 0.4 * features.spread[f];
+  const z = (f: number, x: number): number => apart(features, f, group.mean[f], x, group.error[f], error(f));
+  // Share of the message in which both drove.
+  let share = 1;
+  if (group.members.length <= Math.max(FEW, 0.1 * least)) {
+    const along = [F_LOW, F_HIGH].map((f) => (both(f) - keeper.mean[f]) / error(f));
+    const at = [F_LOW, F_HIGH].map((f) => (group.mean[f] - keeper.mean[f]) / error(f));
+    const length = along[0] ** 2 + along[1] ** 2;
+    if (length > 0) share = Math.min(1, Math.max(0, (along[0] * at[0] + along[1] * at[1]) / length));
   }
-  return false;
+  const clocks = [F_LOW, F_HIGH].every((f) => Math.abs(z(f, keeper.mean[f] + share * (both(f) - keeper.mean[f]))) < 3.5);
+  return clocks && [F_FALL, F_RISE].every((f) => between(z(f, both(f)), z(f, keeper.mean[f])));
+}
+
+/** `a` and `b`: distances from the two ends, with sign, in standard errors; NaN where an end is not known. */
+function between(a: number, b: number): boolean {
+  return !(Math.min(a, b) > 3.5 || Math.max(a, b) < -3.5);
 }

@@ -13,7 +13,9 @@ export const F_RISE = 3;
 export const F_HOLD = 4;
 export const F_SDA_LEVEL = 5;
 export const F_SCL_LEVEL = 6;
-export const FEATURES = 7;
+/** SCL rise to SCL rise inside bytes. All its sampling error is that of the outermost edges, so it is the sharpest figure. */
+export const F_PERIOD = 7;
+export const FEATURES = 8;
 
 export interface Features {
   readonly messages: readonly number[];
@@ -22,16 +24,26 @@ export interface Features {
   readonly count: readonly Float64Array[];
   /** 1 where beginning and end of the message agree. */
   readonly even: Uint8Array;
-  /** Spread of one pulse about its message's mean, per feature. */
+  /** Spread of one pulse about its message's mean, per feature: typical of the capture. */
   readonly spread: Float64Array;
-  /** Variance of a message's own low and high that more pulses do not remove: see `beat`. */
+  /** The same as a variance for each message: its own, drawn towards the typical one as far as it has few pulses. */
+  readonly width: readonly Float64Array[];
+  /** Share of the sampling error that more pulses of the message do not remove, 0 to 1: see `beat`. */
   readonly coherent: Float64Array;
+  readonly step: number;
 }
 
-/** Variance of a figure of the i-th message. */
+/** Variance of a figure of the i-th message, apart from what `bias` bounds. */
 export function variance(features: Features, f: number, i: number): number {
-  const common = f === F_LOW || f === F_HIGH ? features.coherent[i] : 0;
-  return features.spread[f] ** 2 / Math.max(1, features.count[f][i]) + common;
+  return features.width[f][i] / Math.max(1, features.count[f][i]);
+}
+
+/**
+ * How far a figure of the i-th message may lie from that of another by the same controller only because the bit time is nearly a whole
+ * number of samples: every pulse of a message is then rounded the same way. A bound, not a variance, and the same phase moves all figures.
+ */
+export function bias(features: Features, f: number, i: number): number {
+  return f === F_LOW || f === F_HIGH || f === F_FALL || f === F_RISE ? features.coherent[i] * features.step : 0;
 }
 
 /**
@@ -56,6 +68,8 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
   const value = Array.from({ length: FEATURES }, () => new Float64Array(n).fill(Number.NaN));
   const count = Array.from({ length: FEATURES }, () => new Float64Array(n));
   const within: number[][] = Array.from({ length: FEATURES }, () => []);
+  const width = Array.from({ length: FEATURES }, () => new Float64Array(n));
+  const runs: number[] = [];
   const slots = newSlots();
   const even = new Uint8Array(n);
   const halves: number[][] = [];
@@ -75,8 +89,12 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
       const m = trimmed(lists[f], head, window);
       value[f][i] = m.mean;
       count[f][i] = m.count;
+      width[f][i] = m.variance;
       if (m.count >= 4) within[f].push(m.variance);
     }
+    const period = periodOf(ledger, slots, value[F_LOW][i], value[F_HIGH][i], step, runs);
+    value[F_PERIOD][i] = period.mean;
+    count[F_PERIOD][i] = period.count;
     halves.push(halfDifference(lists[F_LOW], value[F_LOW][i]), halfDifference(lists[F_HIGH], value[F_HIGH][i]));
   }
   const spread = new Float64Array(FEATURES);
@@ -87,12 +105,82 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
   }
   spread[F_HOLD] = Math.max(spread[F_LOW], 0.41 * step) * 1.5;
   for (let i = 0; i < n; i++) even[i] = agrees(halves[2 * i], spread[F_LOW]) && agrees(halves[2 * i + 1], spread[F_HIGH]) ? 1 : 0;
-  const jitter = Math.sqrt(Math.max(0, spread[F_HIGH] ** 2 - (step * step) / 6)) / step;
-  const coherent = Float64Array.from({ length: n }, (_, i) => {
-    const bit = (value[F_LOW][i] + value[F_HIGH][i]) / step;
-    return Number.isNaN(bit) || step <= 1 ? 0 : step * step * beat(bit, Math.max(1, count[F_LOW][i]), jitter);
+  const jitter = periodJitter(runs, step);
+  // The two edges of seven periods of one byte: see `periodOf`.
+  spread[F_PERIOD] = Math.sqrt(jitter ** 2 + (step * step) / (6 * PERIODS));
+  width.forEach((list, f) => {
+    for (let i = 0; i < n; i++) list[i] = shrunk(list[i], count[f][i], f === F_HOLD || f === F_PERIOD ? 0 : 1, spread[f]);
   });
-  return { messages: list, value, count, even, spread, coherent };
+  const coherent = Float64Array.from({ length: n }, (_, i) => {
+    const bit = value[F_PERIOD][i] / step;
+    return Number.isNaN(bit) || step <= 1 ? 0 : Math.sqrt(beat(bit, Math.max(1, count[F_LOW][i]), jitter / step) / FULL_BEAT);
+  });
+  return { messages: list, value, count, even, spread, width, coherent, step };
+}
+
+/** Pulses that the typical spread of the capture counts for beside a message's own. */
+const TYPICAL_WEIGHT = 8;
+
+function shrunk(own: number, count: number, known: number, typical: number): number {
+  const n = known * Math.max(0, count - 1);
+  return (TYPICAL_WEIGHT * typical * typical + n * Math.max(own, 0.5 * typical * typical)) / (TYPICAL_WEIGHT + n);
+}
+
+/**
+ * Standard deviation of one period, sampling error taken out: from how far the bytes of one message differ. Seven periods gather seven
+ * times the variance of one, while the sampling error of their two edges stays what it is.
+ * @param runs sums of seven periods, two of the same message after another
+ */
+function periodJitter(runs: readonly number[], step: number): number {
+  const squares: number[] = [];
+  for (let i = 0; i + 1 < runs.length; i += 2) squares.push((runs[i] - runs[i + 1]) ** 2 / 2);
+  if (squares.length === 0) return 0;
+  const kept = squares.sort((a, b) => a - b).slice(0, Math.ceil(0.9 * squares.length));
+  const mean = kept.reduce((a, b) => a + b, 0) / kept.length;
+  return Math.sqrt(Math.max(0, mean - (step * step) / 6) / PERIODS);
+}
+
+/** Periods in one byte, from the rise of its first pulse to that of its eighth. */
+const PERIODS = 7;
+/** `beat` where the bit time is a whole number of samples and nothing jitters. */
+const FULL_BEAT = beat(1, 1e9, 0);
+
+/** Mean period over those bytes in which no interval is far from the message's own. */
+function periodOf(
+  ledger: Ledger,
+  slots: Slots,
+  low: number,
+  high: number,
+  step: number,
+  runs: number[],
+): { mean: number; count: number } {
+  let last = Number.NaN;
+  let sum = 0;
+  let count = 0;
+  let run = 0;
+  let runSum = 0;
+  for (let s = 0; s < slots.length; s++) {
+    if (slots.highHabit[s] !== HIGH_IN || slots.pulse[s] % 9 === 0) {
+      run = 0;
+      runSum = 0;
+    } else {
+      const before = ledger.high[slots.entry[s - 1]];
+      const l = ledger.low[slots.entry[s]];
+      const near =
+        Math.abs(l - low) < Math.max(2.1 * step, 0.03 * low) && Math.abs(before - high) < Math.max(2.1 * step, 0.03 * high);
+      run = near ? run + 1 : -PERIODS;
+      runSum += before + l;
+    }
+    if (run !== PERIODS) continue;
+    if (Number.isNaN(last)) last = runSum;
+    else {
+      runs.push(last, runSum);
+      last = Number.NaN;
+    }
+    sum += runSum;
+    count += PERIODS;
+  }
+  return { mean: count > 0 ? sum / count : Number.NaN, count };
 }
 
 function agrees(half: readonly number[], spread: number): boolean {

@@ -2,9 +2,11 @@
 // Two-component normal mixture with known errors (EM), accepted by the Bayesian information criterion (Schwarz, 1978) and only
 // when the halves stand so far apart that a slow drift of one clock cannot pass for two (a uniform spread gives 3.5).
 
-import { F_FALL, F_HIGH, F_LOW, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
+import { bias, F_FALL, F_HIGH, F_LOW, F_PERIOD, F_RISE, F_SDA_LEVEL, type Features, variance } from "./features";
 
-const BY = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL] as const;
+/** Told apart by the clock's two intervals, or by their sum, which coarse sampling shows more sharply. */
+const BY_INTERVALS = [F_LOW, F_HIGH, F_FALL, F_RISE, F_SDA_LEVEL] as const;
+const BY_PERIOD = [F_PERIOD, F_FALL, F_RISE, F_SDA_LEVEL] as const;
 const FAR = 4.2;
 const LEAST = 3;
 const ROUNDS = 25;
@@ -13,6 +15,8 @@ interface Table {
   /** x[f][i], error variance v[f][i]; NaN where not shown. */
   readonly x: readonly Float64Array[];
   readonly v: readonly Float64Array[];
+  /** Typical rounding that a whole message shares, per figure. */
+  readonly bias: readonly number[];
   readonly n: number;
 }
 
@@ -26,7 +30,8 @@ export function splitGroups(
   const queue = groups.map((g) => [...g]);
   while (queue.length > 0) {
     const members = queue.pop() ?? [];
-    const halves = out.length + queue.length < 12 ? split(features, members, grain) : null;
+    const room = out.length + queue.length < 12;
+    const halves = room ? (split(features, members, grain, BY_INTERVALS) ?? split(features, members, grain, BY_PERIOD)) : null;
     if (halves === null) out.push(members);
     else queue.push(...halves);
   }
@@ -37,9 +42,10 @@ function split(
   features: Features,
   members: readonly number[],
   grain: (f: number, x: number) => number,
+  by: readonly number[],
 ): [number[], number[]] | null {
   if (members.length < 2 * LEAST + 2) return null;
-  const table = tableOf(features, members, grain);
+  const table = tableOf(features, members, grain, by);
   let weight = start(table);
   let means = estimate(table, weight);
   for (let round = 0; round < ROUNDS; round++) {
@@ -51,19 +57,26 @@ function split(
   if (Math.min(first.length, second.length) < LEAST) return null;
   const inflation = excess(table, weight, means);
   if (apart(table, means, inflation) < FAR) return null;
-  const gain =
-    likelihood(table, means, inflation) -
-    likelihood(table, { ...estimate(table, new Float64Array(table.n).fill(1)), share: 1 }, inflation);
-  return 2 * gain > (BY.length + 1) * Math.log(table.n) + 10 ? [first, second] : null;
+  // Each explanation may be as wide as it needs: one wide crowd is not two narrow ones.
+  const all = new Float64Array(table.n).fill(1);
+  const whole = { ...estimate(table, all), share: 1 };
+  const gain = likelihood(table, means, inflation) - likelihood(table, whole, excess(table, all, whole));
+  return 2 * gain > (by.length + 1) * Math.log(table.n) + 10 ? [first, second] : null;
 }
 
-function tableOf(features: Features, members: readonly number[], grain: (f: number, x: number) => number): Table {
+function tableOf(
+  features: Features,
+  members: readonly number[],
+  grain: (f: number, x: number) => number,
+  by: readonly number[],
+): Table {
   const column = (of: (f: number, i: number) => number): Float64Array[] =>
-    BY.map((f) => Float64Array.from(members, (i) => of(f, i)));
+    by.map((f) => Float64Array.from(members, (i) => of(f, i)));
   return {
     n: members.length,
+    bias: by.map((f) => members.reduce((sum, i) => sum + bias(features, f, i), 0) / members.length),
     x: column((f, i) => (features.count[f][i] > 0 ? features.value[f][i] : Number.NaN)),
-    v: column((f, i) => variance(features, f, i) + grain(f, features.value[f][i]) ** 2),
+    v: column((f, i) => variance(features, f, i) + bias(features, f, i) ** 2 / 6 + grain(f, features.value[f][i]) ** 2),
   };
 }
 
@@ -134,23 +147,21 @@ function estimate(table: Table, weight: Float64Array): Means {
   return { one: mean((i) => weight[i]), two: mean((i) => 1 - weight[i]), share: Math.min(Math.max(share, 1e-3), 1 - 1e-3) };
 }
 
-function density(table: Table, i: number, mean: readonly number[], inflation: readonly number[]): number {
+function density(table: Table, i: number, mean: readonly number[], inflation: readonly number[] | null): number {
   let log = 0;
-  for (let f = 0; f < BY.length; f++) {
+  for (let f = 0; f < mean.length; f++) {
     const x = table.x[f][i];
     if (Number.isNaN(x) || Number.isNaN(mean[f])) continue;
-    const v = table.v[f][i] * inflation[f];
+    const v = table.v[f][i] * (inflation === null ? 1 : inflation[f]);
     log -= 0.5 * Math.log(v) + (x - mean[f]) ** 2 / (2 * v);
   }
   return log;
 }
 
-const PLAIN: readonly number[] = BY.map(() => 1);
-
 function expect(table: Table, means: Means): Float64Array {
   return Float64Array.from({ length: table.n }, (_, i) => {
-    const a = Math.log(means.share) + density(table, i, means.one, PLAIN);
-    const b = Math.log(1 - means.share) + density(table, i, means.two, PLAIN);
+    const a = Math.log(means.share) + density(table, i, means.one, null);
+    const b = Math.log(1 - means.share) + density(table, i, means.two, null);
     return 1 / (1 + Math.exp(b - a));
   });
 }
@@ -172,10 +183,10 @@ function excess(table: Table, weight: Float64Array, means: Means): number[] {
 
 function apart(table: Table, means: Means, inflation: readonly number[]): number {
   let square = 0;
-  for (let f = 0; f < BY.length; f++) {
+  for (let f = 0; f < means.one.length; f++) {
     if (Number.isNaN(means.one[f]) || Number.isNaN(means.two[f])) continue;
     const typical = table.v[f].slice().sort()[table.n >> 1] * inflation[f];
-    square += (means.one[f] - means.two[f]) ** 2 / typical;
+    square += Math.max(0, Math.abs(means.one[f] - means.two[f]) - table.bias[f]) ** 2 / typical;
   }
   return Math.sqrt(square);
 }

@@ -1,8 +1,8 @@
-import type { BusSlot, Slot, WhatIf } from "@/lib/forensics/intent";
+import type { BusSlot, Slot } from "@/lib/forensics/intent";
 import { count } from "@/lib/view/format";
 import { bracePath } from "@/lib/view/path";
 import { bracesOf, drawnSlots, isNinth, laneLevels, lanePath, type Race, slotText } from "@/lib/view/race";
-import { releasedWords } from "@/lib/view/race-words";
+import { type Asked, type Lane, lanesOf } from "./lanes";
 
 // Measures of the drawing, pixels.
 const SLOT = 27;
@@ -17,90 +17,15 @@ const TEXT = 50;
 /** After the last slot, for words that stand beside a line. */
 const TAIL = 24;
 
-interface Lane {
-  readonly key: string;
-  readonly name: string;
-  readonly role: string;
-  readonly tone: "plain" | "contest";
-  readonly weight: number;
-  readonly intent: readonly Slot[];
-  /** Last slot it drives; what follows is drawn as let go. */
-  readonly until: number;
-  readonly released: string | null;
-  /** Slots whose bits are printed in the contest's colour. */
-  readonly marked: readonly number[];
-}
-
 export interface BitRaceProps {
   race: Race;
   /** A message somebody asks about, drawn as one more lane; then the wired AND is what the bus would have shown. */
-  asked: { readonly name: string; readonly answer: WhatIf } | null;
-}
-
-function lanesOf(race: Race, asked: BitRaceProps["asked"]): Lane[] {
-  const decisions = race.leavers.map((leaver) => leaver.yielding.at);
-  const kept: Lane = {
-    key: "kept",
-    name: race.keptName,
-    role: "kept the bus",
-    tone: "plain",
-    weight: 1.4,
-    intent: race.kept,
-    until: Number.POSITIVE_INFINITY,
-    released: null,
-    marked: decisions,
-  };
-  const leavers = race.leavers.map(
-    (leaver, k): Lane => ({
-      key: `leaver${k}`,
-      name: leaver.name,
-      role: `yielded at bit ${count(leaver.contest.bit_index)}`,
-      tone: "contest",
-      weight: 1.4,
-      intent: leaver.yielding.intent,
-      until: leaver.yielding.at,
-      released: releasedWords(leaver, race),
-      marked: [leaver.yielding.at],
-    }),
-  );
-  return [kept, ...leavers, ...(asked ? [askedLane(asked)] : []), busLane(race, asked)];
-}
-
-function askedLane({ name, answer }: NonNullable<BitRaceProps["asked"]>): Lane {
-  const { outcome, at } = answer.meeting;
-  const ends = outcome === "yields" || outcome === "undefined" || outcome === "open";
-  const words =
-    outcome === "yields" ? "would have yielded here" : outcome === "undefined" ? "no rule says who goes on" : "not known";
-  return {
-    key: "asked",
-    name,
-    role: "if it had sent this",
-    tone: "plain",
-    weight: 1.4,
-    intent: answer.intent,
-    until: ends ? at : Number.POSITIVE_INFINITY,
-    released: ends ? words : null,
-    marked: [at],
-  };
-}
-
-function busLane(race: Race, asked: BitRaceProps["asked"]): Lane {
-  return {
-    key: "bus",
-    name: "wired AND",
-    role: asked ? "what the bus would have shown" : "what the bus shows",
-    tone: "plain",
-    weight: 2.2,
-    intent: asked ? asked.answer.bus : race.bus,
-    until: Number.POSITIVE_INFINITY,
-    released: null,
-    marked: asked ? [asked.answer.meeting.at] : race.leavers.map((leaver) => leaver.yielding.at),
-  };
+  asked: Asked | null;
 }
 
 /**
- * A contest bit by bit: a lane for each contender, the wired AND under them, the deciding bit in one hatched column. Wide ones
- * scroll inside; the same as a table stands under it for those who do not see it.
+ * A contest bit by bit: a lane for each contender, the wired AND under them and each retry below it, the deciding bit in one
+ * hatched column. Wide ones scroll inside; the same as a table stands under it for those who do not see it.
  */
 export function BitRace({ race, asked }: BitRaceProps) {
   const lanes = lanesOf(race, asked);
@@ -139,7 +64,13 @@ export function BitRace({ race, asked }: BitRaceProps) {
             ))}
           {lanes.map((lane, k) => (
             <g key={lane.key} transform={`translate(0 ${TOP + k * LANE})`}>
-              <LaneLine lane={lane} race={race} bus={lanes[lanes.length - 1].intent} from={from} to={to} />
+              <LaneLine
+                lane={lane}
+                race={race}
+                bus={lanes.find(({ key }) => key === "bus")?.intent ?? race.bus}
+                from={from}
+                to={to}
+              />
             </g>
           ))}
           <Score
@@ -228,7 +159,7 @@ function SlotText({
 }: Pick<LaneLineProps, "lane" | "race" | "bus"> & { slot: Slot; at: number; x: number }) {
   const answered = bus[at];
   const text =
-    lane.key === "bus" && isNinth(race, at) && race.kept[at] === "T" && typeof slot === "number"
+    lane.seen && isNinth(race, at) && (lane.key !== "bus" || race.kept[at] === "T") && typeof slot === "number"
       ? slot === 0
         ? "A"
         : "N"

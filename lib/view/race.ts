@@ -26,6 +26,8 @@ export interface Leaver {
   readonly contest: Contest;
   readonly name: string;
   readonly yielding: Yielding;
+  /** What the bus showed in its retry, slot by slot as above; null where none was found. */
+  readonly retry: readonly BusSlot[] | null;
 }
 
 export interface Race {
@@ -97,6 +99,7 @@ export function raceOf(ledger: Ledger, summary: Summary, transaction: number): R
       contest,
       name: controllerName(summary, contest.yielded, "the other controller"),
       yielding: yielding(kept, offset + contest.bit_index, again),
+      retry: again === null ? null : busOf(again),
     };
   });
   return {

@@ -64,6 +64,13 @@ describe("a bit race from the ledger", () => {
     expect(race.leavers[0].name).toBe("gateway");
   });
 
+  it("lays the retry under it, equal up to the deciding bit", () => {
+    const { retry, yielding } = race.leavers[0];
+    expect(retry?.slice(0, yielding.at)).toEqual(race.bus.slice(0, yielding.at));
+    expect([race.bus[yielding.at], retry?.[yielding.at]]).toEqual([0, 1]);
+    expect(theRace([{ ...contest, retry: null }]).leavers[0].retry).toBeNull();
+  });
+
   it("says it in words", () => {
     expect(raceSentences(race)).toBe(
       "Both controllers send the same twenty bits: address 0x50, write, acknowledged, byte 01, acknowledged, two data bits. The first bit that differs is a 0 against a 1.",

@@ -8,7 +8,7 @@ import { type Upload, UploadListSchema } from "@/lib/case/upload";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
 import { shelve } from "./shelf";
-import { Transfer } from "./transfer";
+import { Transfer, type TransferState } from "./transfer";
 
 /** A file as it was picked, and how the engine understands it so far. */
 export interface Picked {
@@ -75,14 +75,30 @@ export function usePicking(): Picking {
   };
 }
 
-/** Sends what can be read on its way into a case. */
+/** Sends what can be read on its way into a case, one after the other, so that they are numbered as they were picked. */
 export function send(files: readonly Picked[], caseNumber: number): void {
-  for (const { file, read } of files.filter(usable)) {
+  const queue = files.filter(usable).map(({ file, read }) => {
     const transfer = new Transfer(file, caseNumber, null);
     transfer.choose(read);
     shelve(transfer);
-    transfer.start();
-  }
+    return transfer;
+  });
+  startNext(queue);
+}
+
+const UNDER_WAY: readonly TransferState[] = ["waiting", "sending", "checking"];
+
+/** Starts the first that still waits; the one after it once that has arrived, or stands still for whatever reason. */
+function startNext(queue: readonly Transfer[]): void {
+  const [transfer, ...later] = queue;
+  if (transfer === undefined) return;
+  if (transfer.view().state !== "waiting") return startNext(later);
+  const end = transfer.subscribe(() => {
+    if (UNDER_WAY.includes(transfer.view().state)) return;
+    end();
+    startNext(later);
+  });
+  transfer.start();
 }
 
 /** Goes on with an upload that did not finish, from the same file. */

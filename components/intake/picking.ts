@@ -90,13 +90,13 @@ const UNDER_WAY: readonly TransferState[] = ["waiting", "sending", "checking"];
 
 /** Starts the first that still waits; the one after it once that has arrived, or stands still for whatever reason. */
 function startNext(queue: readonly Transfer[]): void {
-  const [transfer, ...later] = queue;
-  if (transfer === undefined) return;
-  if (transfer.view().state !== "waiting") return startNext(later);
+  const place = queue.findIndex((transfer) => transfer.view().state === "waiting");
+  if (place === -1) return;
+  const transfer = queue[place];
   const end = transfer.subscribe(() => {
     if (UNDER_WAY.includes(transfer.view().state)) return;
     end();
-    startNext(later);
+    startNext(queue.slice(place + 1));
   });
   transfer.start();
 }

@@ -9,7 +9,7 @@ import { Field } from "@/components/ui/Field";
 import { Notice } from "@/components/ui/Notice";
 import { Cell, Table } from "@/components/ui/Table";
 import { ProfileAnswerSchema, type ProfileView, ProfileViewSchema } from "@/lib/case/catalogue";
-import { builtIn, isProfileName, type Limit } from "@/lib/limits/profile";
+import { allLimits, builtIn, isHsName, isProfileName, type Limit } from "@/lib/limits/profile";
 import { AS_BASE, type LimitDraft, type ProfileDraft, profileDraft, readDraft } from "./draft";
 import { boundWords, unitWords } from "./LimitRows";
 
@@ -31,7 +31,8 @@ export function ProfileEditor({ initial, mayEdit }: { initial: ProfileView; mayE
   const [theirs, setTheirs] = useState<ProfileView | null>(null);
   const [said, setSaid] = useState<{ readonly kind: "note" | "broken"; readonly text: string } | null>(null);
   const [busy, setBusy] = useState(false);
-  const base = builtIn(isProfileName(kept.base) ? kept.base : "Standard-mode").limits;
+  const from = builtIn(isProfileName(kept.base) ? kept.base : "Standard-mode");
+  const base = allLimits(from);
   const { changes, errors } = readDraft(draft, base);
   const changed = name !== kept.name || JSON.stringify(changes) !== JSON.stringify(kept.changes) || errors.size > 0;
 
@@ -73,6 +74,23 @@ export function ProfileEditor({ initial, mayEdit }: { initial: ProfileView; mayE
 
   const edit = (symbol: string, by: Partial<LimitDraft>) =>
     setDraft({ ...draft, [symbol]: { ...(draft[symbol] ?? AS_BASE), ...by } });
+  const lines = (caption: string, hs: boolean) => (
+    <Table caption={caption} columns={columns}>
+      {Object.entries(base)
+        .filter(([symbol]) => isHsName(symbol) === hs)
+        .map(([symbol, limit]) => (
+          <LimitLine
+            key={symbol}
+            symbol={symbol}
+            base={limit}
+            draft={draft[symbol] ?? AS_BASE}
+            error={errors.get(symbol)}
+            differs={symbol in changes}
+            onEdit={mayEdit ? (by) => edit(symbol, by) : null}
+          />
+        ))}
+    </Table>
+  );
   return (
     <>
       <h1 className="font-serif text-head">{kept.name}</h1>
@@ -88,19 +106,17 @@ export function ProfileEditor({ initial, mayEdit }: { initial: ProfileView; mayE
         An empty field is as in the base; a dash takes the limit away. What differs is marked as the team's own wherever it is
         quoted.
       </p>
-      <Table caption={`Limits of ${kept.name}`} columns={columns}>
-        {Object.entries(base).map(([symbol, limit]) => (
-          <LimitLine
-            key={symbol}
-            symbol={symbol}
-            base={limit}
-            draft={draft[symbol] ?? AS_BASE}
-            error={errors.get(symbol)}
-            differs={symbol in changes}
-            onEdit={mayEdit ? (by) => edit(symbol, by) : null}
-          />
-        ))}
-      </Table>
+      {lines(`Limits of ${kept.name}`, false)}
+      {from.spec === "I2C" && (
+        <details className="mt-6" open={kept.base === "High-speed" || Object.keys(changes).some(isHsName)}>
+          <summary className="cursor-pointer border-b border-ink font-serif text-lg italic">Inside a High-speed transfer</summary>
+          <p className="my-3 max-w-[68ch] font-sans text-small text-quiet">
+            From the controller code to STOP, whatever profile judges the rest of the bus. The base's values are those for 100 pF;
+            where a case gives the bus capacitance they follow it, a value of your own does not.
+          </p>
+          {lines(`Limits of ${kept.name} inside a High-speed transfer`, true)}
+        </details>
+      )}
       {mayEdit && (
         <div className="screen-only sticky bottom-0 flex flex-wrap items-baseline gap-5 border-t border-ink bg-paper py-3">
           <Button look="solid" disabled={!changed} busy={busy} onClick={() => void save(kept.version)}>

@@ -3,7 +3,7 @@
 
 import { z } from "zod";
 import { ok, type Result, refuse } from "../base/result";
-import { builtIn, derive, isProfileName, PROFILE_NAMES, type Profile } from "../limits/profile";
+import { allLimits, builtIn, derive, isProfileName, PROFILE_NAMES, type Profile } from "../limits/profile";
 
 export const PROFILE_FORMAT = "firstlow.limits/1";
 
@@ -14,7 +14,10 @@ export const ProfileFileSchema = z.strictObject({
   name: z.string().min(1).max(80),
   version: z.int().positive(),
   base: z.enum(PROFILE_NAMES),
-  /** By symbol as the specification writes it: {"tSU;DAT": {"min": 150}}. null takes a limit away. */
+  /**
+   * By symbol as the specification writes it: {"tSU;DAT": {"min": 150}}. null takes a limit away. Limits inside an Hs transfer are
+   * marked: {"tLOW (Hs)": {"min": 170}}.
+   */
   limits: z.record(z.string(), z.strictObject({ min: bound, max: bound, source: z.string().optional() })),
 });
 
@@ -30,7 +33,8 @@ export function profileFrom(value: unknown, cbPf: number | null): Result<Profile
   }
   const { name, version, base, limits } = parsed.data;
   const from = builtIn(base, cbPf);
-  const unknown = Object.keys(limits).find((symbol) => from.limits[symbol] === undefined);
+  const listed = allLimits(from);
+  const unknown = Object.keys(limits).find((symbol) => listed[symbol] === undefined);
   if (unknown !== undefined) return refuse(bad(`The limits profile sets ${unknown}, which ${base} does not list.`));
   const crossed = Object.entries(limits).find(
     ([, { min, max }]) => typeof min === "number" && typeof max === "number" && min > max,

@@ -103,7 +103,20 @@ export function highSpeedTable(cbPf: number): LimitTable {
   );
 }
 
-/** Changed values of a derived profile: only what differs from its base. */
+/** Marks a limit that holds between an Hs controller code and its STOP: tLOW (Hs). */
+const HS_MARK = " (Hs)";
+
+/** Both tables of a profile in one, as changes name them: the Hs limits are marked. */
+export function allLimits(profile: Pick<Profile, "limits" | "hs">): LimitTable {
+  const hs = Object.entries(profile.hs).map(([symbol, limit]) => [`${symbol}${HS_MARK}`, limit] as const);
+  return { ...profile.limits, ...Object.fromEntries(hs) };
+}
+
+export function isHsName(name: string): boolean {
+  return name.endsWith(HS_MARK);
+}
+
+/** Changed values of a derived profile: only what differs from its base, under the names of `allLimits`. */
 export type Changes = Readonly<
   Record<string, { readonly min?: number | null; readonly max?: number | null; readonly source?: string }>
 >;
@@ -111,9 +124,12 @@ export type Changes = Readonly<
 /** A team's own profile: a copy of `base` with some values changed, each marked as the team's. */
 export function derive(base: Profile, name: string, version: number, changes: Changes): Profile {
   const limits: Record<string, Limit> = { ...base.limits };
-  for (const [symbol, change] of Object.entries(changes)) {
-    const from = limits[symbol] ?? { min: null, max: null, unit: unitOf(symbol), source: "", status: "TEAM", note: "" };
-    limits[symbol] = {
+  const hs: Record<string, Limit> = { ...base.hs };
+  for (const [named, change] of Object.entries(changes)) {
+    const table = isHsName(named) ? hs : limits;
+    const symbol = isHsName(named) ? named.slice(0, -HS_MARK.length) : named;
+    const from = table[symbol] ?? { min: null, max: null, unit: unitOf(symbol), source: "", status: "TEAM", note: "" };
+    table[symbol] = {
       ...from,
       min: change.min === undefined ? from.min : change.min,
       max: change.max === undefined ? from.max : change.max,
@@ -121,7 +137,7 @@ export function derive(base: Profile, name: string, version: number, changes: Ch
       status: "TEAM",
     };
   }
-  return { ...base, name, version, base: base.name, source: `${name} version ${version}, derived from ${base.name}`, limits };
+  return { ...base, name, version, base: base.name, source: `${name} version ${version}, derived from ${base.name}`, limits, hs };
 }
 
 export function unitOf(symbol: string): string {

@@ -84,7 +84,7 @@ export function measurementRows(
   );
   if (measured.hs === null) return rows;
   const hsRows = rowsOf(measured, measured.hs, "Hs", chosen === null ? null : { table: chosen.profile.hs, index: 0 }, volts);
-  return chosen?.profile.name === "High-speed" ? [...hsRows, ...rows] : [...rows, ...hsRows];
+  return (chosen?.profile.base ?? chosen?.profile.name) === "High-speed" ? [...hsRows, ...rows] : [...rows, ...hsRows];
 }
 
 interface By {

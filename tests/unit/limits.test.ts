@@ -68,6 +68,24 @@ test("a team's profile is a copy with changed values that say whose they are", (
   expect([own.base, own.version]).toEqual(["Fast-mode", 3]);
 });
 
+test("a derived profile changes what holds inside a High-speed transfer, whatever the capacitance", () => {
+  const changes = {
+    ...file,
+    base: "High-speed",
+    limits: { "tLOW (Hs)": { min: 170 }, "trDA (Hs)": { max: 60 }, tLOW: { min: 1400 } },
+  };
+  for (const pf of [100, 400]) {
+    const read = profileFrom(changes, pf);
+    if (!read.ok) throw new Error(read.problem.message);
+    const { limits, hs } = read.value;
+    expect([limits.tLOW.min, hs.tLOW.min, hs.trDA.max]).toEqual([1400, 170, 60]);
+    expect(hs.tLOW.source).toBe("Line 2 version 1");
+    expect(hs.tHIGH).toEqual(highSpeedTable(pf).tHIGH);
+  }
+  const misspelt = profileFrom({ ...file, limits: { "tFOO (Hs)": { min: 1 } } }, null);
+  expect(!misspelt.ok && misspelt.problem.message).toContain("tFOO (Hs), which Standard-mode does not list");
+});
+
 const file = { format: "firstlow.limits/1", name: "Line 2", version: 1, base: "Standard-mode", limits: { tBUF: { min: 9000 } } };
 
 test("a profile file becomes a profile", () => {

@@ -1,7 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { biasNs, RISE_FROM_HALF, RISE_TO_HALF } from "@/lib/limits/bias";
 import { createMeasurement, type MeasureHead } from "@/lib/limits/measure";
-import { builtIn, type LimitTable, type Profile, type ProfileName } from "@/lib/limits/profile";
+import { builtIn, derive, type LimitTable, type Profile, type ProfileName } from "@/lib/limits/profile";
 import { type MeasurementRow, measurementRows } from "@/lib/limits/rows";
 import { BitTrain, type Intervals } from "../support/bit-train";
 
@@ -191,43 +191,94 @@ describe("SMBus time-outs", () => {
   });
 });
 
-describe("High-speed", () => {
-  const profile = builtIn("High-speed", 100);
+describe.each([100, 250, 400])("one tick either side of each limit, High-speed at %d pF", (pf) => {
+  const profile = builtIn("High-speed", pf);
   const usual = comfortable(builtIn("Fast-mode").limits);
   const fast = comfortable(profile.hs);
-  function hs(change: Partial<Intervals>): MeasurementRow[] {
+  const ps = (symbol: string, side: "min" | "max") => Math.round((profile.hs[symbol][side] ?? 0) * PS);
+
+  interface Change {
+    bit?: Partial<Intervals>;
+    /** Leads of a zero, of a one, and of the first rise after the acknowledge. */
+    leads?: { rise?: number; end?: number; sdaFall?: number; sdaRise?: number; first?: number };
+    repeated?: Partial<Intervals>;
+    stop?: Partial<Intervals>;
+  }
+
+  function hs({ bit = {}, leads = {}, repeated = {}, stop = {} }: Change, head = VOLTS): MeasurementRow[] {
     const train = new BitTrain(usual).start().byte();
     train.hs = true;
-    train.repeated(fast).byte();
-    for (let i = 0; i < 9; i++) train.bit(1, i === 4 ? { ...fast, ...change } : fast);
-    train.stop({ low: fast.low, suSto: fast.suSto });
+    train.repeated({ ...fast, ...repeated });
+    for (let slot = 0; slot < 9; slot++) train.bit(1, fast);
+    train.bit(1, fast, { rise: leads.first ?? 0 });
+    train.bit(0, { ...fast, ...bit }, { rise: leads.rise ?? 0, end: leads.end ?? 0, sdaLast: leads.sdaFall ?? 0 });
+    train.bit(1, fast, { sdaLast: leads.sdaRise ?? 0 });
+    for (let slot = 3; slot < 9; slot++) train.bit(1, fast);
+    train.repeated(fast);
+    for (let slot = 0; slot < 9; slot++) train.bit(1, fast);
+    train.stop({ low: fast.low, suSto: fast.suSto, ...stop });
     train.hs = false;
-    return rowsOf(train.start().byte().stop(), profile);
+    return rowsOf(train.start().byte().stop(), profile, head);
   }
 
   test("limits switch in after the controller code and out at STOP", () => {
-    const rows = hs({});
-    expect(row(rows, "tLOW", "Hs")).toMatchObject({ limitMin: 160e-9 });
+    const rows = hs({}, EXACT);
+    expect(row(rows, "tLOW", "Hs").limitMin).toBeCloseTo(ps("tLOW", "min") / 1e12, 15);
     expect(row(rows, "tLOW", "F/S")).toMatchObject({ limitMin: 1300e-9, below: 0, count: 18 + 1 });
     expect(row(rows, "tBUF", "F/S")).toMatchObject({ count: 1, below: 0, limitMin: 1300e-9 });
     // High-speed is the profile asked for, so its rows come first.
     expect(rows[0].traffic).toBe("Hs");
   });
 
-  test.each([
-    ["tLOW", "low", 160],
-    ["tHIGH", "high", 60],
-  ] as const)("%s one tick either side", (symbol, key, ns) => {
-    const before = row(hs({}), symbol, "Hs").below;
-    expect(row(hs({ [key]: ns * PS }), symbol, "Hs").below).toBe(before);
-    expect(row(hs({ [key]: ns * PS - 1 }), symbol, "Hs").below).toBe(before + 1);
+  test("nothing comfortable breaks a limit", () => {
+    for (const found of hs({})) expect([found.symbol, found.below, found.above]).toEqual([found.symbol, 0, 0]);
   });
 
-  test("tHD;DAT has a maximum here", () => {
-    const before = row(hs({}), "tHD;DAT", "Hs").above;
-    expect(row(hs({ hold: 70 * PS, valid: 70 * PS }), "tHD;DAT", "Hs").above).toBe(before);
-    expect(row(hs({ hold: 70 * PS + 1, valid: 71 * PS }), "tHD;DAT", "Hs").above).toBe(before + 1);
+  const LEAST: Record<string, (v: number) => Change> = {
+    tLOW: (low) => ({ bit: { low, hold: low / 4, valid: low / 4 } }),
+    tHIGH: (high) => ({ bit: { high } }),
+    "tSU;DAT": (v) => ({ bit: { hold: fast.low - v, valid: fast.low - v } }),
+    "tSU;STA": (suSta) => ({ repeated: { suSta } }),
+    "tHD;STA": (hdSta) => ({ repeated: { hdSta } }),
+    "tSU;STO": (suSto) => ({ stop: { suSto } }),
+    fSCLH: (period) => ({ bit: { low: fast.low, high: period - fast.low } }),
+  };
+  test.each(Object.keys(LEAST))("%s at least", (symbol) => {
+    const limit = symbol === "fSCLH" ? Math.ceil(1e12 / (profile.hs.fSCLH.max ?? 1)) : ps(symbol, "min");
+    const below = (v: number) => row(hs(LEAST[symbol](v)), symbol, "Hs").below;
+    expect([below(limit + 1), below(limit), below(limit - 1)]).toEqual([0, 0, 1]);
   });
+
+  const MOST: Record<string, (v: number) => Change> = {
+    "tHD;DAT": (hold) => ({ bit: { hold, valid: hold, low: hold + 2 * fast.low } }),
+    trCL: (rise) => ({ leads: { rise }, bit: { low: fast.low + 1_000_000 } }),
+    trCL1: (first) => ({ leads: { first } }),
+    tfCL: (end) => ({ leads: { end }, bit: { high: fast.high + 1_000_000 } }),
+    trDA: (sdaRise) => ({ leads: { sdaRise } }),
+    tfDA: (sdaFall) => ({ leads: { sdaFall } }),
+  };
+  test.each(Object.keys(MOST))("%s at most", (symbol) => {
+    const limit = ps(symbol, "max");
+    const above = (v: number) => row(hs(MOST[symbol](v)), symbol, "Hs").above;
+    expect([above(limit - 1), above(limit), above(limit + 1)]).toEqual([0, 0, 1]);
+  });
+});
+
+test("a team's own Hs limit judges the Hs traffic of its profile", () => {
+  const base = builtIn("High-speed", 100);
+  const own = derive(base, "Fast line", 2, { "tLOW (Hs)": { min: 900 } });
+  const fast = comfortable(base.hs);
+  const train = new BitTrain(comfortable(builtIn("Fast-mode").limits)).start().byte();
+  train.hs = true;
+  train
+    .repeated(fast)
+    .byte({ ...fast })
+    .stop();
+  train.hs = false;
+  const rows = rowsOf(train, own);
+  expect(rows[0].traffic).toBe("Hs");
+  expect(row(rows, "tLOW", "Hs")).toMatchObject({ limitMin: 900e-9, clause: "Fast line version 2", verdict: "fail" });
+  expect(row(rows, "tLOW", "F/S")).toMatchObject({ limitMin: 1300e-9, below: 0 });
 });
 
 describe("sampling uncertainty", () => {

@@ -22,6 +22,21 @@ export function Answers({ read, preview, onRead }: AnswersProps) {
   const seconds = Number(interval.replace(",", "."));
   const wrong = interval.trim() !== "" && !(seconds > 0 && seconds <= 3600);
 
+  function answer() {
+    if (wrong) return;
+    const { scl: _scl, sda: _sda, interval_s: _interval, ...rest } = read;
+    onRead({
+      ...rest,
+      ...(scl ? { scl } : {}),
+      ...(sda ? { sda } : {}),
+      ...(interval.trim() !== ""
+        ? { interval_s: seconds }
+        : read.interval_s === undefined
+          ? {}
+          : { interval_s: read.interval_s }),
+    });
+  }
+
   const list = (label: string, value: string, set: (id: string) => void) => (
     <label className="font-sans text-label text-quiet">
       {label}{" "}
@@ -41,24 +56,9 @@ export function Answers({ read, preview, onRead }: AnswersProps) {
   );
 
   return (
-    <form
-      className="mt-3 flex flex-wrap items-end gap-x-6 gap-y-3"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (wrong) return;
-        const { scl: _scl, sda: _sda, interval_s: _interval, ...rest } = read;
-        onRead({
-          ...rest,
-          ...(scl ? { scl } : {}),
-          ...(sda ? { sda } : {}),
-          ...(interval.trim() !== ""
-            ? { interval_s: seconds }
-            : read.interval_s === undefined
-              ? {}
-              : { interval_s: read.interval_s }),
-        });
-      }}
-    >
+    // No form of its own: it stands inside others.
+    <fieldset className="mt-3 flex flex-wrap items-end gap-x-6 gap-y-3">
+      <legend className="sr-only">How the file is to be read</legend>
       {list("SCL", scl, setScl)}
       {list("SDA", sda, setSda)}
       <div className="w-52">
@@ -68,10 +68,15 @@ export function Answers({ read, preview, onRead }: AnswersProps) {
           inputMode="decimal"
           placeholder="1e-7"
           onChange={(event) => setInterval(event.target.value)}
+          onKeyDown={(event) => {
+            if (event.key !== "Enter") return;
+            event.preventDefault();
+            answer();
+          }}
           error={wrong ? "a time above 0, for instance 1e-7" : undefined}
         />
       </div>
-      <Button type="submit">read it again</Button>
-    </form>
+      <Button onClick={answer}>read it again</Button>
+    </fieldset>
   );
 }

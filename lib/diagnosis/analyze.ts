@@ -6,7 +6,7 @@ import { createDecoder } from "../engine/decode";
 import type { CaptureHead, CaptureTail, Channel, OpenCapture } from "../engine/samples/reader";
 import type { ForensicsOutcome } from "../forensics/contract";
 import { createForensics } from "../forensics/forensics";
-import { createMeasurement } from "../limits/measure";
+import { createMeasurement, type Measured } from "../limits/measure";
 import type { Profile } from "../limits/profile";
 import type { MeasurementRow } from "../limits/rows";
 import type { AnalysisListener, AnalysisOutcome, AnalysisSettings } from "./analysis";
@@ -82,7 +82,7 @@ export async function analyze(
     chosen,
     book,
     asked: asked.value,
-    levels: measured.levels,
+    measured,
     roster: settings.roster,
   });
   return { ok: true, summary, attribution: outcome.attribution };
@@ -96,11 +96,11 @@ interface Concluded {
   readonly chosen: Chosen | null;
   readonly book: RuleBook;
   readonly asked: Profile | null;
-  readonly levels: Parameters<typeof levelsOf>[1];
+  readonly measured: Measured;
   readonly roster: AnalysisSettings["roster"];
 }
 
-function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels, roster }: Concluded): Summary {
+function summaryOf({ head, tail, outcome, rows, chosen, book, asked, measured, roster }: Concluded): Summary {
   const { faults, totals } = book;
   const judged = judgeable(head.timebase);
   const profile = chosen?.profile ?? asked;
@@ -121,7 +121,7 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, levels, ros
       base: profile?.base ?? null,
     },
     verdict: verdictOf(rows, totals(), judged, book.places.count),
-    levels: levelsOf(head, levels, rows, profile),
+    levels: levelsOf(head, measured, rows, profile),
     harmless: book.harmless(),
     fault_totals: Object.fromEntries(totals()),
     log: outcome.log,

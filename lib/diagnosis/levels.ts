@@ -2,7 +2,7 @@
 
 import type { CaptureHead } from "../engine/samples/reader";
 import type { Column } from "../limits/column";
-import type { LevelColumns } from "../limits/levels";
+import type { Measured } from "../limits/measure";
 import type { Profile } from "../limits/profile";
 import { driveOf, smallestPullUp, timeConstant } from "../limits/pullup";
 import type { MeasurementRow } from "../limits/rows";
@@ -10,7 +10,7 @@ import type { Levels } from "./report";
 
 export function levelsOf(
   head: CaptureHead,
-  columns: LevelColumns | null,
+  { levels: columns, edges }: Pick<Measured, "levels" | "edges">,
   rows: readonly MeasurementRow[],
   profile: Profile | null,
 ): Levels | null {
@@ -18,14 +18,16 @@ export function levelsOf(
   if (columns === null || head.vdd_v === null) return null;
   const rise =
     rows.find((row) => row.symbol === "tr" && row.count > 0) ?? rows.find((row) => row.symbol === "trCL" && row.count > 0);
+  // Hs rise times are always those of 30 % to 70 %.
+  const perRc = rise?.symbol === "tr" ? edges.risePerRc : undefined;
   const drive = profile === null ? null : driveOf(profile.base ?? profile.name, head.vdd_v);
   return {
     scl_low: level(columns.sclLow),
     sda_low: level(columns.sdaLow),
     sda_high: level(columns.sdaHigh),
-    rc_s: rise === undefined || rise.p50 === null ? null : timeConstant(rise.p50),
+    rc_s: rise === undefined || rise.p50 === null ? null : timeConstant(rise.p50, perRc),
     rp_min_ohm: drive === null ? null : smallestPullUp(head.vdd_v, drive.lowV, drive.sinkA),
-    rc_max_s: rise === undefined || rise.limitMax === null ? null : timeConstant(rise.limitMax),
+    rc_max_s: rise === undefined || rise.limitMax === null ? null : timeConstant(rise.limitMax, perRc),
   };
 }
 

@@ -5,11 +5,14 @@
 import type { Timebase } from "../base/time";
 import { BIT, type BitBlock, IN_HS, LOST, OUTSIDE, type Spike, START, STOP } from "../engine/bits/bits";
 import type { CaptureHead } from "../engine/samples/reader";
+import type { Column } from "./column";
 import { type ColumnSet, columnsFor, columnsOf } from "./columns";
+import { type EdgePoints, edgePoints, THIRTY_TO_SEVENTY } from "./edges";
 import { type LevelColumns, levelColumns, noteLevels } from "./levels";
 import type { LimitTable, Profile } from "./profile";
 
-export type MeasureHead = Pick<CaptureHead, "timebase" | "levels" | "sampleTicks">;
+export type MeasureHead = Pick<CaptureHead, "timebase" | "levels" | "sampleTicks"> &
+  Partial<Pick<CaptureHead, "vdd_v" | "vil_v" | "vih_v">>;
 
 /** Low periods longer than this many times the shortest one of their transaction are stretched, for tVD's purposes. */
 const STRETCHED = 1.5;
@@ -26,6 +29,8 @@ export interface Measured {
   /** Hs traffic, or null where there was none; judged by one table. */
   readonly hs: ColumnSet | null;
   readonly levels: LevelColumns | null;
+  /** Between which levels the rise and fall times of F/S traffic run. */
+  readonly edges: EdgePoints;
   /** Widest uncertainty of one interval, ticks; 0 where times are exact. */
   readonly doubt: number;
 }
@@ -58,7 +63,10 @@ export function createMeasurement(head: MeasureHead, tried: readonly Profile[], 
     doubt,
     false,
   );
-  const run = new Run(head, doubt, fs, () => columnsFor(hsTable === null ? [] : [hsTable], head.timebase, doubt, true));
+  const { vdd_v = null, vil_v = null, vih_v = null } = head;
+  // Several profiles are tried only where none was named, and those are of UM10204.
+  const edges = edgePoints({ vdd_v, vil_v, vih_v }, tried.length === 1 ? tried[0] : null);
+  const run = new Run(head, doubt, fs, edges, () => columnsFor(hsTable === null ? [] : [hsTable], head.timebase, doubt, true));
 
   function dropTooSlow(): void {
     for (let k = 0; k < tried.length - 1; k++) {
@@ -83,7 +91,7 @@ export function createMeasurement(head: MeasureHead, tried: readonly Profile[], 
       fs.spike.add(spike.width, doubt, spike.tick, run.current());
     },
     get measured() {
-      return { base: head.timebase, fs, hs: run.hs, levels: run.levels, doubt };
+      return { base: head.timebase, fs, hs: run.hs, levels: run.levels, edges, doubt };
     },
   };
 }
@@ -102,6 +110,7 @@ class Run {
     head: MeasureHead,
     private readonly doubt: number,
     private readonly fs: ColumnSet,
+    private readonly edges: EdgePoints,
     private readonly makeHs: () => ColumnSet,
   ) {
     this.levels = head.levels === "volts" ? levelColumns(doubt) : null;
@@ -240,16 +249,19 @@ class Run {
   private shapes(block: BitBlock, i: number, set: ColumnSet, at: number): void {
     const { leads } = block;
     if (leads === null) return;
-    const rise = leads.rise[i];
-    if (rise > 0) (this.slot === 0 ? set.sclRise1 : set.sclRise).add(rise, this.edgeDoubt(rise), block.tick[i] - rise, at);
-    const end = leads.end[i];
-    if (end > 0) set.sclFall.add(end, this.edgeDoubt(end), block.end[i] - end, at);
+    const scale = set === this.fs ? this.edges : THIRTY_TO_SEVENTY;
+    this.edge(this.slot === 0 ? set.sclRise1 : set.sclRise, leads.rise[i], block.tick[i], scale.rise, at);
+    this.edge(set.sclFall, leads.end[i], block.end[i], scale.fall, at);
     const last = block.sdaLast[i];
-    const sda = leads.sdaLast[i];
-    if (!Number.isNaN(last) && sda > 0) {
-      (block.value[i] === 1 ? set.sdaRise : set.sdaFall).add(sda, this.edgeDoubt(sda), last - sda, at);
-    }
+    if (block.value[i] === 1) this.edge(set.sdaRise, leads.sdaLast[i], last, scale.rise, at);
+    else this.edge(set.sdaFall, leads.sdaLast[i], last, scale.fall, at);
     if (this.levels !== null) noteLevels(this.levels, block, i, at);
+  }
+
+  // One edge whose second crossing is at `tick`; NaN or no lead is no edge.
+  private edge(column: Column, lead: number, tick: number, scale: number, at: number): void {
+    if (!(lead > 0) || Number.isNaN(tick)) return;
+    column.add(lead * scale, Math.min(this.doubt, this.edgeDoubt(lead) * scale), tick - lead, at);
   }
 
   // Both crossings of an edge that several samples show are interpolated, far inside one sample; half of one is on the safe side.
@@ -263,8 +275,7 @@ class Run {
     const tick = block.tick[i];
     const measured = (leads === null ? tick : tick - leads.sdaLast[i]) - rise;
     if (!Number.isNaN(measured)) set.suSto.add(measured, this.doubt, rise, this.current());
-    if (leads !== null && leads.sdaLast[i] > 0)
-      set.sdaRise.add(leads.sdaLast[i], this.doubt, tick - leads.sdaLast[i], this.current());
+    if (leads !== null) this.edge(set.sdaRise, leads.sdaLast[i], tick, set === this.fs ? this.edges.rise : 1, this.current());
     this.open = false;
     this.lastStop = tick;
   }
@@ -288,6 +299,6 @@ class Run {
     this.lastStop = Number.NaN;
     const hold = (leads === null ? block.end[i] : block.end[i] - leads.end[i]) - tick;
     if (!Number.isNaN(hold)) set.hdSta.add(hold, this.doubt, tick, at);
-    if (leads !== null && leads.sdaLast[i] > 0) set.sdaFall.add(leads.sdaLast[i], this.doubt, begins, at);
+    if (leads !== null) this.edge(set.sdaFall, leads.sdaLast[i], tick, set === this.fs ? this.edges.fall : 1, at);
   }
 }

@@ -16,9 +16,9 @@ export function smallestPullUp(vdd: number, lowV: number, sinkA: number): number
   return (vdd - lowV) / sinkA;
 }
 
-/** RC of the line, seconds, from its 30 % to 70 % rise. */
-export function timeConstant(riseS: number): number {
-  return riseS / RISE_PER_RC;
+/** RC of the line, seconds, from its rise; `perRc` says between which points, 30 % and 70 % where nothing is said. */
+export function timeConstant(riseS: number, perRc = RISE_PER_RC): number {
+  return riseS / perRc;
 }
 
 export interface DriveLevel {

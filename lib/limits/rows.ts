@@ -4,6 +4,7 @@ import { seconds, type Timebase } from "../base/time";
 import { biasNs } from "./bias";
 import type { Column, Extreme } from "./column";
 import { type ColumnSet, columnsOf } from "./columns";
+import type { EdgePoints } from "./edges";
 import type { Judge, Worst } from "./judge";
 import type { Measured } from "./measure";
 import * as P from "./parameters";
@@ -111,7 +112,7 @@ function rowsOf(measured: Measured, set: ColumnSet, traffic: "F/S" | "Hs", by: B
 }
 
 interface Context {
-  readonly measured: Pick<Measured, "base" | "doubt">;
+  readonly measured: Pick<Measured, "base" | "doubt" | "edges">;
   readonly traffic: "F/S" | "Hs";
   readonly by: By | null;
   readonly volts: boolean;
@@ -158,7 +159,7 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     verdict: verdictOf(column.count, !measurable, limitMin === null && limitMax === null, below + above, uncertain + unproven),
     uncertainty: seconds(measured.doubt, base),
     bias: limitMin === null ? 0 : biased / 1e9,
-    points: parameter.points,
+    points: pointsOf(parameter, measured.edges),
     clause: limit === null ? "" : clauseOf(limit.source),
     note: noteOf(limit?.note ?? "", parameter, volts, limitMin !== null && biased > 0),
     needsRate,
@@ -167,6 +168,11 @@ export function rowOf(column: Column, parameter: Parameter, context: Context): M
     largest: column.count === 0 ? null : place(column.largest(), base),
     violations: judges.flatMap((judge) => judge.worst()).map((worst) => violated(worst, base, limitMin ?? 0, limitMax ?? 0)),
   };
+}
+
+function pointsOf(parameter: Parameter, { words }: EdgePoints): string {
+  if (words === null || (parameter !== P.RISE && parameter !== P.FALL)) return parameter.points;
+  return parameter === P.RISE ? words.rise : words.fall;
 }
 
 /** A limit's source as people cite it: revisions that agree are one document, device sheets go by their titles. */

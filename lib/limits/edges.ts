@@ -1,0 +1,53 @@
+// In: the levels that a capture in volts was read by, and the profile. Out: between which levels rise and fall times count, and how
+// they follow from the crossings measured. I2C: the thresholds themselves, 30 % and 70 % of VDD. SMBus: VIL,MAX - 0.15 V and
+// VIH,MIN + 0.15 V (BQ41Z50, TPS53676, E8870 data sheets, REFERENCE 4.1); a rise is carried over as that of an RC line (UM10204 7.1),
+// a fall as a straight line (REFERENCE 7). With VIL and VIH given at those levels nothing is carried over.
+
+import type { Profile } from "./profile";
+import { RISE_PER_RC } from "./pullup";
+
+export interface EdgePoints {
+  /** What a measured time is multiplied by. */
+  readonly rise: number;
+  readonly fall: number;
+  /** A rise between these points in units of RC. */
+  readonly risePerRc: number;
+  /** Null where they are 30 % and 70 % of VDD. */
+  readonly words: { readonly rise: string; readonly fall: string } | null;
+}
+
+export interface ReadLevels {
+  readonly vdd_v: number | null;
+  readonly vil_v: number | null;
+  readonly vih_v: number | null;
+}
+
+/** UM10204's points. */
+export const THIRTY_TO_SEVENTY: EdgePoints = { rise: 1, fall: 1, risePerRc: RISE_PER_RC, words: null };
+
+/** SMBus rise and fall times run between levels this far outside VIL,MAX and VIH,MIN. */
+const BEYOND_V = 0.15;
+
+export function edgePoints({ vdd_v, vil_v, vih_v }: ReadLevels, profile: Profile | null): EdgePoints {
+  if (vdd_v === null || vil_v === null || vih_v === null) return THIRTY_TO_SEVENTY;
+  const inRc = (low: number, high: number) => Math.log((vdd_v - low) / (vdd_v - high));
+  const own: EdgePoints = { ...THIRTY_TO_SEVENTY, risePerRc: inRc(vil_v, vih_v) };
+  const low = (profile?.limits.VIL?.max ?? Number.NaN) - BEYOND_V;
+  const high = (profile?.limits.VIH?.min ?? Number.NaN) + BEYOND_V;
+  // Below the upper point the supply cannot reach it, and there is no such rise.
+  if (profile?.spec !== "SMBus" || !(low < high && high < vdd_v)) return own;
+  const from = `${low.toFixed(2)} V (VIL,MAX - 0.15 V)`;
+  const to = `${high.toFixed(2)} V (VIH,MIN + 0.15 V)`;
+  const carried = Math.abs(low - vil_v) > 0.005 || Math.abs(high - vih_v) > 0.005;
+  const crossings = `the crossings of ${vil_v.toFixed(2)} V and ${vih_v.toFixed(2)} V`;
+  const by = (shape: string) => (carried ? `, reckoned from ${crossings} as ${shape}` : "");
+  return {
+    rise: inRc(low, high) / inRc(vil_v, vih_v),
+    fall: (high - low) / (vih_v - vil_v),
+    risePerRc: inRc(low, high),
+    words: {
+      rise: `${from} to ${to}, SCL and SDA${by("an RC rise")}`,
+      fall: `${to} to ${from}, SCL and SDA${by("a straight fall")}`,
+    },
+  };
+}

@@ -158,6 +158,7 @@ function attribute(
       tallyTransaction(ledger, t, left, g, tally);
       left -= ledger.pulses(t);
     }
+    tally.clock(g.period);
     settleMessage(census, m, tally, known === null ? -1 : known[m]);
   }
   return census;

@@ -11,6 +11,11 @@ const PRIOR_WEIGHT = 20;
 /** Lows longer by one amount over many bits: rare, and then usually a target's own manner. */
 const PRIOR_SLOWED = 0.004;
 const ROUNDS = 4;
+/**
+ * Likelihood ratio from which a message has a say in how often contests happen. What says next to nothing about itself would, if a
+ * signature is a little off, say it a hundred times in the same direction and carry the rate with it.
+ */
+const SPEAKS = Number(process.env.SPEAKS ?? 8);
 const RAISE = 0.8;
 const RAISE_RATE = 2;
 /** A third contender is named only when it has this share of the probability. */
@@ -174,10 +179,13 @@ function learnRates(weighed: readonly Weighed[], judged: readonly Judged[], rate
   let contests = 0;
   let thirds = 0;
   const modes = rates.modes.map(() => [1, 0.3, 0.7]);
+  const odds = rates.contest / (1 - rates.contest);
   weighed.forEach((w, i) => {
     const p = judged[i].probability;
-    contests += p;
-    thirds += judged[i].third;
+    if (p / Math.max(1 - p, 1e-12) > SPEAKS * odds) {
+      contests += p;
+      thirds += judged[i].third;
+    }
     if (p < 0.05) return;
     let sum = Number.NEGATIVE_INFINITY;
     for (const o of w.options) if (o.at >= 0) sum = logAdd(sum, optionLog(o, rates));

@@ -3,7 +3,7 @@
 
 import { type Ledger, VALUE } from "./ledger";
 import { DATA_FALL, DATA_RISE, HIGH_IN, HIGH_NINTH, HOLD_START, LOW_IN } from "./message";
-import type { Sampling, Signature } from "./signature";
+import type { HabitFigure, Sampling, Signature } from "./signature";
 
 /** A squared deviation counts for no more than this: one wild interval says that it is wild, not whose it is. */
 const CAP = 20;
@@ -31,6 +31,29 @@ function levelGauge(levels: readonly Signature["sdaLow"][]): Gauge {
   };
 }
 
+/** Period of every controller, and how much of what one period varies by is the sampling's doing and not its clock's, 0 to 1. */
+interface PeriodGauge {
+  readonly mean: Float64Array;
+  readonly jitter: Float64Array;
+  readonly sampled: Float64Array;
+  readonly edges: number;
+}
+
+function periodGauge(signatures: readonly Signature[], sampling: Sampling): PeriodGauge {
+  const edges = 2 * sampling.variance;
+  const of = (s: Signature, take: (low: HabitFigure, high: HabitFigure) => number): number => {
+    const low = s.habits[LOW_IN];
+    const high = s.habits[HIGH_IN];
+    return low === null || high === null || low.count === 0 || high.count === 0 ? 0 : take(low, high);
+  };
+  return {
+    mean: Float64Array.from(signatures, (s) => of(s, (low, high) => low.mean + high.mean)),
+    jitter: Float64Array.from(signatures, (s) => of(s, (low, high) => low.jitter + high.jitter)),
+    sampled: Float64Array.from(signatures, (s) => of(s, (low, high) => edges / (edges + 0.5 * (low.jitter + high.jitter)))),
+    edges,
+  };
+}
+
 /** Deviations of one message from every controller's habits. */
 export class Tally {
   readonly score: Float64Array;
@@ -40,6 +63,10 @@ export class Tally {
   private lows = 0;
   private highs = 0;
   counted = 0;
+  /** Periods inside bytes, SCL rise to rise, how many and their sum; bytes they stand in. */
+  periods = 0;
+  periodSum = 0;
+  bytes = 0;
 
   constructor(private readonly kinds: number) {
     this.score = new Float64Array(kinds);
@@ -56,6 +83,9 @@ export class Tally {
     this.lows = 0;
     this.highs = 0;
     this.counted = 0;
+    this.periods = 0;
+    this.periodSum = 0;
+    this.bytes = 0;
   }
 
   /** A figure on its own. */
@@ -81,6 +111,21 @@ export class Tally {
     this.run(gauge, x, this.runHigh, this.highs);
   }
 
+  /**
+   * The periods together: their sampling error is that of each byte's two outermost edges only, so where the sampling is coarse they say
+   * more than the single intervals. Where the clock itself varies more they say nothing new.
+   */
+  clock(gauge: PeriodGauge): void {
+    if (this.periods === 0) return;
+    this.counted++;
+    for (let c = 0; c < this.kinds; c++) {
+      if (gauge.mean[c] === 0) continue;
+      const d = this.periodSum - this.periods * gauge.mean[c];
+      const square = (d * d) / (this.periods * gauge.jitter[c] + this.bytes * gauge.edges);
+      this.score[c] += gauge.sampled[c] * Math.min(square, 2 * CAP);
+    }
+  }
+
   /** A figure whose deviations are summed too: a small one that lasts is as odd as a large one. */
   private run(gauge: Gauge, x: number, sums: Float64Array, n: number): void {
     const bound = ODD_SUM * n;
@@ -97,6 +142,7 @@ export class Tally {
 
 interface Gauges {
   readonly low: Gauge;
+  readonly period: PeriodGauge;
   readonly high: Gauge;
   readonly ninth: Gauge;
   readonly fall: Gauge;
@@ -115,6 +161,7 @@ export function allGauges(signatures: readonly Signature[], sampling: Sampling):
   });
   return {
     low,
+    period: periodGauge(signatures, sampling),
     high: gauges(signatures, HIGH_IN, sampling),
     ninth: gauges(signatures, HIGH_NINTH, sampling),
     fall: gauges(signatures, DATA_FALL, sampling),
@@ -133,11 +180,21 @@ export function tallyTransaction(ledger: Ledger, t: number, limit: number, g: Ga
   const pulses = Math.min(ledger.pulses(t), limit);
   const read = pulses > 7 && (what[base + 7] & VALUE) !== 0;
   let bit = 0;
+  let before = 0;
+  let periods = 0;
+  let periodSum = 0;
+  let bytes = 0;
   for (let p = 0; p < pulses; p++) {
     const e = base + p;
     const l = low[e];
     const h = high[e];
-    if (bit !== 0 && bit !== 8 && l < g.longest) tally.low(g.low, l);
+    if (bit !== 0 && bit !== 8 && l < g.longest) {
+      tally.low(g.low, l);
+      periods++;
+      periodSum += before + l;
+      if (bit === 7) bytes++;
+    }
+    before = h;
     if (h > 0) {
       if (bit === 8) tally.one(g.ninth, h);
       else tally.high(g.high, h);
@@ -153,4 +210,7 @@ export function tallyTransaction(ledger: Ledger, t: number, limit: number, g: Ga
     }
     bit = bit === 8 ? 0 : bit + 1;
   }
+  tally.periods += periods;
+  tally.periodSum += periodSum;
+  tally.bytes += bytes;
 }

@@ -15,7 +15,7 @@ const ROUNDS = 4;
  * Likelihood ratio from which a message has a say in how often contests happen. What says next to nothing about itself would, if a
  * signature is a little off, say it a hundred times in the same direction and carry the rate with it.
  */
-const SPEAKS = Number(process.env.SPEAKS ?? 8);
+const SPEAKS = 8;
 const RAISE = 0.8;
 const RAISE_RATE = 2;
 /** A third contender is named only when it has this share of the probability. */

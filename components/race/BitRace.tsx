@@ -14,6 +14,8 @@ const TOP = 22;
 const HIGH = 8;
 const LOW = 34;
 const TEXT = 50;
+/** Under the wired AND, for its braces and the words of the decision; also in the class of the first label below it. */
+const SCORE = 44;
 /** After the last slot, for words that stand beside a line. */
 const TAIL = 24;
 
@@ -31,7 +33,10 @@ export function BitRace({ race, asked }: BitRaceProps) {
   const lanes = lanesOf(race, asked);
   const { from, to } = drawnSlots(race);
   const slots = to - from;
-  const height = TOP + lanes.length * LANE + 44;
+  const height = TOP + lanes.length * LANE + SCORE;
+  const bus = lanes.findIndex(({ key }) => key === "bus");
+  const foot = TOP + (bus + 1) * LANE;
+  const topOf = (lane: number) => TOP + lane * LANE + (lane > bus ? SCORE : 0);
   const x = (slot: number) => LEAD + (slot - from) * SLOT;
   const decisions = [
     ...new Set([...race.leavers.map((leaver) => leaver.yielding.at), ...(asked ? [asked.answer.meeting.at] : [])]),
@@ -43,8 +48,11 @@ export function BitRace({ race, asked }: BitRaceProps) {
     <section tabIndex={0} aria-label="Bit race" className="max-w-full overflow-x-auto print:overflow-visible">
       <div className="flex w-max print:w-auto">
         <ul className="sticky left-0 z-10 w-[7.5rem] shrink-0 bg-paper pr-3 pt-[22px] sm:w-[11.5rem]">
-          {lanes.map((lane) => (
-            <li key={lane.key} className="h-[78px] overflow-hidden font-serif leading-[1.2]">
+          {lanes.map((lane, k) => (
+            <li
+              key={lane.key}
+              className={`h-[78px] overflow-hidden font-serif leading-[1.2] ${k === bus + 1 ? "mt-[44px]" : ""}`}
+            >
               <p className="text-[1.0625rem] [overflow-wrap:anywhere]">{lane.name}</p>
               <p className={`text-small italic ${lane.tone === "contest" ? "text-contest" : "text-quiet"}`}>{lane.role}</p>
             </li>
@@ -60,38 +68,33 @@ export function BitRace({ race, asked }: BitRaceProps) {
           {decisions
             .filter((slot) => slot >= from && slot < to)
             .map((slot) => (
-              <Deciding key={slot} x={x(slot)} height={TOP + lanes.length * LANE} />
+              <g key={slot}>
+                <Deciding x={x(slot)} top={0} foot={foot} />
+                {lanes.length > bus + 1 && <Deciding x={x(slot)} top={foot + SCORE} foot={height} />}
+              </g>
             ))}
           {lanes.map((lane, k) => (
-            <g key={lane.key} transform={`translate(0 ${TOP + k * LANE})`}>
-              <LaneLine
-                lane={lane}
-                race={race}
-                bus={lanes.find(({ key }) => key === "bus")?.intent ?? race.bus}
-                from={from}
-                to={to}
-              />
+            <g key={lane.key} transform={`translate(0 ${topOf(k)})`}>
+              <LaneLine lane={lane} race={race} bus={lanes[bus].intent} from={from} to={to} />
             </g>
           ))}
-          <Score
-            race={race}
-            from={from}
-            to={to}
-            top={TOP + lanes.length * LANE}
-            known={!asked}
-            at={asked?.answer.meeting.at ?? to}
-          />
+          <Score race={race} from={from} to={to} top={foot} known={!asked} at={asked?.answer.meeting.at ?? to} />
         </svg>
       </div>
     </section>
   );
 }
 
-function Deciding({ x, height }: { x: number; height: number }) {
+function Deciding({ x, top, foot }: { x: number; top: number; foot: number }) {
   return (
     <g>
-      <rect x={x} y={4} width={SLOT} height={height - 8} fill="url(#contest-hatch)" opacity="0.75" />
-      <path d={`M${x} 0V${height}M${x + SLOT} 0V${height}`} className="stroke-contest" strokeWidth="1" strokeDasharray="3 3" />
+      <rect x={x} y={top + 4} width={SLOT} height={foot - top - 8} fill="url(#contest-hatch)" opacity="0.75" />
+      <path
+        d={`M${x} ${top}V${foot}M${x + SLOT} ${top}V${foot}`}
+        className="stroke-contest"
+        strokeWidth="1"
+        strokeDasharray="3 3"
+      />
     </g>
   );
 }

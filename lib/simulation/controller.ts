@@ -167,6 +167,11 @@ export class Controller {
       this.lose("stop");
       return;
     }
+    if (this.steps[this.step]?.kind === "repeat" && !this.bus.sda.isPulled(this.device)) {
+      // Likewise where it was about to make its repeated START.
+      this.lose("repeated-start");
+      return;
+    }
     if (this.task?.job.resetAfter !== null && this.pulses >= (this.task?.job.resetAfter ?? 0)) {
       this.abandon();
       return;

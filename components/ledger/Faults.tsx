@@ -1,5 +1,6 @@
 import { FaultShape } from "@/components/ui/Icon";
-import type { Fault, FaultKind, Summary } from "@/lib/diagnosis/report";
+import { HARMLESS_WORDS } from "@/lib/diagnosis/harmless";
+import type { Fault, FaultKind, Harmless, Summary } from "@/lib/diagnosis/report";
 import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { Capture } from "@/lib/view/capture";
 import { count, instant, timeDigits } from "@/lib/view/format";
@@ -28,11 +29,10 @@ function groups(faults: readonly Fault[]): [FaultKind, Fault[]][] {
 export function Faults({ summary, capture, onGo }: FaultsProps) {
   const { timebase, sampleTicks } = capture.head;
   const digits = Math.min(7, timeDigits(timebase, sampleTicks));
-  if (summary.faults.length === 0) {
-    return <p className="py-4 font-serif text-body text-quiet">No fault was found in this record.</p>;
-  }
+  const harmless = summary.harmless ?? [];
   return (
     <div>
+      {summary.faults.length === 0 && <p className="py-4 font-serif text-body text-quiet">No fault was found in this record.</p>}
       {groups(summary.faults).map(([kind, list]) => (
         <section key={kind} className="keep-together border-b border-hairline py-4">
           <h3
@@ -61,7 +61,50 @@ export function Faults({ summary, capture, onGo }: FaultsProps) {
           )}
         </section>
       ))}
+      {harmless.length > 0 && <HarmlessOnes harmless={harmless} onGo={onGo} />}
     </div>
+  );
+}
+
+/** Places listed of what is no fault. */
+const FEW = 8;
+
+/** What looks like a fault and is none, named so that nobody hunts for it. */
+function HarmlessOnes({ harmless, onGo }: { harmless: readonly Harmless[]; onGo: (transaction: number) => void }) {
+  return (
+    <section aria-label="Harmless, and no fault" className="keep-together mt-6">
+      <h3 className="border-b border-ink font-serif text-lg italic">Harmless, and no fault</h3>
+      <dl className="mt-2 grid gap-x-8 gap-y-3 font-sans text-label lg:grid-cols-2">
+        {harmless.map(({ kind, count: times, places }) => {
+          const at = [...new Set(places.map((place) => place.transaction))].filter((index) => index !== null);
+          return (
+            <div key={kind}>
+              <dt>
+                {HARMLESS_WORDS[kind].title} <span className="tabular text-hex text-quiet">{count(times)}</span>
+              </dt>
+              <dd className="text-quiet">
+                {HARMLESS_WORDS[kind].meaning}
+                {at.length > 0 && (
+                  <span className="screen-only block">
+                    {at.length > FEW ? "First in " : "In "}
+                    {at.slice(0, FEW).map((index) => (
+                      <button
+                        key={index}
+                        type="button"
+                        onClick={() => onGo(index)}
+                        className="mr-2 border-b border-field text-ink hover:border-ink"
+                      >
+                        {count(index)}
+                      </button>
+                    ))}
+                  </span>
+                )}
+              </dd>
+            </div>
+          );
+        })}
+      </dl>
+    </section>
   );
 }
 

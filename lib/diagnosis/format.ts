@@ -14,12 +14,38 @@ const UNITS: readonly (readonly [number, string])[] = [
   [1e-9, "ns"],
 ];
 
+const DIGITS = 4;
+/** Digits beyond which two times of a capture are the same: a picosecond in a second. */
+const ALL_DIGITS = 12;
+
 /** A time in seconds with up to four significant digits: 4.7 µs, 250 ns. */
 export function duration(seconds: number): string {
+  return written(seconds, DIGITS);
+}
+
+function written(seconds: number, digits: number): string {
   if (seconds === 0) return "0 ns";
   const size = Math.abs(seconds);
   const [scale, unit] = UNITS.find(([from]) => size >= from * 0.9999995) ?? UNITS[UNITS.length - 1];
-  return `${Number((seconds / scale).toPrecision(4))} ${unit}`;
+  return `${Number((seconds / scale).toPrecision(digits))} ${unit}`;
+}
+
+/** A measured time beside its limits: with so many digits more as part the two, where they are not the same. */
+export function figure(seconds: number, limits: readonly (number | null)[]): string {
+  for (let digits = DIGITS; digits <= ALL_DIGITS; digits++) {
+    const text = written(seconds, digits);
+    if (!limits.some((limit) => limit !== null && limit !== seconds && written(limit, digits) === text)) return text;
+  }
+  return duration(seconds);
+}
+
+/** A resistance with three significant digits: 967 Ω, 1.77 kΩ. */
+export function resistance(ohm: number): string {
+  return ohm >= 999.5 ? `${Number((ohm / 1000).toPrecision(3))} kΩ` : `${Number(ohm.toPrecision(3))} Ω`;
+}
+
+export function capacitance(farad: number): string {
+  return `${Number((farad * 1e12).toPrecision(3))} pF`;
 }
 
 /** A place in time, seconds with all digits that matter. */

@@ -2,7 +2,7 @@
 
 import type { Timebase } from "../base/time";
 import type { RosterEntry } from "../forensics/contract";
-import { duration, hex, rate } from "./format";
+import { duration, figure, hex, rate } from "./format";
 import type { Told } from "./places";
 import type { Contest, FaultKind, Measurement, Summary } from "./report";
 import { settledByFraming } from "./verdict";
@@ -55,7 +55,7 @@ function whatWentWrong(summary: Facts): string[] {
     const names = rows.map((row) => row.parameter).join(", ");
     const side = broken.side === "min" ? "at least" : "at most";
     parts.push(
-      `${names} ${rows.length === 1 ? "breaks its limit" : "break their limits"} of ${summary.limits.profile} ${plural(total, "time")}; the worst is ${broken.parameter} ${duration(broken.measured_s)} where ${side} ${duration(broken.limit_s)} is due, ${place(broken.time_s, broken.transaction)}.`,
+      `${names} ${rows.length === 1 ? "breaks its limit" : "break their limits"} of ${summary.limits.profile} ${plural(total, "time")}; the worst is ${broken.parameter} ${figure(broken.measured_s, [broken.limit_s])} where ${side} ${duration(broken.limit_s)} is due, ${place(broken.time_s, broken.transaction)}.`,
     );
   }
   return parts;

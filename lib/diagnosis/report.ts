@@ -181,6 +181,9 @@ export const LevelsSchema = z.object({
   scl_low: level,
   sda_low: level,
   sda_high: level,
+  /** Where the lows of a line cluster, V: one plateau for each driver that can be told from the others. */
+  scl_plateaus: z.array(z.object({ v: z.number(), count: z.int() })).optional(),
+  sda_plateaus: z.array(z.object({ v: z.number(), count: z.int() })).optional(),
   /** RC of the lines from their median 30 % to 70 % rise; null where no rise was seen. */
   rc_s: z.number().nullable(),
   /** Smallest pull-up for the profile's drivers, and the largest line capacitance times pull-up that still rises in time. */

@@ -1,6 +1,6 @@
 // In: a summary and the transactions one by one. Out: the report for reading, line by line.
 
-import { duration, hex, instant, rate } from "./format";
+import { capacitance, duration, figure, hex, instant, rate, resistance } from "./format";
 import { HARMLESS_WORDS } from "./harmless";
 import type { Measurement, Summary } from "./report";
 import type { ReportTransaction } from "./transaction";
@@ -15,6 +15,7 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
   yield* captureLines(summary);
   yield* transactionLines(summary, transactions);
   yield* measurementLines(summary);
+  yield* levelLines(summary);
   yield* listed("Faults", summary.faults, (fault) => {
     const where = fault.transaction === null ? "" : `  #${fault.transaction}`;
     return `  ${instant(fault.time_s).padEnd(18)}${where.padEnd(9)} ${FAULT_WORDS[fault.kind].title}: ${fault.detail}`;
@@ -33,6 +34,33 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
     return `  #${stretch.transaction} byte ${stretch.byte} bit ${stretch.bit}: SCL low for ${duration(stretch.low_s)}, ${duration(stretch.excess_s)} more than usual, by ${stretch.by}${stretch.runt_s === undefined ? "" : `; the first high after it is a runt of ${duration(stretch.runt_s)}`}`;
   });
   yield `\nVerdict: ${summary.verdict} (${summary.limits.profile}${summary.limits.source === "" ? "" : `, ${summary.limits.source}`})\n`;
+}
+
+function* levelLines({ levels, controllers }: Summary): Generator<string> {
+  if (!levels) return;
+  yield "\nLevels\n";
+  for (const [name, level] of [
+    ["SCL low", levels.scl_low],
+    ["SDA low", levels.sda_low],
+    ["SDA high", levels.sda_high],
+  ] as const) {
+    if (level !== null)
+      yield `  ${name}: ${level.min_v.toFixed(3)} V to ${level.max_v.toFixed(3)} V, median ${level.p50_v.toFixed(3)} V, of ${level.count}\n`;
+  }
+  const plateaus = levels.sda_plateaus ?? [];
+  if (plateaus.length > 1) {
+    const each = plateaus.map(({ v, count }) => `${v.toFixed(3)} V (${count})`);
+    yield `  SDA low stands at ${each.join(", ")}: as many drivers, or groups of drivers, can be told apart\n`;
+  }
+  for (const { id, name, vol_v } of controllers) if (vol_v !== null) yield `  ${name ?? id} pulls to ${vol_v.toFixed(3)} V\n`;
+  if (levels.rc_s !== null) yield `  RC of the lines ${duration(levels.rc_s)}, from the median rise\n`;
+  if (levels.rp_min_ohm === null) return;
+  yield `  Rp(min) ${resistance(levels.rp_min_ohm)}`;
+  if (levels.rc_max_s === null) yield "\n";
+  else {
+    const at = (farad: number) => `${resistance((levels.rc_max_s ?? 0) / farad)} at ${capacitance(farad)}`;
+    yield `; Rp(max) ${[100e-12, 200e-12, 400e-12].map(at).join(", ")}; the data sheets of the devices decide\n`;
+  }
 }
 
 /** Places of each harmless thing that are printed. */
@@ -107,7 +135,7 @@ function* measurementLines(summary: Summary): Generator<string> {
 }
 
 function cellsOf(row: Measurement): string[] {
-  const time = (seconds: number | null) => (seconds === null ? "-" : duration(seconds));
+  const time = (seconds: number | null) => (seconds === null ? "-" : figure(seconds, [row.limit_min_s, row.limit_max_s]));
   const limits = [
     row.limit_min_s === null ? "" : `>= ${duration(row.limit_min_s)}`,
     row.limit_max_s === null ? "" : `<= ${duration(row.limit_max_s)}`,

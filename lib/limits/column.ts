@@ -173,6 +173,15 @@ export class Column {
     return Math.max(1, n);
   }
 
+  /** Every value and how often it came; beyond 4096 one value for each 1/64 octave. */
+  values(): [number, number][] {
+    const { buckets, seen } = this;
+    if (buckets === null || seen === null) return [...this.kept.subarray(0, this.few)].map((value) => [value, 1]);
+    const list: [number, number][] = [];
+    for (let b = 0; b < NUMBERS; b++) if (buckets[b] > 0) list.push([seen[b], buckets[b]]);
+    return list;
+  }
+
   /** Pairs of a value and how many intervals lie near it (within 1/8 octave), in rising order. */
   distribution(): [number, number][] {
     const counts = new Map<number, number>();

@@ -12,6 +12,8 @@ export interface EdgePoints {
   readonly fall: number;
   /** A rise between these points in units of RC. */
   readonly risePerRc: number;
+  /** The same between the points that the rise limit holds for. */
+  readonly limitPerRc: number;
   /** Null where they are 30 % and 70 % of VDD. */
   readonly words: { readonly rise: string; readonly fall: string } | null;
 }
@@ -23,7 +25,7 @@ export interface ReadLevels {
 }
 
 /** UM10204's points. */
-export const THIRTY_TO_SEVENTY: EdgePoints = { rise: 1, fall: 1, risePerRc: RISE_PER_RC, words: null };
+export const THIRTY_TO_SEVENTY: EdgePoints = { rise: 1, fall: 1, risePerRc: RISE_PER_RC, limitPerRc: RISE_PER_RC, words: null };
 
 /** SMBus rise and fall times run between levels this far outside VIL,MAX and VIH,MIN. */
 const BEYOND_V = 0.15;
@@ -45,6 +47,7 @@ export function edgePoints({ vdd_v, vil_v, vih_v }: ReadLevels, profile: Profile
     rise: inRc(low, high) / inRc(vil_v, vih_v),
     fall: (high - low) / (vih_v - vil_v),
     risePerRc: inRc(low, high),
+    limitPerRc: inRc(low, high),
     words: {
       rise: `${from} to ${to}, SCL and SDA${by("an RC rise")}`,
       fall: `${to} to ${from}, SCL and SDA${by("a straight fall")}`,

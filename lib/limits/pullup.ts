@@ -7,8 +7,8 @@ export const RISE_PER_RC = Math.log(0.7 / 0.3);
 const RISE_PER_RC_PRINTED = 0.8473;
 
 /** Largest pull-up, ohm, for a rise of `riseS` seconds on `capacitanceF` farad. */
-export function largestPullUp(riseS: number, capacitanceF: number): number {
-  return riseS / (RISE_PER_RC_PRINTED * capacitanceF);
+export function largestPullUp(riseS: number, capacitanceF: number, perRc = RISE_PER_RC_PRINTED): number {
+  return riseS / (perRc * capacitanceF);
 }
 
 /** Smallest pull-up, ohm, that a driver sinking `sinkA` ampere still pulls down to `lowV`. */
@@ -50,6 +50,8 @@ export function advisePullUp(input: {
   readonly profile: string;
   readonly vdd: number;
   readonly riseLimitS: number;
+  /** Where the rise time runs between other levels than 30 % and 70 %: its length in units of RC. */
+  readonly risePerRc?: number;
   readonly capacitanceF: number | null;
   readonly pullUpOhm: number | null;
   readonly measuredRiseS: number | null;
@@ -57,8 +59,10 @@ export function advisePullUp(input: {
   const { lowV, sinkA } = driveOf(input.profile, input.vdd);
   const rpMin = smallestPullUp(input.vdd, lowV, sinkA);
   const implied =
-    input.pullUpOhm !== null && input.measuredRiseS !== null ? timeConstant(input.measuredRiseS) / input.pullUpOhm : null;
+    input.pullUpOhm !== null && input.measuredRiseS !== null
+      ? timeConstant(input.measuredRiseS, input.risePerRc) / input.pullUpOhm
+      : null;
   const capacitance = input.capacitanceF ?? implied;
-  const rpMax = capacitance === null ? null : largestPullUp(input.riseLimitS, capacitance);
+  const rpMax = capacitance === null ? null : largestPullUp(input.riseLimitS, capacitance, input.risePerRc);
   return { rpMin_ohm: rpMin, rpMax_ohm: rpMax, passive: rpMax === null || rpMin <= rpMax, capacitance_f: capacitance };
 }

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { explainCode } from "@/lib/diagnosis/codes";
-import { duration, rate } from "@/lib/diagnosis/format";
+import { duration, figure, rate } from "@/lib/diagnosis/format";
 import { readLog } from "@/lib/diagnosis/log";
 import { type Report, ReportSchema, type Summary } from "@/lib/diagnosis/report";
 import { readRoster, writeRoster } from "@/lib/diagnosis/roster";
@@ -233,5 +233,9 @@ test("times and rates are written as the trade writes them", () => {
     "1 µs",
     "-2 ns",
   ]);
+  // A figure that would round onto its limit has the digits that part the two.
+  expect(figure(4.7e-6, [4.7e-6])).toBe("4.7 µs");
+  expect(figure(4.699999e-6, [4.7e-6, null])).toBe("4.699999 µs");
+  expect(figure(4.8e-6, [4.7e-6])).toBe("4.8 µs");
   expect([rate(400e3, "Hz"), rate(40e6, "S/s")]).toEqual(["400 kHz", "40 MS/s"]);
 });

@@ -29,6 +29,7 @@ export function LimitDetail({ row, summary, onGo }: LimitDetailProps) {
               ? `± ${duration(row.uncertainty_s)} by the sampling`
               : "exact to one step of the file"}
         </Term>
+        <Term name="too close">{openWords(row)}</Term>
         <Term name="one threshold">
           {(row.bias_s ?? 0) > 0
             ? `may show up to ${duration(row.bias_s ?? 0)} too much on the slowest edges that the profile allows`
@@ -68,6 +69,15 @@ export function LimitDetail({ row, summary, onGo }: LimitDetailProps) {
       {row.count > 0 && (row.distribution ?? []).length > 0 && <Distribution row={row} />}
     </div>
   );
+}
+
+/** How many are open, and by what. */
+function openWords({ uncertain, unproven = 0 }: Measurement): string {
+  const parts = [
+    uncertain > 0 ? `${count(uncertain)} by the sampling` : "",
+    unproven > 0 ? `${count(unproven)} that one threshold cannot prove` : "",
+  ];
+  return parts.filter((part) => part !== "").join(", ");
 }
 
 function Term({ name, children }: { name: string; children: ReactNode }) {

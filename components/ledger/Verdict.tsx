@@ -12,17 +12,6 @@ export function verdictOf(row: Measurement): Verdict {
   return row.uncertain > 0 ? "too-close" : "pass";
 }
 
-/** How many are open, and by what: the sampling, or the one threshold. */
-function OpenWords({ row }: { row: Measurement }) {
-  const unproven = row.unproven ?? 0;
-  return (
-    <span>
-      <UndecidedShape /> {count(row.uncertain + unproven)} too close to call
-      {unproven > 0 && <span className="text-quiet">{row.uncertain > 0 ? ", some" : ""} at one threshold</span>}
-    </span>
-  );
-}
-
 export function VerdictWords({ row }: { row: Measurement }) {
   switch (verdictOf(row)) {
     case "fail":
@@ -33,7 +22,11 @@ export function VerdictWords({ row }: { row: Measurement }) {
         </span>
       );
     case "too-close":
-      return <OpenWords row={row} />;
+      return (
+        <span>
+          <UndecidedShape /> {count(row.uncertain + (row.unproven ?? 0))} too close to call
+        </span>
+      );
     case "pass":
       return (
         <span>

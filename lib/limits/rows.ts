@@ -223,7 +223,7 @@ function noteOf(published: string, parameter: Parameter, volts: boolean, biased:
     );
   else if (!volts && /^tVD/.test(parameter.symbol))
     notes.push("One threshold may show this by part of an edge too long or too short.");
-  return notes.join(" ");
+  return notes.map((note) => (/[.!?]$/.test(note) ? note : `${note}.`)).join(" ");
 }
 
 function place(extreme: Extreme, base: Timebase): Place {

@@ -1,5 +1,6 @@
 import type { Contest, Summary } from "@/lib/diagnosis/report";
 import { count, probability } from "@/lib/view/format";
+import { byName } from "@/lib/view/race";
 import { Evidence } from "./Evidence";
 import { MarginHead } from "./MarginHead";
 
@@ -49,7 +50,7 @@ export function ContestPart({ contest, summary, onGo }: ContestPartProps) {
           {contest.look_alikes.map((other) => (
             <p key={other.kind} className="mt-1 font-serif text-body">
               {other.kind.replaceAll("-", " ")} <span className="tabular text-hex">{probability(other.probability)}</span>.{" "}
-              {other.detail}
+              {byName(summary, other.detail)}
             </p>
           ))}
         </div>

@@ -7,7 +7,7 @@ import { Button } from "@/components/ui/Button";
 import type { Contest, Summary } from "@/lib/diagnosis/report";
 import type { Capture } from "@/lib/view/capture";
 import { count, evidenceBits, probability } from "@/lib/view/format";
-import { type Race, raceOf } from "@/lib/view/race";
+import { byName, type Race, raceOf } from "@/lib/view/race";
 import { raceSentences, settlings } from "@/lib/view/race-words";
 import { Ask, answerTo } from "./Ask";
 import { BitRace } from "./BitRace";
@@ -110,7 +110,7 @@ function Sureness({ contest, summary, name }: { contest: Contest; summary: Summa
         <ul className="mt-2 space-y-1 font-serif text-body">
           {contest.evidence.map((entry) => (
             <li key={`${entry.kind}${entry.detail}`}>
-              <span className="tabular text-hex text-quiet">{evidenceBits(entry.bits)}</span> {entry.detail}
+              <span className="tabular text-hex text-quiet">{evidenceBits(entry.bits)}</span> {byName(summary, entry.detail)}
             </li>
           ))}
         </ul>
@@ -123,7 +123,7 @@ function Sureness({ contest, summary, name }: { contest: Contest; summary: Summa
             {contest.look_alikes.map((other) => (
               <p key={other.kind} className="mt-1 font-serif text-body">
                 {other.kind.replaceAll("-", " ").replace(/\b(sda|scl)\b/g, (line) => line.toUpperCase())}{" "}
-                <span className="tabular text-hex">{probability(other.probability)}</span>. {other.detail}
+                <span className="tabular text-hex">{probability(other.probability)}</span>. {byName(summary, other.detail)}
               </p>
             ))}
           </section>

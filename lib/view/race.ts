@@ -51,6 +51,11 @@ export function controllerName(summary: Pick<Summary, "controllers">, id: string
   return row?.name ?? `controller ${id}`;
 }
 
+/** A sentence of the report with its controllers by their names, where they have any: the report itself keeps to ids. */
+export function byName(summary: Pick<Summary, "controllers">, sentence: string): string {
+  return sentence.replace(/\bC\d+\b/g, (id) => summary.controllers.find((row) => row.id === id)?.name ?? id);
+}
+
 interface Message {
   readonly transactions: readonly number[];
   readonly parts: readonly MessagePart[];

@@ -2,7 +2,7 @@ import { describe, expect, it } from "vitest";
 import type { Contest, Summary } from "@/lib/diagnosis/report";
 import { meet } from "@/lib/forensics/intent";
 import { readTyped } from "@/lib/forensics/typed-message";
-import { bracesOf, drawnSlots, isNinth, laneLevels, lanePath, raceOf, slotText } from "@/lib/view/race";
+import { bracesOf, byName, drawnSlots, isNinth, laneLevels, lanePath, raceOf, slotText } from "@/lib/view/race";
 import { clockBits, numbered, prefixWords, raceSentences, releasedWords, settlings, whatIfWords } from "@/lib/view/race-words";
 import { edgesOf, message, readEdges } from "./view-support";
 
@@ -69,6 +69,14 @@ describe("a bit race from the ledger", () => {
     expect(retry?.slice(0, yielding.at)).toEqual(race.bus.slice(0, yielding.at));
     expect([race.bus[yielding.at], retry?.[yielding.at]]).toEqual([0, 1]);
     expect(theRace([{ ...contest, retry: null }]).leavers[0].retry).toBeNull();
+  });
+
+  it("calls controllers by their names in sentences of the report", () => {
+    const rows = [
+      { id: "C1", name: "pump" },
+      { id: "C12", name: null },
+    ].map((row) => ({ ...row, tlow_s: null, thigh_s: null, vol_v: null, transactions: 1 }));
+    expect(byName({ controllers: rows }, "C1 holds 4.6 us, C12 4.2 us, C2 none")).toBe("pump holds 4.6 us, C12 4.2 us, C2 none");
   });
 
   it("says it in words", () => {

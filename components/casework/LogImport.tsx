@@ -1,6 +1,7 @@
 "use client";
 
 import { useMemo, useState } from "react";
+import { CodeMeanings } from "@/components/strip/CodeMeanings";
 import { Button } from "@/components/ui/Button";
 import { Dialog } from "@/components/ui/Dialog";
 import { TextField } from "@/components/ui/Field";
@@ -104,7 +105,10 @@ function Form({ capture, onKept, onDone }: FormProps) {
         error={said !== null && "words" in said ? said.words : undefined}
         className="!font-mono !text-hex"
       />
-      <div aria-live="polite">{entries && <Understood entries={entries} />}</div>
+      <div aria-live="polite">
+        {entries && <Understood entries={entries} />}
+        {entries && <CodeMeanings messages={entries.map(({ message }) => message)} />}
+      </div>
       {trouble !== null && <Notice kind="broken">{trouble}</Notice>}
       <div className="flex flex-wrap gap-5">
         <Button look="solid" busy={busy} disabled={entries === null || text === capture.log} onClick={() => void keep(text)}>

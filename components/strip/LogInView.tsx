@@ -1,6 +1,7 @@
 import type { Capture } from "@/lib/view/capture";
 import { count, duration, instant, timeDigits } from "@/lib/view/format";
 import type { Bounds } from "@/lib/view/scale";
+import { CodeMeanings } from "./CodeMeanings";
 
 const LISTED = 40;
 
@@ -20,6 +21,7 @@ export function LogInView({ capture, span }: { capture: Capture; span: Bounds })
           ? `Its clock is ${duration(Math.abs(log.offset_s))} ${log.offset_s < 0 ? "behind" : "ahead of"} the capture's${log.drift === 0 ? "" : ` and drifts by ${Math.round(log.drift * 1e6)} ppm`}, found from the losses it reports; good to ${duration(log.tolerance_s)}.`
           : `Its ${count(log.entries)} ${log.entries === 1 ? "line has" : "lines have"} no place in this record: fewer than two reported losses fit the contests found, so the two clocks cannot be brought together.`}
       </p>
+      <CodeMeanings messages={log.lines.map(({ message }) => message)} />
       {log.aligned && seen.length === 0 && <p className="mt-1 font-serif text-body text-quiet">No line of it falls in view.</p>}
       <ol className="mt-1 font-sans text-label">
         {seen.slice(0, LISTED).map((line) => (

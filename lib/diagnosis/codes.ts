@@ -59,3 +59,11 @@ export function explainCode(message: string): CodeMeaning[] {
   }
   return found;
 }
+
+/** Each code or flag that the messages name, once, in the order in which it first appears. */
+export function codesIn(messages: Iterable<string>): CodeMeaning[] {
+  const found = new Map<string, CodeMeaning>();
+  for (const message of messages)
+    for (const entry of explainCode(message)) if (!found.has(entry.code)) found.set(entry.code, entry);
+  return [...found.values()];
+}

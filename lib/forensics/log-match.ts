@@ -7,7 +7,8 @@ import type { LogEntry } from "./contract";
 import type { Evidence } from "./evidence";
 
 /** Words and codes by which controllers and drivers report lost arbitration (REFERENCE 8.2; EAGAIN is Linux's errno 11). */
-const LOST = /arbitration|\bEAGAIN\b|\berrno\s*[:=]?\s*-?11\b|\bARLO\b|\bARBL\b|\bARB_?LOST\b|\bAL\b|\bLAB\b/i;
+const LOST =
+  /arbitration|\bEAGAIN\b|\berrno\s*[:=]?\s*-?11\b|(?:^|[\s(=:])-11(?![\d.])|\bARLO\b|\bARBL\b|\bARB_?LOST\b|\bAL\b|\bLAB\b/i;
 
 export function reportsLoss(entry: LogEntry): boolean {
   return LOST.test(entry.message);

@@ -1,11 +1,12 @@
 import { describe, expect, test } from "vitest";
-import { explainCode } from "@/lib/diagnosis/codes";
+import { codesIn, explainCode } from "@/lib/diagnosis/codes";
 import { duration, figure, rate } from "@/lib/diagnosis/format";
 import { readLog } from "@/lib/diagnosis/log";
 import { type Report, ReportSchema, type Summary } from "@/lib/diagnosis/report";
 import { readRoster, writeRoster } from "@/lib/diagnosis/roster";
 import { reportJson } from "@/lib/diagnosis/serial";
 import { reportText } from "@/lib/diagnosis/text";
+import { reportsLoss } from "@/lib/forensics/log-match";
 import { LineScript, SCRIPT_HEAD, scripted } from "../support/line-script";
 
 const MS = 1_000_000;
@@ -220,6 +221,10 @@ describe("controller log", () => {
     expect(explainCode("ENXIO from 0x50")[0].meaning).toContain("address");
     expect(explainCode("ARLO set")[0].meaning).toContain("read it low");
     expect(explainCode("all is well at 12.11 s")).toEqual([]);
+    expect(codesIn(["transfer failed: -11", "EAGAIN again", "ENXIO"]).map(({ code }) => code)).toEqual(["EAGAIN", "ENXIO"]);
+    const loss = (message: string) => reportsLoss({ time_s: 0, controller: null, message });
+    expect(["xfer failed: -11", "errno 11", "ARLO", "arbitration lost"].map(loss)).toEqual([true, true, true, true]);
+    expect(["-110", "after -11.5 ms", "done in 11 s"].map(loss)).toEqual([false, false, false]);
   });
 });
 

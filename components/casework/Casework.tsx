@@ -41,7 +41,13 @@ export function Casework({ initial, me }: CaseworkProps) {
       {items.map(
         ({ transfer, key }) => transfer && transfer.view().state !== "done" && <TransferLine key={key} transfer={transfer} />,
       )}
-      {items.length > 1 && <CaptureNav items={items} current={item} onChoose={choose} />}
+      {items.length > 1 && (
+        <CaptureNav
+          items={items.map(({ key, name, capture }) => ({ key, name, verdict: capture?.summary?.verdict ?? null }))}
+          current={item}
+          onChoose={choose}
+        />
+      )}
       {keeping.trouble !== null && (
         <Notice
           kind="broken"
@@ -103,8 +109,8 @@ function write(query: URLSearchParams, ordinal: number): void {
 }
 
 /**
- * Which capture is open. It is held by its key, because captures on their way are numbered in the order they arrive; its number
- * stands in the address bar and follows.
+ * Which capture is open. It is held by its key, because those on their way have no number yet and one that stands still is
+ * overtaken; its number stands in the address bar and follows.
  */
 function useChosen(items: readonly Item[]): [Item | null, (ordinal: number) => void] {
   const [key, setKey] = useState<string | null>(null);

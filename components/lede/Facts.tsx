@@ -3,6 +3,7 @@ import type { FaultKind, Summary } from "@/lib/diagnosis/report";
 import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { Capture } from "@/lib/view/capture";
 import { count, duration, span } from "@/lib/view/format";
+import { CAPTURE_WORDS } from "@/lib/view/words";
 
 function Fact({ children }: { children: ReactNode }) {
   return <li className="whitespace-nowrap">{children}</li>;
@@ -31,8 +32,6 @@ function failing(summary: Summary | null): number {
 function all(summary: Summary | null): number {
   return sum(totals(summary));
 }
-
-const VERDICT_WORDS = { pass: "passes", fail: "fails", undecided: "not decided" } as const;
 
 /** The capture in figures, one line. */
 export function Facts({ capture }: { capture: Capture }) {
@@ -64,7 +63,7 @@ export function Facts({ capture }: { capture: Capture }) {
           )}
           <Fact>
             judged by <Figure>{summary.limits.profile}</Figure>
-            {summary.limits.source && `, ${summary.limits.source}`}: {VERDICT_WORDS[summary.verdict]}
+            {summary.limits.source && `, ${summary.limits.source}`}: {CAPTURE_WORDS[summary.verdict]}
           </Fact>
         </>
       )}

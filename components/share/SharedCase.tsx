@@ -38,7 +38,7 @@ export function SharedCase({ shared, path }: SharedCaseProps) {
       </p>
       {file.captures.length > 1 && (
         <CaptureNav
-          items={file.captures.map(({ id, name }) => ({ key: id, name }))}
+          items={file.captures.map(({ id, name, summary }) => ({ key: id, name, verdict: summary?.verdict ?? null }))}
           current={capture ? { key: capture.id } : null}
           onChoose={setChosen}
         />

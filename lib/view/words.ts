@@ -1,7 +1,7 @@
 // In: a row and what was found about it. Out: the words for it: its verdict in the stack, and one sentence for those who
 // hear the page instead of seeing it.
 
-import type { FaultKind } from "../diagnosis/report";
+import type { FaultKind, Summary } from "../diagnosis/report";
 import { FAULT_WORDS } from "../diagnosis/wording";
 import { address, count, duration, hex } from "./format";
 import type { Ledger, Row } from "./ledger";
@@ -45,6 +45,9 @@ const SHORT_WORDS: Record<FaultKind, string> = {
 export function faultWords(kind: FaultKind): string {
   return SHORT_WORDS[kind];
 }
+
+/** How a whole capture stands, after its limits profile or its name. */
+export const CAPTURE_WORDS: Record<Summary["verdict"], string> = { pass: "passes", fail: "fails", undecided: "not decided" };
 
 /** Every verdict that applies, the gravest first. */
 export function verdicts(row: Row, marks: RowMarks, all: Marks): Verdict[] {

@@ -112,7 +112,7 @@ test("a lead's way: two captures in one case, a link with a passphrase and the o
   await page.getByRole("button", { name: "yes, as read" }).click();
   await expect(page.getByText("the bus carried 18 transactions by 2 controllers")).toBeVisible();
   await kept(page, number);
-  // Captures are numbered in the order they arrived; the one that was chosen stays open whatever its number became.
+  // The one that was chosen stays open while the others arrive.
   await expect(captures.getByRole("button", { name: file.name })).toHaveAttribute("aria-pressed", "true");
   await page.getByRole("combobox", { name: "address" }).selectOption("32");
   await expect(rows(page)).toHaveCount(6);

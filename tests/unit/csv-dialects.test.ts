@@ -331,6 +331,7 @@ describe("columns", () => {
 
   test("notes on some rows, text in a column, times of day", async () => {
     same(await readText(`Time [s],SCL,SDA,Note\n${table(rows, (s, i) => `${plainRow(s)},${i === 20 ? "probe moved" : ""}`)}`));
+    same(await readText(`Time [s],SCL,SDA,Note\n${table(rows, (s, i) => `${plainRow(s)},${i % 3 === 2 ? "seen" : ""}`)}`));
     same(await readText(`Date,Time [s],SCL,SDA\n${table(rows, (s) => `Tuesday,${plainRow(s)}`)}`));
     const day = await readText(
       `Time,SCL,SDA\n${table(rows, (s) => `00:00:${seconds(s.at).padStart(12, "0")},${s.scl},${s.sda}`)}`,

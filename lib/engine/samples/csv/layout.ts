@@ -120,7 +120,7 @@ function headerAmongReadings(table: HeadTable): boolean {
   const top = trimmed(rows[first].cells);
   let foreign = 0;
   for (let c = 0; c < width; c += 1) {
-    const text = top[c].trim();
+    const text = (top[c] ?? "").trim();
     const numbers = following.every((cells) => kindOf(cells[c], dialect) === NUMBER);
     if (numbers && /^[a-zA-Z]$/.test(text)) foreign += 1;
     const logic = numbers && following.every((cells) => /^\s*[01]\s*$/.test(cells[c]));

@@ -111,6 +111,11 @@ describe("three ways of reading agree", () => {
     ["uniform levels", 1000, (s) => `${(s.at * 1e-9).toFixed(9)},${s.scl},${s.sda}`],
     ["changes only", null, (s) => `${(s.at * 1e-9).toFixed(9)},${s.scl},${s.sda}`],
     ["uniform levels from before the trigger", 1000, (s) => `${((s.at - 300_000) * 1e-9).toFixed(7)},${s.scl},${s.sda}`],
+    ["levels at times of many decimals", 1000, (s) => `${((s.at - 3e5) * 1e-9).toFixed(12)},${s.scl},${s.sda}`],
+    ["levels at times of few digits", null, (s) => `${Number((s.at * 1e-9).toFixed(9))},${s.scl},${s.sda}`],
+    ["changes at times with exponents", null, (s) => `${(s.at * 1e-9).toExponential()},${s.scl},${s.sda}`],
+    ["levels after blanks", 1000, (s) => `${(s.at * 1e-9).toFixed(6)}, ${s.scl}, ${s.sda}`],
+    ["levels before an empty column", 1000, (s) => `${(s.at * 1e-9).toFixed(6)},${s.scl},${s.sda},`],
   ];
   test.each(shapes)("%s", async (_name, interval, row) => {
     await fc.assert(
@@ -130,6 +135,11 @@ describe("three ways of reading agree", () => {
     [
       "volts about zero with many decimals",
       (at, v, w) => `${((at - 1e5) * 1e-9).toFixed(8)},${(v - 1.65).toFixed(6)},${(w - 1.65).toFixed(2)}`,
+    ],
+    ["millivolts in whole numbers", (at, v, w) => `${(at * 1e-9).toFixed(9)},${Math.round(v * 1000)},${Math.round(w * 1000)}`],
+    [
+      "volts of more digits than fit 32 bits",
+      (at, v, w) => `${((at - 1e5) * 1e-9).toFixed(13)},${(v - 1.65).toFixed(12)},${(w * 1e10).toFixed(0)}e-10`,
     ],
     [
       "volts in trimmed numbers",

@@ -43,14 +43,8 @@ export interface BodyReader {
   finish(): void;
 }
 
-export function bodyReader(
-  plan: ScanPlan,
-  form: TextForm,
-  target: RowTarget,
-  fast: FastPath | null,
-  ready: () => boolean,
-): BodyReader {
-  const scanner = new Scanner(plan, target, fast, ready);
+export function bodyReader(plan: ScanPlan, form: TextForm, target: RowTarget, fast: FastPath | null): BodyReader {
+  const scanner = new Scanner(plan, target, fast);
   return plan.dialect.quoted ? new QuotedReader(scanner, target, (bytes) => decode(bytes, plainEncoding(form))) : scanner;
 }
 
@@ -61,7 +55,7 @@ export function bodyOf(source: ByteSource, form: TextForm, layout: Layout, axis:
     layout,
     axis,
     async walk(selection, target, enough) {
-      const reader = bodyReader(scanPlan(layout, axis, selection), form, target, null, () => false);
+      const reader = bodyReader(scanPlan(layout, axis, selection), form, target, null);
       // Asked at fixed places of the file, whatever lengths its bytes come in: a survey must find the same everywhere.
       let read = 0;
       for await (const chunk of plainChunks(source.open(), form)) {

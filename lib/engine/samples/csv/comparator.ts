@@ -2,6 +2,7 @@
 // fall at VIL, at crossing times interpolated between samples; and visits between the two that decided nothing.
 
 import type { Excursion } from "../edges";
+import type { RowBlock } from "./block";
 
 export interface Thresholds {
   /** In the column's own numbers (volts, or converter counts). */
@@ -84,10 +85,44 @@ export class Comparator {
     this.add(v);
   }
 
-  /** Notes the previous sample after quiet ones that went past `detect`. */
-  seen(tick: number, v: number): void {
-    this.previous = v;
-    this.previousTick = tick;
+  /** First row of a block, from `from` on, whose reading `slot` is not quiet; `to` where all are. */
+  quietUntil(block: RowBlock, slot: number, from: number, to: number): number {
+    const { readings, width } = block;
+    if (this.between || this.level === 2) return from;
+    // NaN is never quiet.
+    const high = this.level === 1;
+    const least = high ? this.vih : Number.NEGATIVE_INFINITY;
+    const most = high ? Number.POSITIVE_INFINITY : this.vil;
+    let at = from * width + slot;
+    let i = from;
+    for (; i < to; i += 1, at += width) {
+      const v = readings[at];
+      if (!(v >= least && v <= most)) break;
+    }
+    return i;
+  }
+
+  /** Takes quiet rows, at least one. */
+  quietRun(block: RowBlock, slot: number, from: number, to: number): void {
+    const { readings, width, ticks } = block;
+    const { ring, settle } = this;
+    const window = ring.length;
+    let { at, sum, count } = this;
+    for (let i = from, place = from * width + slot; i < to; i += 1, place += width) {
+      const v = readings[place];
+      const change = v - ring[at];
+      ring[at] = v;
+      at = at + 1 === window ? 0 : at + 1;
+      if (change <= settle && change >= -settle) {
+        sum += v;
+        count += 1;
+      }
+    }
+    this.at = at;
+    this.sum = sum;
+    this.count = count;
+    this.previous = readings[(to - 1) * width + slot];
+    this.previousTick = ticks[to - 1];
   }
 
   /** Mean of the settled samples since the last call; NaN where there were none. */

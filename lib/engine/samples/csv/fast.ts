@@ -1,23 +1,28 @@
-// In: whole rows of a plain body. Out: the same edges as the scanner's, for the two commonest shapes: a time and one-byte
-// levels, and a time and two voltages. Each row is checked byte by byte; the first one that is not exactly of the shape is
+// In: whole rows of a plain body. Out: the same edges as the scanner's, for the commonest shape: a time and one-byte levels.
+// A row is read by the form of the row before it, all digits at once and every byte checked; the first one of another form is
 // left to the scanner, which hands back after it. Nothing here decides anything that Rows or the takers would not.
 
 import type { Body } from "./body";
 import { POWERS } from "./cell";
 import type { LineSource } from "./lines";
+import { lastDigits } from "./row-form";
 import type { Rows } from "./rows";
 import type { FastPath, Scanner } from "./scanner";
 import type { LevelTaker } from "./takers";
+import { TimeForm } from "./time-form";
 
 const CR = 13;
 const LF = 10;
+const MINUS = 45;
+/** Bytes before the end of digits that are loaded with them. */
+const EIGHT = 8;
 
 /** Ticks per unit of the last digit of times with `places` decimals; NaN where that is not a whole number. */
 function multiplierOf(power: number, places: number): number {
   return power - places >= 0 && power - places <= 22 ? POWERS[power - places] : Number.NaN;
 }
 
-export function shapeAllows(body: Body): boolean {
+function shapeAllows(body: Body): boolean {
   const { axis, layout } = body;
   return (
     axis.clock.column === 0 &&
@@ -30,8 +35,7 @@ export function shapeAllows(body: Body): boolean {
 
 /** Rows like "0.0000125,1,0": the time first, every other column one byte 0 or 1. */
 export class FastLevels implements FastPath {
-  readonly worth = true;
-  begin(): void {}
+  private readonly form = new TimeForm();
   private readonly delimiter: number;
   private readonly decimal: number;
   /** Distance from the end of the time to the bytes of SCL, SDA and the row's end. */
@@ -59,73 +63,72 @@ export class FastLevels implements FastPath {
   }
 
   scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number {
-    const { delimiter, decimal, toScl, toSda, toEnd, rows, taker } = this;
+    const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+    let p = from;
+    while (p >= EIGHT && this.rows.regular && this.form.learn(bytes, p, this.decimal)) {
+      const next = this.read(bytes, view, p, to, scanner);
+      if (next === p) break;
+      p = next;
+    }
+    return p;
+  }
+
+  /** Rows of one form, all of one length. Everything stays in locals: fields cost more here than the digits do. */
+  private read(bytes: Uint8Array, view: DataView, from: number, to: number, scanner: Scanner): number {
+    const { delimiter, decimal, form, rows, taker, toScl, toSda } = this;
+    const { sign, headEnd, middleEnd, tailEnd, marked, middle, middleScale, tailScale } = form;
+    const { headHigh, headLow, middleHigh, middleLow, tailHigh, tailLow } = form;
     const { gap } = rows;
-    const timePower = this.body.axis.clock.power;
-    const three = toEnd === 4;
-    let places = -1;
-    let multiplier = Number.NaN;
+    const { changeTicks, changeLines } = taker;
+    const multiplier = multiplierOf(this.body.axis.clock.power, form.places);
+    const three = this.toEnd === 4;
+    const toEnd = sign + tailEnd + this.toEnd;
+    const ending = bytes[from + toEnd];
+    const length = ending === CR ? toEnd + 2 : toEnd + 1;
     let last = rows.lastTick;
     let before = rows.beforeTick;
     let limit = rows.limit;
-    let key = taker.lines === 3 ? 0x3131 : -1;
-    let p = from;
+    let { lines } = taker;
+    let key = lines === 3 ? 0x3131 : -1;
+    let changes = 0;
     let read = 0;
-    while (p < to) {
-      const start = p;
-      let digit = bytes[p] - 48;
-      let negative = false;
-      if (digit === -3) {
-        negative = true;
-        p += 1;
-        digit = bytes[p] - 48;
+    let p = from;
+    for (; p + length <= to; p += length) {
+      const first = p + sign;
+      const head = lastDigits(view, first + headEnd, headHigh, headLow);
+      const tail = lastDigits(view, first + tailEnd, tailHigh, tailLow);
+      let digits = head;
+      if (middle) {
+        const part = lastDigits(view, first + middleEnd, middleHigh, middleLow);
+        if (part < 0) break;
+        digits = digits * middleScale + part;
       }
-      let whole = 0;
-      const first = p;
-      while (digit >= 0 && digit <= 9) {
-        whole = (Math.imul(whole, 10) + digit) | 0;
-        p += 1;
-        digit = bytes[p] - 48;
-      }
-      const wholeEnd = p;
-      let part = 0;
-      if (bytes[p] === decimal) {
-        p += 1;
-        digit = bytes[p] - 48;
-        while (digit >= 0 && digit <= 9) {
-          part = (Math.imul(part, 10) + digit) | 0;
-          p += 1;
-          digit = bytes[p] - 48;
-        }
-      }
-      const found = p === wholeEnd ? 0 : p - wholeEnd - 1;
-      if (found !== places) {
-        places = found;
-        multiplier = found > 9 ? Number.NaN : multiplierOf(timePower, found);
-      }
-      let tick = (whole * POWERS[places] + part) * multiplier;
-      if (negative) tick = -tick;
+      digits = (digits * tailScale + tail) * multiplier;
+      const tick = sign === 1 ? -digits : digits;
       // NaN fails as well: a shape whose ticks are not whole numbers goes to the scanner.
-      if (!(tick > last && tick < limit) || wholeEnd === first || wholeEnd - first > 9)
-        return this.leave(scanner, start, read, before, last, limit);
-      const end = p + toEnd;
-      const ending = bytes[end];
-      if (ending !== LF && !(ending === CR && bytes[end + 1] === LF && end + 1 < to))
-        return this.leave(scanner, start, read, before, last, limit);
-      const scl = bytes[p + toScl];
-      const sda = bytes[p + toSda];
+      if (head < 0 || tail < 0 || !(tick > last && tick < limit)) break;
+      const at = first + tailEnd;
+      if ((marked && bytes[first + headEnd] !== decimal) || (sign === 1 && bytes[p] !== MINUS)) break;
+      if (bytes[p + toEnd] !== ending || bytes[p + length - 1] !== LF) break;
+      const scl = bytes[at + toScl];
+      const sda = bytes[at + toSda];
       const plain = three
-        ? bytes[p] === delimiter && bytes[p + 2] === delimiter && ((scl | sda) & 0xfe) === 48 && (scl & sda & 48) === 48
-        : this.others(bytes, p);
-      if (!plain) return this.leave(scanner, start, read, before, last, limit);
-      p = ending === LF ? end + 1 : end + 2;
+        ? bytes[at] === delimiter && bytes[at + 2] === delimiter && ((scl | sda) & 0xfe) === 48 && (scl & sda & 48) === 48
+        : this.others(bytes, at);
+      if (!plain) break;
       const now = (scl << 8) | sda;
       if (now !== key) {
         key = now;
-        const lines = (scl & 1) | ((sda & 1) << 1);
-        if (lines !== taker.lines) {
-          taker.lines = lines;
-          taker.writer.put(tick, lines);
+        const next = (scl & 1) | ((sda & 1) << 1);
+        if (next !== lines) {
+          if (changes === changeTicks.length) {
+            taker.put(changes);
+            changes = 0;
+          }
+          lines = next;
+          changeTicks[changes] = tick;
+          changeLines[changes] = next;
+          changes += 1;
         }
       }
       before = last;
@@ -133,7 +136,10 @@ export class FastLevels implements FastPath {
       limit = tick + gap;
       read += 1;
     }
-    return this.leave(scanner, p, read, before, last, limit);
+    taker.put(changes);
+    taker.lines = lines;
+    if (read > 0) this.leave(scanner, read, before, last, limit);
+    return p;
   }
 
   /** The cells after a time that ends at `p`, for a row of any width. */
@@ -144,23 +150,15 @@ export class FastLevels implements FastPath {
     return true;
   }
 
-  private leave(scanner: Scanner, at: number, read: number, before: number, last: number, limit: number): number {
-    if (read > 0) {
-      this.rows.beforeTick = before;
-      this.rows.lastTick = last;
-      this.rows.limit = limit;
-    }
-    return handBack(scanner, this.rows, at, read);
-  }
-}
-
-/** Brings the scanner and the rows' count up to where a fast path stopped after `read` rows. */
-export function handBack(scanner: Scanner, rows: Rows, at: number, read: number): number {
-  if (read > 0) {
+  /** Brings the scanner and the judge of the rows up to where this path is. */
+  private leave(scanner: Scanner, read: number, before: number, last: number, limit: number): void {
+    const { rows } = this;
+    rows.beforeTick = before;
+    rows.lastTick = last;
+    rows.limit = limit;
     rows.count += read;
     scanner.line += read;
     scanner.rowNumber += read;
     rows.lastLine = scanner.line - 1;
   }
-  return at;
 }

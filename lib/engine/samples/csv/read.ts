@@ -8,10 +8,10 @@ import { Aside } from "./aside";
 import { type Body, bodyReader, scanPlan } from "./body";
 import { Comparator, Excursions } from "./comparator";
 import { FastLevels } from "./fast";
-import { FastVolts } from "./fast-volts";
 import { timeColumnOf } from "./layout";
 import { DigitalTap, isDigital, type LineSource, type Selection, select } from "./lines";
 import { OwnTimeLine, OwnTimesPair, OwnTimesTaker } from "./own-times";
+import { PlainRows } from "./plain-rows";
 import { Rows, type RowTaker } from "./rows";
 import type { FastPath } from "./scanner";
 import { type LevelSource, LevelTaker, type TapLines, VoltTaker } from "./takers";
@@ -38,7 +38,7 @@ export async function readBody(job: BodyJob, sink: EdgeSink, plain: boolean): Pr
   const parts = assemble(job, sink);
   const { rows, writers, finish } = parts;
   const plan = scanPlan(body.layout, body.axis, parts.selection);
-  const reader = bodyReader(plan, body.form, rows, plain ? parts.fast : null, () => rows.regular);
+  const reader = bodyReader(plan, body.form, rows, plain ? (parts.fast ?? PlainRows.for(plan)) : null);
   return guardInflate(async () => {
     let read = 0;
     for await (const chunk of plainChunks(body.source.open(), body.form)) {
@@ -125,11 +125,11 @@ function inLevels(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bo
 
 function inVolts(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bound {
   const { selection, job, comparator } = line;
-  const { body, scl, sda } = job;
+  const { scl, sda } = job;
   const slot = (source: LineSource) => selection.slots[source.column.index];
   const means = job.head.vdd_v !== null;
   const taker = new VoltTaker(selection.values, slot(scl), slot(sda), comparator("scl"), comparator("sda"), taps, bus, means);
-  return bind(line, taker, (rows) => FastVolts.for(body, selection, scl, sda, rows, taker));
+  return bind(line, taker, () => null);
 }
 
 function ownTimes(line: BusLine, taps: readonly TapLines[], bus: EdgeWriter): Bound {

@@ -1,5 +1,5 @@
-// In: one row of plain numbers. Out: how many decimals each of its cells has, and what reads so many of them at once. A form
-// is a guess about the rows that follow, and whoever uses it checks every byte against it.
+// In: one row of a time and two readings. Out: how many decimals each of its cells has, and what reads so many of them at
+// once. A form is a guess about the rows that follow, and whoever uses it checks every byte against it.
 
 import { POWERS } from "./cell";
 
@@ -11,11 +11,8 @@ const ZEROS = 0x30303030;
 const SIXES = 0x06060606;
 const TENS = 0xf0f0f0f0;
 /** Of four bytes the last n: those before them do not belong to the decimals. */
-const LAST = Int32Array.of(0, 0xff000000, 0xffff0000, 0xffffff00, -1);
+export const LAST = Int32Array.of(0, 0xff000000, 0xffff0000, 0xffffff00, -1);
 
-/** Digits beyond these may not be exact in a double, or pass 32 bits before the mark. */
-const MOST_DIGITS = 15;
-const MOST_WHOLE = 9;
 /** Decimals that are read in two loads of four bytes. */
 const EIGHT = 8;
 
@@ -44,27 +41,21 @@ export const ROW_ROOM = 128;
 const CELLS = 3;
 
 export class RowForm {
-  /** Decimals of each cell, and how many of them are read at once, in two masked loads; the rest one by one before. */
-  readonly places = new Int32Array(CELLS);
+  /** Decimals of each cell that are read at once, in two masked loads; one more stands before them where `single`. */
   readonly packed = new Int32Array(CELLS);
-  readonly single = new Int32Array(CELLS);
   readonly high = new Int32Array(CELLS);
   readonly low = new Int32Array(CELLS);
-  /** Digits that may stand before the mark. */
-  readonly whole = new Int32Array(CELLS);
-  /** Power of ten by which a cell's digits are divided, its exponent aside. */
-  readonly divisors = new Int32Array(CELLS);
+  single = false;
   /** LF, or the CR of a CR LF. */
   ending = LF;
-  /** No cell has an exponent, all have decimals, and times are whole ticks. */
-  plain = false;
-  /** The same by name, for plain rows; `multiplier` takes a time's digits to ticks. */
-  multiplier = 1;
-  timeScale = 1;
-  firstScale = 1;
-  secondScale = 1;
-  firstDivisor = 1;
-  secondDivisor = 1;
+  /** Takes a time's digits to ticks. */
+  multiplier = 1.5;
+  /** What the whole digits of each reading are worth in units of its last decimal, and how many of those are a volt. */
+  timeScale = 1.5;
+  firstScale = 1.5;
+  secondScale = 1.5;
+  firstDivisor = 1.5;
+  secondDivisor = 1.5;
 
   /** `powers`: of ten, from each reading's unit to volts; `timePower`: from the times' unit to ticks. */
   constructor(
@@ -74,59 +65,44 @@ export class RowForm {
     private readonly decimal: number,
   ) {}
 
-  /** Takes the form of the row at `from`; false where it is not a row of plain numbers. */
+  /** Takes the form of the row at `from`; false where it is not a row of plain numbers with decimals and whole ticks. */
   learn(bytes: Uint8Array, from: number): boolean {
     let p = from;
-    let exponents = false;
+    const places = [0, 0, 0];
     for (let c = 0; c < CELLS; c += 1) {
       if (bytes[p] === 45) p += 1;
-      const first = p;
-      p = pastDigits(bytes, p);
-      if (p === first) return false;
-      let places = 0;
-      if (bytes[p] === this.decimal) {
-        places = pastDigits(bytes, p + 1) - p - 1;
-        p += 1 + places;
-        if (places === 0) return false;
-      }
-      if ((bytes[p] | 32) === 101) {
-        exponents = true;
-        p = pastDigits(bytes, bytes[p + 1] === 45 || bytes[p + 1] === 43 ? p + 2 : p + 1);
-      }
+      const mark = pastDigits(bytes, p);
+      if (mark === p || bytes[mark] !== this.decimal) return false;
+      p = pastDigits(bytes, mark + 1);
+      places[c] = p - mark - 1;
       if (c < CELLS - 1 && bytes[p] !== this.delimiter) return false;
       p += 1;
-      if (!this.keep(c, places)) return false;
     }
     this.ending = bytes[p - 1];
-    this.name(exponents);
-    return (this.ending === LF || (this.ending === CR && bytes[p] === LF)) && p - from < ROW_ROOM / 2;
+    const ends = this.ending === LF || (this.ending === CR && bytes[p] === LF);
+    return ends && p - from < ROW_ROOM / 2 && this.take(places);
   }
 
-  private name(exponents: boolean): void {
-    const { packed, places, divisors } = this;
+  private take(places: readonly number[]): boolean {
     const power = this.timePower - places[0];
-    const whole = power >= 0 && power <= 22 && places[0] <= 9;
-    const scaled = divisors[1] >= 0 && divisors[1] <= 22 && divisors[2] >= 0 && divisors[2] <= 22;
-    this.plain = !exponents && whole && scaled && packed.every((n) => n > 0);
-    if (!this.plain) return;
+    const first = places[1] - this.powers[1];
+    const second = places[2] - this.powers[2];
+    const exact = power >= 0 && power <= 22 && first >= 0 && first <= 22 && second >= 0 && second <= 22;
+    if (!exact || places[0] > EIGHT + 1 || places[1] > EIGHT || places[2] > EIGHT || places.includes(0)) return false;
+    this.single = places[0] > EIGHT;
+    for (let c = 0; c < CELLS; c += 1) {
+      const packed = Math.min(EIGHT, places[c]);
+      this.packed[c] = packed;
+      this.high[c] = LAST[Math.max(0, packed - 4)];
+      this.low[c] = LAST[Math.min(4, packed)];
+    }
     this.multiplier = POWERS[power];
-    this.timeScale = POWERS[packed[0]];
-    this.firstScale = POWERS[packed[1]];
-    this.secondScale = POWERS[packed[2]];
-    this.firstDivisor = POWERS[divisors[1]];
-    this.secondDivisor = POWERS[divisors[2]];
-  }
-
-  private keep(c: number, places: number): boolean {
-    const packed = Math.min(EIGHT, places);
-    this.places[c] = places;
-    this.packed[c] = packed;
-    this.single[c] = places - packed;
-    this.high[c] = LAST[Math.max(0, packed - 4)];
-    this.low[c] = LAST[Math.min(4, packed)];
-    this.whole[c] = Math.min(MOST_WHOLE - this.single[c], MOST_DIGITS - places);
-    this.divisors[c] = places - this.powers[c];
-    return this.whole[c] > 0 && (c === 0 || places === packed);
+    this.timeScale = POWERS[this.packed[0]];
+    this.firstScale = POWERS[places[1]];
+    this.secondScale = POWERS[places[2]];
+    this.firstDivisor = POWERS[first];
+    this.secondDivisor = POWERS[second];
+    return true;
   }
 }
 

@@ -2,11 +2,14 @@
 // takes them (survey, digital edges, volts), gaps cut, rows out of order set aside. The one judge of the time axis.
 
 import type { Aside, AsideReason } from "./aside";
+import type { RowBlock } from "./block";
 
 /** What the scanner, the fast paths and the papaparse path all deliver to. */
 export interface RowTarget {
   /** `values` of the scanner are filled. */
   row(tick: number, line: number): void;
+  /** Rows of consecutive lines. */
+  rows(block: RowBlock): void;
   aside(line: number, reason: AsideReason): void;
 }
 
@@ -25,6 +28,8 @@ export interface Pace {
 /** Takes rows in order. `cut`: rows are missing just before this one. */
 export interface RowTaker {
   take(tick: number, cut: boolean): void;
+  /** The same for rows `from` up to `to` of a block, none of them after a cut; absent, or false, where rows go one by one. */
+  run?(block: RowBlock, from: number, to: number): boolean;
   /** Whether a lost sample just before these values leaves the order of the lines' changes open. */
   orderLost(): boolean;
   /** Takes the latest row back, whose time was wrong. False, or absent, where that cannot be. */
@@ -73,6 +78,47 @@ export class Rows implements RowTarget {
   /** Whether the next row may be taken by a fast path. */
   get regular(): boolean {
     return this.pending === null && this.doubted === null && this.asideSince === 0 && this.count > 0 && !this.pace.rebuilt;
+  }
+
+  rows(block: RowBlock): void {
+    for (let from = 0; from < block.length; ) {
+      const to = this.regular ? this.regularUntil(block, from) : from;
+      if (to > from) this.acceptRun(block, from, to);
+      if (to < block.length) {
+        block.lift(to, this.values);
+        this.row(block.ticks[to], block.line + to);
+      }
+      from = to + 1;
+    }
+  }
+
+  /** First row from `from` on that does not simply follow the one before it. */
+  private regularUntil(block: RowBlock, from: number): number {
+    const { gap } = this;
+    const { ticks, length } = block;
+    let last = this.lastTick;
+    let to = from;
+    for (; to < length; to += 1) {
+      const tick = ticks[to];
+      if (!(tick > last && tick < last + gap)) return to;
+      last = tick;
+    }
+    return to;
+  }
+
+  private acceptRun(block: RowBlock, from: number, to: number): void {
+    const { ticks } = block;
+    if (this.taker.run?.(block, from, to) !== true) {
+      for (let i = from; i < to; i += 1) {
+        block.lift(i, this.values);
+        this.taker.take(ticks[i], false);
+      }
+    }
+    this.count += to - from;
+    this.beforeTick = to - from > 1 ? ticks[to - 2] : this.lastTick;
+    this.lastTick = ticks[to - 1];
+    this.limit = this.lastTick + this.gap;
+    this.lastLine = block.line + to - 1;
   }
 
   row(written: number, line: number): void {

@@ -1,9 +1,11 @@
-// In: chunks of a CSV body, cut anywhere. Out: one call per row with its instant and the wanted cells' values. Bytes
+// In: chunks of a CSV body, cut anywhere. Out: blocks of rows, each with its instant and the wanted cells' values. Bytes
 // only: no string is made for a regular row, and instants are exact whole-number mantissas until they are ticks.
 
 import type { AsideReason } from "./aside";
-import { BITS, Cell, NUMBER, POWERS, readText, scaled, UNKNOWN } from "./cell";
-import { digits, exponent, mantissa, readDigits, readExponent } from "./digits";
+import { RowBlock } from "./block";
+import { BITS, Cell, NUMBER, readText, scaled, UNKNOWN } from "./cell";
+import { Regions } from "./regions";
+import { readRegular } from "./regular";
 import type { RowTarget } from "./rows";
 import { type Dialect, splitText } from "./split";
 
@@ -39,121 +41,61 @@ export interface ScanPlan {
   readonly values: Float64Array;
 }
 
-/** A longer row is no row of readings; it is set aside without being kept. */
-const ROW_LIMIT = 1 << 20;
-
 const CR = 13;
 const LF = 10;
 
 export interface FastPath {
-  /** False while rows are too irregular for it. */
-  readonly worth: boolean;
-  /** A new chunk begins: irregular rows are behind. */
-  begin(): void;
   /** Takes regular rows from `from` on; returns the position of the first row it leaves to the scanner. */
   scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number;
 }
+
+/** Rows that the scanner reads before it asks the fast path again. */
+const ASIDE_ROWS = 16;
 
 export class Scanner {
   /** Line of the row at hand, from 1. */
   line = 1;
   /** Rows read since the first row of readings, used or not. */
   rowNumber = 0;
-  private carry = new Uint8Array(4096);
-  private carried = 0;
-  private discarding = false;
-  private lastByte = 0;
+  private readonly regions = new Regions((bytes, from, to) => this.region(bytes, from, to));
+  /** Rows from `line` on that were read and not handed on. */
+  readonly block: RowBlock;
   private readonly cell = new Cell();
-  /** What is wrong with the row at hand, and its instant. */
+  /** What is wrong with the row at hand, and the reading of the cell at hand. */
   private odd: AsideReason | "" = "";
-  private mantissa = 0;
-  private exponent = 0;
-  private exponentNow = Number.NaN;
-  private multiplier = 1;
-  private divisor = 1;
+  private reading = 0;
+  private lastByte = 0;
   private readonly delimiter: number;
   private readonly decimal: number;
   private readonly spaces: boolean;
-  /** The bytes being scanned. */
-  view: DataView = new DataView(this.carry.buffer);
 
   constructor(
     readonly plan: ScanPlan,
     private readonly target: RowTarget,
     private readonly fast: FastPath | null,
-    private readonly ready: () => boolean,
   ) {
+    this.block = new RowBlock(plan.values.length);
     this.delimiter = plan.dialect.delimiter.charCodeAt(0);
     this.decimal = plan.dialect.decimal.charCodeAt(0);
     this.spaces = plan.dialect.delimiter === " ";
   }
 
   push(input: Uint8Array): void {
-    const chunk = this.spaces ? input.map((byte) => (byte === 9 ? 32 : byte)) : input;
-    let from = 0;
-    if (this.carried > 0 || this.discarding) {
-      while (from < chunk.length && chunk[from] !== LF && chunk[from] !== CR) from += 1;
-      if (from === chunk.length) {
-        this.keep(chunk, 0, chunk.length);
-        return;
-      }
-      from += 1;
-      this.keep(chunk, 0, from);
-      this.region(this.carry, 0, this.endCarry());
-    }
-    let end = chunk.length;
-    while (end > from && chunk[end - 1] !== LF && chunk[end - 1] !== CR) end -= 1;
-    if (end > from) this.region(chunk, from, end);
-    if (end < chunk.length) this.keep(chunk, end, chunk.length);
+    this.regions.push(this.spaces ? input.map((byte) => (byte === 9 ? 32 : byte)) : input);
   }
 
-  /** The last row may lack its line end (RFC 4180 section 2, rule 2). */
   finish(): void {
-    if (this.carried > 0 || this.discarding) {
-      this.keep(new Uint8Array([LF]), 0, 1);
-      this.region(this.carry, 0, this.endCarry());
-    }
-  }
-
-  private keep(bytes: Uint8Array, from: number, to: number): void {
-    if (this.discarding || this.carried + to - from > ROW_LIMIT) {
-      this.discarding = true;
-      return;
-    }
-    if (this.carried + to - from > this.carry.length) {
-      const larger = new Uint8Array(Math.max(this.carry.length * 2, this.carried + to - from));
-      larger.set(this.carry.subarray(0, this.carried));
-      this.carry = larger;
-    }
-    this.carry.set(bytes.subarray(from, to), this.carried);
-    this.carried += to - from;
-  }
-
-  /** Length of the row in `carry`; a row over the limit becomes one that cannot be read. */
-  private endCarry(): number {
-    if (this.discarding) {
-      this.discarding = false;
-      this.carry[0] = 33;
-      this.carry[1] = LF;
-      this.carried = 2;
-    }
-    const length = this.carried;
-    this.carried = 0;
-    return length;
+    this.regions.finish();
   }
 
   /** Whole rows. */
   private region(bytes: Uint8Array, from: number, to: number): void {
-    this.view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
-    this.fast?.begin();
     let p = from;
     if (bytes[p] === LF && this.lastByte === CR) p += 1;
     while (p < to && this.line < this.plan.firstLine) p = this.skipLine(bytes, p, to);
     while (p < to) {
-      if (this.fast?.worth && this.ready()) {
-        p = this.fast.scan(bytes, p, to, this);
-        if (p < to) p = this.scan(bytes, p, to, 1);
-      } else p = this.scan(bytes, p, to, this.fast?.worth ? 1 : Number.POSITIVE_INFINITY);
+      if (this.fast !== null) p = this.fast.scan(bytes, p, to, this);
+      if (p < to) p = this.scan(bytes, p, to, this.fast === null ? Number.POSITIVE_INFINITY : ASIDE_ROWS);
     }
     this.lastByte = bytes[to - 1];
   }
@@ -165,141 +107,118 @@ export class Scanner {
     return bytes[p] === CR && p + 1 < to && bytes[p + 1] === LF ? p + 2 : p + 1;
   }
 
-  /** Reads up to `limit` rows; returns the position after them. */
+  /** Reads up to `limit` rows, regular ones at once; returns the position after them. */
   private scan(bytes: Uint8Array, from: number, to: number, limit: number): number {
-    const { modes, slots, values, width, namedWidth } = this.plan;
-    const { delimiter, spaces } = this;
-    let left = limit;
+    const { plan, block } = this;
+    const until = this.rowNumber + limit;
     let p = from;
-    while (p < to && left > 0) {
+    while (p < to && this.rowNumber + block.length < until) {
+      const most = Math.min(block.capacity, until - this.rowNumber);
+      p = readRegular(bytes, p, to, plan, block, most);
+      if (block.length === block.capacity) this.flush();
+      else if (p < to && block.length < most) p = this.readRow(bytes, p, to);
+    }
+    this.flush();
+    return p;
+  }
+
+  /** Reads one row by the full grammar; returns the position after it. */
+  private readRow(bytes: Uint8Array, from: number, to: number): number {
+    const { block, plan, spaces } = this;
+    let p = from;
+    if (spaces) while (bytes[p] === 32) p += 1;
+    const start = p;
+    this.odd = "";
+    let column = 0;
+    let more = bytes[p] !== LF && bytes[p] !== CR;
+    for (; more; column += 1) {
+      const wanted = column < plan.width && plan.modes[column] !== SKIP;
+      p = wanted ? this.wantedCell(bytes, p, column) : this.skipCell(bytes, p, column);
+      more = bytes[p] === this.delimiter;
+      if (more) p += 1;
       if (spaces) while (bytes[p] === 32) p += 1;
-      const start = p;
-      let b = bytes[p];
-      if (b === LF || b === CR) {
-        this.line += 1;
-        p += b === CR && p + 1 < to && bytes[p + 1] === LF ? 2 : 1;
-        continue;
-      }
-      let column = 0;
-      this.odd = "";
-      for (;;) {
-        const mode = column < width ? modes[column] : SKIP;
-        if (b === 32 && mode !== SKIP) {
-          while (bytes[p] === 32) p += 1;
-          b = bytes[p];
-        }
-        if (mode === LEVEL) {
-          const next = bytes[p + 1];
-          if ((b & 0xfe) === 48 && (next === delimiter || next === LF || next === CR)) {
-            values[slots[column]] = b - 48;
-            p += 1;
-            b = next;
-          } else {
-            p = this.slowCell(bytes, p);
-            b = bytes[p];
-            const level = this.cell.level();
-            if (level >= 0) values[slots[column]] = level;
-            else if (this.odd === "") this.odd = "cell";
-          }
-        } else if (mode === SKIP) {
-          const cellStart = p;
-          while (b !== delimiter && b !== LF && b !== CR) {
-            p += 1;
-            b = bytes[p];
-          }
-          if (column >= namedWidth && p > cellStart && !blank(bytes, cellStart, p)) this.odd = "width";
-        } else {
-          p = this.numberCell(bytes, p, column, mode);
-          b = bytes[p];
-        }
-        column += 1;
-        if (b !== delimiter) break;
-        p += 1;
-        b = bytes[p];
-        if (spaces) {
-          while (b === 32) {
-            p += 1;
-            b = bytes[p];
-          }
-          if (b === LF || b === CR) break;
-        }
-      }
-      const end = p;
-      p += b === CR && p + 1 < to && bytes[p + 1] === LF ? 2 : 1;
-      if (column < width) this.odd = "width";
-      if (this.odd !== "") this.oddRow(bytes, start, end, this.odd);
-      else this.target.row(this.tick(this.mantissa, this.exponent), this.line);
-      this.line += 1;
+      if (spaces && (bytes[p] === LF || bytes[p] === CR)) more = false;
+    }
+    if (column < plan.width) this.odd = "width";
+    const end = p;
+    p += bytes[p] === CR && p + 1 < to && bytes[p + 1] === LF ? 2 : 1;
+    if (column > 0 && this.odd === "") {
+      block.length += 1;
+      if (block.length === block.capacity) this.flush();
+      return p;
+    }
+    this.flush();
+    if (column > 0) {
+      this.oddRow(bytes, start, end);
       this.rowNumber += 1;
-      left -= 1;
     }
+    this.line += 1;
     return p;
   }
 
-  /** Reads a number that is wanted, as the row's instant or as a value; returns the position of the cell's end. */
-  private numberCell(bytes: Uint8Array, from: number, column: number, mode: number): number {
-    let p = readDigits(bytes, from, this.decimal);
-    let e = -digits[2];
-    if (p > 0 && (bytes[p] | 32) === 101) {
-      p = readExponent(bytes, p);
-      e += exponent[0];
-    }
-    const b = p < 0 ? 0 : bytes[p];
-    if (b !== this.delimiter && b !== LF && b !== CR) return this.wordCell(bytes, from, column, mode);
-    const m = bytes[from] === 45 ? -mantissa() : mantissa();
-    if (mode === INSTANT) {
-      this.mantissa = m;
-      this.exponent = e;
-      return p;
-    }
-    const { slots, powers, values } = this.plan;
-    e += powers[column];
-    values[slots[column]] = e <= 0 && e >= -22 ? m / POWERS[-e] : scaled(m, e);
+  /** Hands on the rows that were read. */
+  flush(): void {
+    const { block } = this;
+    if (block.length === 0) return;
+    block.line = this.line;
+    if (this.plan.clock.column < 0) for (let i = 0; i < block.length; i += 1) block.ticks[i] = this.countedTick(i);
+    this.target.rows(block);
+    this.line += block.length;
+    this.rowNumber += block.length;
+    block.length = 0;
+  }
+
+  /** A cell that nobody asked for; past the named columns it must be empty. Returns the position of its end. */
+  private skipCell(bytes: Uint8Array, from: number, column: number): number {
+    let p = from;
+    while (bytes[p] !== this.delimiter && bytes[p] !== LF && bytes[p] !== CR) p += 1;
+    if (column >= this.plan.namedWidth && p > from && !blank(bytes, from, p)) this.odd = "width";
     return p;
   }
 
-  /** The same for a cell that is no plain number, by the full grammar. */
-  private wordCell(bytes: Uint8Array, from: number, column: number, mode: number): number {
-    const p = this.slowCell(bytes, from);
+  /** Reads a wanted cell by the full grammar; returns the position of its end. */
+  private wantedCell(bytes: Uint8Array, from: number, column: number): number {
+    const { block, cell } = this;
+    let p = from;
+    while (bytes[p] !== this.delimiter && bytes[p] !== LF && bytes[p] !== CR) p += 1;
+    cell.read(bytes, from, p, this.decimal);
+    const wrong = this.judge(column);
+    if (wrong !== "") this.odd = this.odd === "" ? wrong : this.odd;
+    else if (this.plan.modes[column] === INSTANT) block.ticks[block.length] = this.tick(cell.mantissa, cell.exponent);
+    else block.readings[block.length * block.width + this.plan.slots[column]] = this.reading;
+    return p;
+  }
+
+  /** What is wrong with the cell that was read, for its column; if nothing is, `reading` is what it says. */
+  private judge(column: number): AsideReason | "" {
     const { kind } = this.cell;
-    const known = kind === NUMBER || (mode === VALUE && kind === BITS);
-    if (!known && this.odd === "" && (mode === INSTANT || kind !== UNKNOWN)) this.odd = mode === INSTANT ? "time" : "cell";
-    if (mode === INSTANT) {
-      this.mantissa = this.cell.mantissa;
-      this.exponent = this.cell.exponent;
-      return p;
-    }
-    const { slots, powers, values } = this.plan;
-    values[slots[column]] = known ? scaled(this.cell.mantissa, this.cell.exponent + powers[column]) : Number.NaN;
-    return p;
+    const mode = this.plan.modes[column];
+    if (mode === INSTANT) return kind === NUMBER ? "" : "time";
+    if (mode === LEVEL) this.reading = this.cell.level();
+    else if (kind === NUMBER || kind === BITS)
+      this.reading = scaled(this.cell.mantissa, this.cell.exponent + this.plan.powers[column]);
+    else if (kind === UNKNOWN) this.reading = Number.NaN;
+    else return "cell";
+    return this.reading < 0 && mode === LEVEL ? "cell" : "";
   }
 
   /** Instant of the row at hand, in ticks. */
-  tick(mantissa: number, exponent: number): number {
-    const { clock } = this.plan;
-    if (clock.column < 0) return Math.round(clock.start + this.rowNumber * (clock.factor ?? 1));
-    if (exponent !== this.exponentNow) {
-      this.exponentNow = exponent;
-      const power = exponent + clock.power;
-      this.multiplier = clock.factor !== null ? scaled(clock.factor, exponent) : power >= 0 ? scaled(1, power) : 1;
-      this.divisor = clock.factor === null && power < 0 ? scaled(1, -power) : 1;
-    }
-    return Math.round((mantissa * this.multiplier) / this.divisor + clock.start) + 0;
+  private tick(mantissa: number, exponent: number): number {
+    const { power, factor, start } = this.plan.clock;
+    const ticks = factor === null ? scaled(mantissa, exponent + power) : mantissa * scaled(factor, exponent);
+    return Math.round(ticks + start) + 0;
   }
 
-  /** Reads the cell at `from` by the full grammar; returns the position of its end. */
-  private slowCell(bytes: Uint8Array, from: number): number {
-    let p = from;
-    while (bytes[p] !== this.delimiter && bytes[p] !== LF && bytes[p] !== CR) p += 1;
-    this.cell.read(bytes, from, p, this.decimal);
-    return p;
+  /** Instant of the row `ahead` rows on, where rows are only counted. */
+  private countedTick(ahead: number): number {
+    return Math.round(this.plan.clock.start + (this.rowNumber + ahead) * (this.plan.clock.factor ?? 1));
   }
 
   /** A row that the bytes do not explain. Where it holds quotes, papaparse splits it. */
-  private oddRow(bytes: Uint8Array, from: number, to: number, reason: AsideReason): void {
+  private oddRow(bytes: Uint8Array, from: number, to: number): void {
     const at = bytes.indexOf(34, from);
-    if (at < 0 || at >= to) {
-      this.target.aside(this.line, reason);
+    if (this.odd !== "" && (at < 0 || at >= to)) {
+      this.target.aside(this.line, this.odd);
       return;
     }
     let text = "";
@@ -309,30 +228,19 @@ export class Scanner {
 
   /** A row that was split elsewhere: the same cells, read by the same grammar. */
   cells(row: readonly string[]): void {
-    const { modes, slots, powers, values, width, namedWidth, clock } = this.plan;
+    const { modes, slots, values, width, namedWidth, clock } = this.plan;
     const extra = row.slice(namedWidth).some((text) => text.trim() !== "");
-    let reason: AsideReason | null = row.length < width || extra ? "width" : null;
-    let mantissa = 0;
-    let exponent = 0;
-    for (let column = 0; column < width && reason === null; column += 1) {
-      const mode = modes[column];
-      if (mode === SKIP) continue;
-      const kind = readText(this.cell, row[column], this.decimal);
-      if (mode === LEVEL) {
-        const level = this.cell.level();
-        if (level < 0) reason = "cell";
-        else values[slots[column]] = level;
-      } else if (mode === INSTANT) {
-        if (kind !== NUMBER) reason = "time";
-        mantissa = this.cell.mantissa;
-        exponent = this.cell.exponent;
-      } else if (kind === NUMBER || kind === BITS)
-        values[slots[column]] = scaled(this.cell.mantissa, this.cell.exponent + powers[column]);
-      else if (kind === UNKNOWN) values[slots[column]] = Number.NaN;
-      else reason = "cell";
+    let reason: AsideReason | "" = row.length < width || extra ? "width" : "";
+    let tick = clock.column < 0 ? this.countedTick(0) : 0;
+    for (let column = 0; column < width && reason === ""; column += 1) {
+      if (modes[column] === SKIP) continue;
+      readText(this.cell, row[column], this.decimal);
+      reason = this.judge(column);
+      if (modes[column] === INSTANT) tick = this.tick(this.cell.mantissa, this.cell.exponent);
+      else values[slots[column]] = this.reading;
     }
-    if (reason !== null) this.target.aside(this.line, reason);
-    else this.target.row(this.tick(mantissa, clock.column < 0 ? 0 : exponent), this.line);
+    if (reason !== "") this.target.aside(this.line, reason);
+    else this.target.row(tick, this.line);
   }
 }
 

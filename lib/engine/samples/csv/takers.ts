@@ -1,6 +1,7 @@
 // In: rows in time order. Out: the edges of the bus lines and of the drive taps, for captures in levels and in volts.
 
 import { CUT, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../edges";
+import { BLOCK_ROWS, type RowBlock } from "./block";
 import type { Comparator } from "./comparator";
 import type { DigitalTap } from "./lines";
 import type { RowTaker } from "./rows";
@@ -40,6 +41,9 @@ export function released(level: number, inverted: boolean): number {
 export class LevelTaker implements RowTaker {
   /** Levels of the latest row, bits of EdgeBlock.lines. */
   lines = -1;
+  /** Changes of level that wait to be written together. */
+  readonly changeTicks = new Float64Array(BLOCK_ROWS);
+  readonly changeLines = new Uint8Array(BLOCK_ROWS);
 
   constructor(
     private readonly scl: DigitalTap,
@@ -55,6 +59,39 @@ export class LevelTaker implements RowTaker {
       this.lines = lines;
     }
     if (this.taps.length > 0) takeTaps(this.taps, tick, cut);
+  }
+
+  run(block: RowBlock, from: number, to: number): boolean {
+    const { scl, sda, changeTicks, changeLines } = this;
+    if (this.taps.length > 0 || scl.direct < 0 || sda.direct < 0) return false;
+    const { ticks, readings, width } = block;
+    const apart = sda.direct - scl.direct;
+    let at = from * width + scl.direct;
+    let v = -1;
+    let w = -1;
+    let { lines } = this;
+    let changes = 0;
+    for (let i = from; i < to; i += 1, at += width) {
+      const x = readings[at];
+      const y = readings[at + apart];
+      if (x === v && y === w) continue;
+      v = x;
+      w = y;
+      const now = SCL_BITS[x] | SDA_BITS[y];
+      if (now === lines) continue;
+      lines = now;
+      changeTicks[changes] = ticks[i];
+      changeLines[changes] = now;
+      changes += 1;
+    }
+    this.put(changes);
+    this.lines = lines;
+    return true;
+  }
+
+  /** Writes the first `count` waiting changes. */
+  put(count: number): void {
+    if (count > 0) this.writer.putAll(this.changeTicks, this.changeLines, count);
   }
 
   finish(): void {
@@ -97,6 +134,22 @@ export class VoltTaker implements RowTaker {
       this.sda.quiet(tick, w);
     } else this.loud(tick, cut, v, w);
     if (this.taps.length > 0) takeTaps(this.taps, tick, cut);
+  }
+
+  run(block: RowBlock, from: number, to: number): boolean {
+    const { scl, sda, sclSlot, sdaSlot } = this;
+    if (this.taps.length > 0 || this.first) return false;
+    const { ticks, readings, width } = block;
+    for (let i = from; i < to; ) {
+      const quiet = sda.quietUntil(block, sdaSlot, i, scl.quietUntil(block, sclSlot, i, to));
+      if (quiet > i) {
+        scl.quietRun(block, sclSlot, i, quiet);
+        sda.quietRun(block, sdaSlot, i, quiet);
+      }
+      if (quiet < to) this.loud(ticks[quiet], false, readings[quiet * width + sclSlot], readings[quiet * width + sdaSlot]);
+      i = quiet + 1;
+    }
+    return true;
   }
 
   private loud(tick: number, cut: boolean, v: number, w: number): void {

@@ -3,8 +3,7 @@
 
 import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../edges";
 
-const CAPACITY = 65_536;
-
+const CAPACITY = 16_384;
 export class EdgeWriter {
   sclEdges = 0;
   sdaEdges = 0;
@@ -46,6 +45,35 @@ export class EdgeWriter {
     this.heldLines = lines;
     this.leadScl = leadScl;
     this.leadSda = leadSda;
+  }
+
+  /** Events without volts, each later than the one before. */
+  putAll(eventTicks: Float64Array, eventLines: Uint8Array, count: number): void {
+    this.put(eventTicks[0], eventLines[0]);
+    if (CAPACITY - this.length < count) this.flush();
+    const { ticks, lines } = this;
+    let { length, written, sclEdges, sdaEdges, heldTick, heldLines } = this;
+    for (let i = 1; i < count; i += 1) {
+      if (heldLines !== written) {
+        ticks[length] = heldTick;
+        lines[length] = heldLines;
+        length += 1;
+        if (written >= 0) {
+          const changed = (heldLines ^ written) & ~((heldLines | written) >> 2);
+          sclEdges += changed & SCL;
+          sdaEdges += (changed & SDA) >> 1;
+        }
+        written = heldLines & ~CUT;
+      }
+      heldTick = eventTicks[i];
+      heldLines = eventLines[i];
+    }
+    this.length = length;
+    this.written = written;
+    this.sclEdges = sclEdges;
+    this.sdaEdges = sdaEdges;
+    this.heldTick = heldTick;
+    this.heldLines = heldLines;
   }
 
   /** Takes the event at `tick` back, if there is one. */

@@ -1,6 +1,6 @@
 import { useState } from "react";
 import { Cell, Table } from "@/components/ui/Table";
-import { duration, figure } from "@/lib/diagnosis/format";
+import { duration, figure, rate } from "@/lib/diagnosis/format";
 import type { Measurement, Summary } from "@/lib/diagnosis/report";
 import { count } from "@/lib/view/format";
 import { Levels } from "./Levels";
@@ -116,6 +116,7 @@ export function Limits({ summary, onGo }: LimitsProps) {
         Frequencies are given as their period. A figure nearer to its limit than the sampling can tell is too close to call, never
         a pass or a failure; so is a pass that one threshold cannot prove.
       </p>
+      <SlowSampling rows={rows} />
       {summary.levels && <Levels levels={summary.levels} controllers={summary.controllers} />}
       <PullUps summary={summary} />
     </>
@@ -157,6 +158,18 @@ function LimitRow({ row, traffic, open, onOpen, onGo }: LimitRowProps) {
         <VerdictWords row={row} />
       </Cell>
     </tr>
+  );
+}
+
+/** Limits for which the record was sampled too slowly, and the rate it would take. */
+function SlowSampling({ rows }: { rows: readonly Measurement[] }) {
+  const slow = rows.filter((row) => (row.needs_rate ?? 0) > 0);
+  if (slow.length === 0) return null;
+  const each = slow.map((row) => `${row.parameter} (${rate(row.needs_rate ?? 0, "S/s")} would do)`);
+  return (
+    <p className="mt-2 max-w-[80ch] font-serif text-body">
+      At this sample rate a value near its limit cannot be judged for {each.join(", ")}.
+    </p>
   );
 }
 

@@ -3,6 +3,7 @@ import { biasNs, RISE_FROM_HALF, RISE_TO_HALF } from "@/lib/limits/bias";
 import { createMeasurement, type MeasureHead } from "@/lib/limits/measure";
 import { builtIn, derive, type LimitTable, type Profile, type ProfileName } from "@/lib/limits/profile";
 import { type MeasurementRow, measurementRows } from "@/lib/limits/rows";
+import { cumulativeStretch, type Stretched } from "@/lib/limits/stretching";
 import { BitTrain, type Intervals } from "../support/bit-train";
 
 // One tick is a picosecond; change times, so every interval is exact.
@@ -188,6 +189,37 @@ describe("SMBus time-outs", () => {
   ])("a low of %d ps", (low, above) => {
     const train = whole(new BitTrain(usual).start().bit(1, { low }));
     expect(row(rowsOf(train, profile), "tTIMEOUT")).toMatchObject({ above });
+  });
+
+  // RM0440 39.4.12, LM5066 notes: targets from START to STOP, 25 ms; the controller within one byte, 10 ms.
+  const PER_S = EXACT.timebase.ticksPerSecond;
+  const stretch = (by: "target" | "controller", transaction: number, byte: number, excess: number): Stretched => ({
+    transaction,
+    byte,
+    start_s: 0.1 * transaction + 0.01 * byte,
+    excess_s: excess / PER_S,
+    by,
+  });
+  const summed = (list: Stretched[]) => {
+    const { sext, mext } = cumulativeStretch(list, (n) => n - (n % 2), profile.limits, EXACT.timebase, 0);
+    return [sext.judgeOf(0)?.above, mext.judgeOf(0)?.above, sext.count, mext.count];
+  };
+
+  test.each([
+    [25e9, 0],
+    [25e9 + 1, 1],
+  ])("stretching by targets of %d ps from START to STOP, repeated START included", (ps, above) => {
+    const list = [stretch("target", 0, 1, 9e9), stretch("target", 0, 2, 9e9), stretch("target", 1, 0, ps - 18e9)];
+    expect(summed(list)).toEqual([above, 0, 1, 0]);
+    expect(summed([...list.slice(0, 2), stretch("target", 2, 0, ps - 18e9)])).toEqual([0, 0, 2, 0]);
+  });
+
+  test.each([
+    [10e9, 0],
+    [10e9 + 1, 1],
+  ])("stretching by the controller of %d ps within one byte", (ps, above) => {
+    expect(summed([stretch("controller", 0, 1, 4e9), stretch("controller", 0, 1, ps - 4e9)])).toEqual([0, above, 0, 1]);
+    expect(summed([stretch("controller", 0, 1, 4e9), stretch("controller", 0, 2, ps - 4e9)])).toEqual([0, 0, 0, 2]);
   });
 });
 

@@ -167,6 +167,7 @@ describe("tSP (UM10204 Table 10: pulses under 50 ns are suppressed)", () => {
     return scripted(bus.bit(0).stop());
   };
 
+  // UM10204 Rev 7 Table 10, tSP: input filters suppress spikes of less than 50 ns.
   test("49 ns on SCL is a spike, and not acted on", async () => {
     const report = await withPulse(49);
     expect(only(report, "spike")).toMatchObject({ transaction: 1, detail: expect.stringContaining("49 ns") });

@@ -13,6 +13,10 @@ const WORDS: readonly (readonly [string, string])[] = [
   ["drive tap", "an extra channel that shows what one controller itself drives"],
   ["look-alike", "a mechanism that makes a controller report lost arbitration with no contest on the bus"],
   ["limits profile", "the set of limits a capture is judged by: a mode of the specification, or a team's own"],
+  [
+    "too close to call",
+    "a figure nearer to its limit than the sampling can tell, or a pass nearer to a least value than slow edges may hide from a recording with one threshold",
+  ],
   ["roster", "the devices on the bus: address, name, registers, bus parameters"],
   ["fault tag", "a category put on a transaction, from a catalogue the team can extend"],
   ["finding", "the written conclusion of a case, citing transactions, contests and measurements"],

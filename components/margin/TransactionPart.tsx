@@ -85,6 +85,13 @@ export function TransactionPart({ capture, index, device }: TransactionPartProps
             {stretch.bit === 8 ? "the ninth bit" : `bit ${stretch.bit}`} of byte {stretch.byte},{" "}
             <span className="tabular text-hex">{duration(stretch.excess_s)}</span> longer than usual
             {stretch.by === "unknown" ? "" : `, by the ${stretch.by}`}.
+            {stretch.runt_s !== undefined && (
+              <>
+                {" "}
+                The first high after it is a <span className="italic text-broken">runt</span> of{" "}
+                <span className="tabular text-hex">{duration(stretch.runt_s)}</span>.
+              </>
+            )}
           </li>
         ))}
       </ul>

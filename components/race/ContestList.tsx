@@ -3,9 +3,9 @@
 import { useState } from "react";
 import { Button } from "@/components/ui/Button";
 import { ContestShape } from "@/components/ui/Icon";
-import type { Contest, Summary } from "@/lib/diagnosis/report";
+import type { Contest, Summary, TargetContest } from "@/lib/diagnosis/report";
 import type { Capture } from "@/lib/view/capture";
-import { count, instant, probability, timeDigits } from "@/lib/view/format";
+import { address, count, instant, probability, timeDigits } from "@/lib/view/format";
 import { controllerName } from "@/lib/view/race";
 
 export interface ContestListProps {
@@ -81,7 +81,52 @@ export function ContestList({ capture, summary, chosen, onChoose, onGo }: Contes
           ))}
         </ul>
       </section>
+      {(summary.target_contests ?? []).length > 0 && (
+        <BetweenTargets contests={summary.target_contests ?? []} most={most} at={at} onGo={onGo} />
+      )}
     </div>
+  );
+}
+
+interface BetweenTargetsProps {
+  contests: readonly TargetContest[];
+  most: number;
+  at: (seconds: number) => string;
+  onGo: (transaction: number) => void;
+}
+
+/** Targets that answered one read at once: lawful, and nothing that a controller notices. */
+function BetweenTargets({ contests, most, at, onGo }: BetweenTargetsProps) {
+  return (
+    <section aria-label="Between targets" className="lg:col-span-2">
+      <h3 className="border-b border-ink font-serif text-[1.0625rem] italic">
+        Between targets <span className="tabular text-hex not-italic text-quiet">{count(contests.length)}</span>
+      </h3>
+      <ul className="font-sans text-label">
+        {contests.slice(0, most).map((contest) => (
+          <li key={contest.transaction} className="flex items-baseline gap-4 border-b border-hairline py-1.5">
+            <button
+              type="button"
+              onClick={() => onGo(contest.transaction)}
+              className="w-12 shrink-0 text-left font-serif text-body underline decoration-field underline-offset-4"
+            >
+              {count(contest.transaction)}
+            </button>
+            <span className="tabular text-hex text-quiet">{at(contest.start_s)}</span>
+            <span className="min-w-0 flex-1">
+              {contest.kept !== null &&
+                contest.yielded !== null &&
+                `${address(contest.kept, 7)} before ${address(contest.yielded, 7)}. `}
+              {contest.detail}
+            </span>
+            <span className="flex items-baseline gap-1.5 text-contest">
+              <span className="tabular text-hex">{probability(contest.probability)}</span>
+              <span>{contest.grade}</span>
+            </span>
+          </li>
+        ))}
+      </ul>
+    </section>
   );
 }
 

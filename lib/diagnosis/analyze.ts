@@ -125,6 +125,7 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, measured, r
     harmless: book.harmless(),
     fault_totals: Object.fromEntries(totals()),
     log: outcome.log,
+    target_contests: [...outcome.targetContests],
   };
   const told = (transaction: number) => book.places.told(transaction);
   return { ...summary, lede: ledeOf(summary, { told, timebase: head.timebase, roster }) };

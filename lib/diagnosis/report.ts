@@ -76,6 +76,18 @@ export const ContestSchema = z.object({
   look_alikes: z.array(z.object({ kind: z.string(), probability: z.number(), detail: z.string() })),
 });
 
+/** Targets that answer one read at once (SMBus alert response, ARP). `kept` and `yielded` are 7-bit addresses where they are told. */
+export const TargetContestSchema = ContestSchema.pick({
+  transaction: true,
+  start_s: true,
+  byte: true,
+  bit: true,
+  bit_index: true,
+  retry: true,
+  probability: true,
+  grade: true,
+}).extend({ kept: z.int().nullable(), yielded: z.int().nullable(), detail: z.string() });
+
 export const FAULT_KINDS = [
   "address-nack",
   "data-nack",
@@ -227,11 +239,13 @@ export const ReportSchema = z.object({
   /** Two or three plain sentences. */
   lede: z.array(z.string()).optional(),
   log: LogSchema.nullable().optional(),
+  target_contests: z.array(TargetContestSchema).optional(),
 });
 
 export type Report = z.infer<typeof ReportSchema>;
 /** The report without its transactions: small however long the capture, so it crosses threads and is stored as a summary. */
 export type Summary = Omit<Report, "transactions"> & { readonly transactionCount: number };
+export type TargetContest = z.infer<typeof TargetContestSchema>;
 export type PlacedLog = z.infer<typeof LogSchema>;
 export type Contest = z.infer<typeof ContestSchema>;
 export type Fault = z.infer<typeof FaultSchema>;

@@ -30,6 +30,10 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
     const evidence = contest.evidence.map((one) => `${one.kind} ${one.bits.toFixed(1)}`).join(", ");
     return `  #${contest.transaction} decided at ${instant(contest.decided_s)}, byte ${contest.byte} bit ${contest.bit}${parties}; probability ${contest.probability.toFixed(2)} (${contest.grade}); ${evidence}`;
   });
+  if ((summary.target_contests ?? []).length > 0)
+    yield* listed("Between targets", summary.target_contests ?? [], (contest) => {
+      return `  #${contest.transaction} byte ${contest.byte} bit ${contest.bit}; probability ${contest.probability.toFixed(2)} (${contest.grade}); ${contest.detail}`;
+    });
   yield* listed("Clock stretching", summary.stretches, (stretch) => {
     return `  #${stretch.transaction} byte ${stretch.byte} bit ${stretch.bit}: SCL low for ${duration(stretch.low_s)}, ${duration(stretch.excess_s)} more than usual, by ${stretch.by}${stretch.runt_s === undefined ? "" : `; the first high after it is a runt of ${duration(stretch.runt_s)}`}`;
   });

@@ -2,8 +2,9 @@
 // contests and look-alikes. Streams into a ledger while the file is read; everything else is concluded once at the end.
 
 import type { ControllerRow } from "../diagnosis/report";
-import { NO_ADDRESS, type TransactionBlock } from "../engine/bus/transactions";
+import { type ByteBlock, NO_ADDRESS, type TransactionBlock } from "../engine/bus/transactions";
 import type { CaptureHead, TapChoice } from "../engine/samples/reader";
+import { Answers, betweenTargets } from "./answers";
 import { type Capture, ranks } from "./capture";
 import { type Census, takeCensus } from "./census";
 import { contestsOf } from "./contests";
@@ -33,11 +34,13 @@ export function openForensics(
 ): Forensics {
   const ledger = new Ledger(head.levels === "volts");
   const traces = taps.map((tap) => new TapTrace(tap.label, tap.scl !== null, tap.sda !== null));
+  const answers = new Answers();
   const ends: Float64Array[] = [];
   const addresses: Int16Array[] = [];
   return {
     bits: (block) => ledger.push(block),
-    transactions(block: TransactionBlock) {
+    transactions(block: TransactionBlock, bytes: ByteBlock) {
+      answers.push(block, bytes);
       ends.push(block.endTick.subarray(0, block.length));
       addresses.push(block.address.subarray(0, block.length));
     },
@@ -56,7 +59,8 @@ export function openForensics(
         roster: options.roster,
         log: options.log,
       };
-      return concludeCapture(capture, traces, observer, [head.startTick, endTick]);
+      const targetContests = betweenTargets(answers.list, head.timebase.ticksPerSecond);
+      return { ...concludeCapture(capture, traces, observer, [head.startTick, endTick]), targetContests };
     },
   };
 }
@@ -66,7 +70,7 @@ function concludeCapture(
   traces: readonly TapTrace[],
   observer: Observer | null,
   record: readonly [number, number],
-): ForensicsOutcome {
+): Omit<ForensicsOutcome, "targetContests"> {
   const { ledger, messages, sampling } = capture;
   const perSecond = capture.timebase.ticksPerSecond;
   const tapped = traces.some((t) => t.used)

@@ -85,17 +85,17 @@ function firstDifference(a: readonly number[], b: readonly number[]): number | n
   return null;
 }
 
-/** Steps of the share of pairs that met, from 0 to 1. */
+/** Steps of the share of pairs that met, from 0 to 1, each taken in its middle. */
 const STEPS = 200;
 
 /** Probability that the two of an ascending pair met, every share of meeting pairs being as likely as another beforehand. */
 export function meetingProbability(ascending: number, descending: number): number {
   let met = 0;
   let all = 0;
-  for (let step = 0; step <= STEPS; step++) {
-    const share = step / STEPS;
+  for (let step = 0; step < STEPS; step++) {
+    const share = (step + 0.5) / STEPS;
     const rising = share + (1 - share) / 2;
-    const others = (ascending - 1) * Math.log(rising) + (descending > 0 ? descending * Math.log((1 - share) / 2) : 0);
+    const others = (ascending - 1) * Math.log(rising) + descending * Math.log((1 - share) / 2);
     const weight = Math.exp(others - (ascending + descending - 1) * Math.log(0.5));
     met += weight * share;
     all += weight * rising;

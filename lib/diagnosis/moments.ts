@@ -148,7 +148,6 @@ export class Moments {
       const whole = end[i] - fall[i];
       const calm = high <= HELD_BITS * period && high >= RUNT_SHARE * lastHigh && rose - fall[i] < this.longLow;
       if (!calm || (flags[i] & OUTSIDE) !== 0) break;
-      if (sdaFirst[i] < sdaLast[i]) this.twice(block, i, pulse);
       if (value[i] === 0 && !Number.isNaN(sdaLast[i])) sdaFell = sdaLast[i];
       if (pulse === 7) read = value[i] === 1;
       pulse++;
@@ -160,6 +159,8 @@ export class Moments {
     this.pulse = pulse;
     this.read = read;
     this.sdaFell = sdaFell;
+    // A loop of its own: a call inside the one above would cost every bit.
+    for (let k = from; k < i; k++) if (sdaFirst[k] < sdaLast[k]) this.twice(block, k, pulse - i + k);
     if (i > from) {
       this.conditionTick = Number.NaN;
       this.lastValue = value[i - 1];

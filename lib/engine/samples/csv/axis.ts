@@ -8,8 +8,8 @@ import { Cell, NUMBER, readText, scaled } from "./cell";
 import { type HeadRow, trimmed } from "./dialect";
 import type { Column, Layout } from "./layout";
 import { type StatedTiming, statedTiming } from "./metadata";
+import type { Clockwork } from "./plan";
 import type { Pace } from "./rows";
-import type { Clockwork } from "./scanner";
 
 export interface Axis {
   readonly timebase: Timebase;

@@ -5,9 +5,10 @@ import { decode, plainChunks, plainEncoding, type TextForm } from "../../bytes/t
 import type { Axis } from "./axis";
 import type { Layout } from "./layout";
 import type { Selection } from "./lines";
+import { INSTANT, type ScanPlan } from "./plan";
 import { QuotedReader } from "./quoted";
 import type { RowTarget } from "./rows";
-import { type FastPath, INSTANT, Scanner, type ScanPlan } from "./scanner";
+import { type FastPath, Scanner } from "./scanner";
 
 /** Bytes after which a survey may end, and a first block of edges leaves. */
 const SLICE = 65_536;

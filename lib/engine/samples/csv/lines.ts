@@ -2,7 +2,7 @@
 
 import type { Channel } from "../reader";
 import { type Column, type Layout, timeColumnOf } from "./layout";
-import { LEVEL, SKIP, VALUE } from "./scanner";
+import { LEVEL, SKIP, VALUE } from "./plan";
 
 /** One channel in the values of a row. */
 export interface LineSource {

@@ -3,8 +3,9 @@
 // the scanner.
 
 import type { RowBlock } from "./block";
+import { INSTANT, type ScanPlan, VALUE } from "./plan";
 import { lastDigits, lastFour, ROW_ROOM, RowForm } from "./row-form";
-import { type FastPath, INSTANT, type Scanner, type ScanPlan, VALUE } from "./scanner";
+import type { FastPath, Scanner } from "./scanner";
 
 const CR = 13;
 const LF = 10;

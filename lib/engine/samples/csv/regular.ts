@@ -4,7 +4,7 @@
 
 import type { RowBlock } from "./block";
 import { POWERS, scaled } from "./cell";
-import { INSTANT, LEVEL, type ScanPlan, SKIP } from "./scanner";
+import { INSTANT, LEVEL, type ScanPlan, SKIP } from "./plan";
 
 const CR = 13;
 const LF = 10;
@@ -13,18 +13,16 @@ const FEW_DIGITS = 9;
 const MOST_DIGITS = 15;
 
 /** Appends rows to the block until it has `most`; returns the position after the last one, where one begins that is left. */
-export function readRegular(bytes: Uint8Array, from: number, to: number, plan: ScanPlan, block: RowBlock, most: number): number {
+export function readRows(bytes: Uint8Array, from: number, to: number, plan: ScanPlan, block: RowBlock, most: number): number {
   const { modes, slots, width, powers, clock } = plan;
-  const delimiter = plan.dialect.delimiter.charCodeAt(0);
-  const decimal = plan.dialect.decimal.charCodeAt(0);
-  const { power, start } = clock;
-  const counts = clock.factor !== null;
-  const factor = clock.factor ?? 1;
+  const [delimiter, decimal] = [plan.dialect.delimiter.charCodeAt(0), plan.dialect.decimal.charCodeAt(0)];
+  const { power, start, factor } = clock;
+  const scale = factor ?? 1;
   const { readings, ticks } = block;
   let n = block.length;
-  let base = n * block.width;
   let row = from;
-  rows: for (; n < most && row < to; n += 1, base += block.width) {
+  rows: for (; n < most && row < to; n += 1) {
+    const base = n * block.width;
     let p = row;
     for (let column = 0; ; ) {
       const mode = modes[column];
@@ -58,28 +56,28 @@ export function readRegular(bytes: Uint8Array, from: number, to: number, plan: S
           }
           places = p - mark - 1;
         }
-        const many = mark - first > FEW_DIGITS || places > FEW_DIGITS;
         const count = mark - first + places;
         if (count === 0 || count > MOST_DIGITS) break rows;
-        const digits = many ? manyDigits(bytes, first, p, decimal) : whole * POWERS[places] + part;
+        const few = mark - first <= FEW_DIGITS && places <= FEW_DIGITS;
+        const digits = few ? whole * POWERS[places] + part : manyDigits(bytes, first, p, decimal);
         const m = negative ? -digits : digits;
         let e = -places;
         if ((b | 32) === 101) {
           b = bytes[++p];
           const minus = b === 45;
           if (minus || b === 43) b = bytes[++p];
-          const from = p;
-          let power = 0;
+          const begin = p;
+          let shift = 0;
           while (b >= 48 && b <= 57) {
-            power = (Math.imul(power, 10) + b - 48) | 0;
+            shift = (Math.imul(shift, 10) + b - 48) | 0;
             b = bytes[++p];
           }
-          if (p === from || p - from > 4) break rows;
-          e = minus ? (e - power) | 0 : (e + power) | 0;
+          if (p === begin || p - begin > 4) break rows;
+          e = minus ? (e - shift) | 0 : (e + shift) | 0;
         }
         if (mode === INSTANT) {
-          if (counts && e !== 0) break rows;
-          ticks[n] = Math.round(scaled(m, e + power) * factor + start) + 0;
+          if (factor !== null && e !== 0) break rows;
+          ticks[n] = Math.round(scaled(m, e + power) * scale + start) + 0;
         } else readings[base + slots[column]] = scaled(m, e + powers[column]);
       }
       column += 1;

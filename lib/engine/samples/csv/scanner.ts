@@ -4,42 +4,11 @@
 import type { AsideReason } from "./aside";
 import { RowBlock } from "./block";
 import { BITS, Cell, NUMBER, readText, scaled, UNKNOWN } from "./cell";
+import { INSTANT, LEVEL, type ScanPlan, SKIP } from "./plan";
 import { Regions } from "./regions";
-import { readRegular } from "./regular";
+import { readRows } from "./regular";
 import type { RowTarget } from "./rows";
-import { type Dialect, splitText } from "./split";
-
-/** What a wanted cell is read as: a level 0/1/2, a number (NaN unknown), or the row's instant. */
-export const SKIP = 0;
-export const LEVEL = 1;
-export const VALUE = 2;
-export const INSTANT = 3;
-
-/** Where instants come from. tick = number x 10^power (exact), or number x factor where a factor is given. */
-export interface Clockwork {
-  /** Column of times or running numbers, or -1: the row's own number counts. */
-  readonly column: number;
-  readonly power: number;
-  readonly factor: number | null;
-  /** Added to every instant; for counted rows. */
-  readonly start: number;
-}
-
-export interface ScanPlan {
-  readonly dialect: Dialect;
-  readonly width: number;
-  /** Cells from here on must be empty. */
-  readonly namedWidth: number;
-  readonly firstLine: number;
-  readonly clock: Clockwork;
-  /** Per column: SKIP, LEVEL, VALUE or INSTANT. */
-  readonly modes: Uint8Array;
-  /** Per column: index in `values`. */
-  readonly slots: Int32Array;
-  /** Per column: power of ten that takes its numbers to volts; 0 elsewhere. */
-  readonly powers: Int32Array;
-  readonly values: Float64Array;
-}
+import { splitText } from "./split";
 
 const CR = 13;
 const LF = 10;
@@ -114,7 +83,7 @@ export class Scanner {
     let p = from;
     while (p < to && this.rowNumber + block.length < until) {
       const most = Math.min(block.capacity, until - this.rowNumber);
-      p = readRegular(bytes, p, to, plan, block, most);
+      p = readRows(bytes, p, to, plan, block, most);
       if (block.length === block.capacity) this.flush();
       else if (p < to && block.length < most) p = this.readRow(bytes, p, to);
     }

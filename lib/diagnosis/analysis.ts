@@ -20,6 +20,8 @@ export interface AnalysisSettings {
 
 /** Told in this order: head, then edges / transactions / progress in any mixture, then summary. Blocks handed over are the listener's to keep. */
 export interface AnalysisListener {
+  /** It does not keep blocks of edges, so that their memory may be used again. Absent: it does. */
+  readonly passing?: boolean;
   head(head: CaptureHead): void;
   edges(block: EdgeBlock): void;
   tap(index: number, block: EdgeBlock): void;

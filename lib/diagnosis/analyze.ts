@@ -10,6 +10,7 @@ import { createMeasurement, type Measured } from "../limits/measure";
 import type { Profile } from "../limits/profile";
 import type { MeasurementRow } from "../limits/rows";
 import type { AnalysisListener, AnalysisOutcome, AnalysisSettings } from "./analysis";
+import { grainOf } from "./grain";
 import { type Chosen, chosenProfile, highSpeedLimits, judgedRows, measurementsOf, triedProfiles, violationsOf } from "./judge";
 import { ledeOf } from "./lede";
 import { levelsOf } from "./levels";
@@ -49,11 +50,14 @@ export async function analyze(
     },
     remnant: (remnant) => book.remnant(remnant),
   });
+  const grained = grainOf(head);
   listener.head(head);
   const read = await opened.read({
+    // The lines' watch looks back at the block before, as a passing sink may.
+    passing: listener.passing,
     edges(block) {
       book.edges(block);
-      decoder.push(block);
+      decoder.push(grained(block));
       listener.edges(block);
     },
     tap(index, block) {

@@ -54,6 +54,7 @@ async function opened(path: string): Promise<OpenedCsv> {
 async function ours(capture: OpenedCsv, fast: boolean): Promise<void> {
   let edges = 0;
   const sink: EdgeSink = {
+    passing: true,
     edges: (block) => {
       edges += block.length;
     },

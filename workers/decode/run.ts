@@ -30,6 +30,7 @@ export async function run(asked: Asked, output: Output): Promise<0 | 1> {
   const opened = usable(asked.file, await openCapture(source, host, settings.read));
   const store = new TransactionStore();
   const outcome = await analyze(opened, settings, {
+    passing: true,
     head() {},
     edges() {},
     tap() {},

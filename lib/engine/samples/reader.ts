@@ -83,6 +83,8 @@ export interface CaptureTail {
 
 /** Where the edges go while the file is read. `tap` blocks carry the tap's own scl/sda in the same bits (1 = released). */
 export interface EdgeSink {
+  /** The sink looks back at no more than the block before: an older block's memory may be used again. Absent: it may keep all. */
+  readonly passing?: boolean;
   edges(block: EdgeBlock): void;
   tap(index: number, block: EdgeBlock): void;
   /** Bytes of the stored file consumed so far. Called at least once per chunk; may be used to stop by throwing `signal`. */

@@ -54,7 +54,7 @@ export class BusFollower implements InstantListener {
     const offers = [lines.scl, lines.sda, ...lines.taps.flatMap((tap) => [tap.scl, tap.sda])];
     const slots = offers.map((offer): Slot => offer ?? { net: nets, bit: 0, real: false });
     this.slots = new Slots(slots, nets + 1, this);
-    this.bus = new EdgeWriter((block) => sink.edges(block), lines.volts);
+    this.bus = new EdgeWriter((block) => sink.edges(block), lines.volts, sink.passing === true);
     this.taps = lines.taps.map((_, index) => new EdgeWriter((block) => sink.tap(index, block), false));
     this.cutTaps = lines.taps.map(() => false);
     this.held = offers.map((offer, at) => {

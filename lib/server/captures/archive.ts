@@ -19,6 +19,7 @@ export function archiving(opened: OpenCapture): Archiving {
       head: opened.head,
       async read(sink) {
         const outcome = await opened.read({
+          passing: sink.passing,
           edges(block) {
             writer.edges(block);
             sink.edges(block);

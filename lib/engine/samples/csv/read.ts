@@ -71,7 +71,7 @@ function assemble(job: BodyJob, sink: EdgeSink): Parts {
   const selection = select(body.layout, [scl, sda, ...tapSources]);
   const judged = levels.judge(scl, sda);
   const volts = judged.levels === "volts";
-  const bus = new EdgeWriter((block) => sink.edges(block), volts);
+  const bus = new EdgeWriter((block) => sink.edges(block), volts, sink.passing === true);
   const taps = job.taps.map(
     (tap, index): TapLines => ({
       scl: tap.scl === null ? null : levelSource(tap.scl, selection, levels),

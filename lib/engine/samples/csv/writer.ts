@@ -1,15 +1,46 @@
 // In: levels of a pair of lines, instant by instant. Out: EdgeBlocks for the sink. Holds back the newest event, because
 // another row may still change lines in the same tick and because an event's means are known only at the next one.
 
-import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN } from "../edges";
+import { CUT, type EdgeBlock, SCL, SCL_UNKNOWN, SDA, SDA_UNKNOWN, type VoltColumns } from "../edges";
 
 const CAPACITY = 16_384;
+/** Pages for a passing sink: it looks at the newest block and the one before while the next is written. */
+const PAGES = 3;
+
+class Page {
+  readonly ticks = new Float64Array(CAPACITY);
+  readonly lines = new Uint8Array(CAPACITY);
+  readonly volts: VoltColumns | null;
+
+  constructor(withVolts: boolean) {
+    const column = () => new Float32Array(CAPACITY);
+    this.volts = withVolts ? { leadScl: column(), leadSda: column(), meanScl: column(), meanSda: column() } : null;
+  }
+
+  /** The first `n` entries, in memory of their own or in the page's. */
+  block(n: number, own: boolean): EdgeBlock {
+    const part = <T extends Float64Array | Float32Array | Uint8Array>(column: T) =>
+      (own ? column.slice(0, n) : column.subarray(0, n)) as T;
+    const { volts } = this;
+    return {
+      length: n,
+      ticks: part(this.ticks),
+      lines: part(this.lines),
+      volts: volts && {
+        leadScl: part(volts.leadScl),
+        leadSda: part(volts.leadSda),
+        meanScl: part(volts.meanScl),
+        meanSda: part(volts.meanSda),
+      },
+    };
+  }
+}
+
 export class EdgeWriter {
   sclEdges = 0;
   sdaEdges = 0;
-  private readonly ticks = new Float64Array(CAPACITY);
-  private readonly lines = new Uint8Array(CAPACITY);
-  private readonly volts: Float32Array[] | null;
+  private readonly pages: Page[];
+  private page: Page;
   private length = 0;
   private held = false;
   private heldTick = 0;
@@ -19,11 +50,14 @@ export class EdgeWriter {
   /** Levels of the newest event that was written, -1 before the first. */
   private written = -1;
 
+  /** `passing`: blocks may be written over once two more were handed on. */
   constructor(
     private readonly emit: (block: EdgeBlock) => void,
     withVolts: boolean,
+    private readonly passing = false,
   ) {
-    this.volts = withVolts ? [0, 1, 2, 3].map(() => new Float32Array(CAPACITY)) : null;
+    this.pages = Array.from({ length: passing ? PAGES : 1 }, () => new Page(withVolts));
+    this.page = this.pages[0];
   }
 
   /** Ticks never decrease from call to call. */
@@ -51,7 +85,7 @@ export class EdgeWriter {
   putAll(eventTicks: Float64Array, eventLines: Uint8Array, count: number): void {
     this.put(eventTicks[0], eventLines[0]);
     if (CAPACITY - this.length < count) this.flush();
-    const { ticks, lines } = this;
+    const { ticks, lines } = this.page;
     let { length, written, sclEdges, sdaEdges, heldTick, heldLines } = this;
     for (let i = 1; i < count; i += 1) {
       if (heldLines !== written) {
@@ -86,13 +120,14 @@ export class EdgeWriter {
     if (lines === this.written) return;
     if (this.length === CAPACITY) this.flush();
     const at = this.length;
-    this.ticks[at] = this.heldTick;
-    this.lines[at] = lines;
-    if (this.volts !== null) {
-      this.volts[0][at] = this.leadScl;
-      this.volts[1][at] = this.leadSda;
-      this.volts[2][at] = meanScl;
-      this.volts[3][at] = meanSda;
+    const { ticks, lines: levels, volts } = this.page;
+    ticks[at] = this.heldTick;
+    levels[at] = lines;
+    if (volts !== null) {
+      volts.leadScl[at] = this.leadScl;
+      volts.leadSda[at] = this.leadSda;
+      volts.meanScl[at] = meanScl;
+      volts.meanSda[at] = meanSda;
     }
     this.length = at + 1;
     if (this.written >= 0) {
@@ -107,18 +142,10 @@ export class EdgeWriter {
   /** Hands over what is settled. */
   flush(): void {
     if (this.length === 0) return;
-    const n = this.length;
-    const volts =
-      this.volts === null
-        ? null
-        : {
-            leadScl: this.volts[0].slice(0, n),
-            leadSda: this.volts[1].slice(0, n),
-            meanScl: this.volts[2].slice(0, n),
-            meanSda: this.volts[3].slice(0, n),
-          };
+    const block = this.page.block(this.length, !this.passing);
     this.length = 0;
-    this.emit({ length: n, ticks: this.ticks.slice(0, n), lines: this.lines.slice(0, n), volts });
+    this.page = this.pages[(this.pages.indexOf(this.page) + 1) % this.pages.length];
+    this.emit(block);
   }
 
   finish(meanScl = Number.NaN, meanSda = Number.NaN): void {

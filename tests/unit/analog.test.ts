@@ -2,11 +2,14 @@
 // takes 0.8473 RC), sampled with noise by an 8-bit converter, read back through the whole staircase.
 
 import { describe, expect, test } from "vitest";
+import { openArchive } from "@/lib/engine/archive/reader";
+import { recordArchive } from "@/lib/engine/archive/record";
 import { openCapture } from "@/lib/engine/samples/open";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
 import { createRandom } from "@/lib/simulation/random";
 import { host } from "@/workers/host";
 import { LineScript, reportOf } from "../support/line-script";
+import { sourceOf } from "../support/vcd";
 
 interface Line {
   readonly vdd: number;
@@ -63,7 +66,15 @@ async function recorded(script: LineScript, line: Line, converter: Converter, ch
   };
   const opened = await openCapture(source, host, choices);
   if (!opened.ok) throw new Error(opened.problem.message);
-  return reportOf(opened.value, limits === undefined ? {} : { limits });
+  const settings = limits === undefined ? {} : { limits };
+  const report = await reportOf(opened.value, settings);
+  // Read from its archive the same capture gives the same figures, to the last digit.
+  const packed = await recordArchive(opened.value, host);
+  if (!packed.ok) throw new Error(packed.problem.message);
+  const again = await openArchive(sourceOf(packed.value), host);
+  if (!again.ok) throw new Error(again.problem.message);
+  expect(await reportOf(again.value, settings)).toEqual(report);
+  return report;
 }
 
 const traffic = () => {

@@ -31,8 +31,8 @@ export function gridOf(ticks: Float64Array, length: number): number {
   return step === 0 ? 1 : step;
 }
 
-/** `leadStep`: ticks that a lead is rounded to. */
-export function encodeBlock(block: EdgeBlock, leadStep: number): Uint8Array<ArrayBuffer> {
+/** `leadStep`: ticks that a lead is rounded to; `meanStep`: volts that a mean is, null to find one that suits the block. */
+export function encodeBlock(block: EdgeBlock, leadStep: number, meanStep: number | null = null): Uint8Array<ArrayBuffer> {
   const { ticks, lines, length, volts } = block;
   const out = new ByteWriter(32 + length * 3);
   const step = gridOf(ticks, length);
@@ -63,7 +63,7 @@ export function encodeBlock(block: EdgeBlock, leadStep: number): Uint8Array<Arra
   out.put(edges.bytes());
   if (volts) {
     out.put(encodeLeads(volts, lines, length, leadStep));
-    out.put(encodeMeans(volts, lines, length));
+    out.put(encodeMeans(volts, lines, length, meanStep));
   }
   return out.bytes();
 }
@@ -92,13 +92,18 @@ function encodeLeads({ leadScl, leadSda }: VoltColumns, lines: Uint8Array, lengt
 /** A change of a line's level or of its being known; the unknown bits stand two above the levels. */
 const carriesLead = (changed: number, line: number) => (changed & (line | (line << 2))) !== 0;
 
-/** Each mean as its difference from the latest mean of the same line at the same level, where it hardly differs. */
-function encodeMeans({ meanScl, meanSda }: VoltColumns, lines: Uint8Array, length: number): Uint8Array {
+function ownStep({ meanScl, meanSda }: VoltColumns, length: number): number {
   let largest = 0;
   for (const column of [meanScl, meanSda]) {
     for (let i = 0; i < length; i++) if (Math.abs(column[i]) > largest) largest = Math.abs(column[i]);
   }
-  const step = largest / MEAN_STEPS || 1;
+  return largest / MEAN_STEPS || 1;
+}
+
+/** Each mean as its difference from the latest mean of the same line at the same level, where it hardly differs. */
+function encodeMeans(volts: VoltColumns, lines: Uint8Array, length: number, given: number | null): Uint8Array {
+  const { meanScl, meanSda } = volts;
+  const step = given ?? ownStep(volts, length);
   const out = new ByteWriter(length * 4 + 16);
   const known = new Int32Array(4);
   for (let i = 0; i < length; i++) {

@@ -81,6 +81,14 @@ type Assert<T extends true> = T;
 export type HeadIsHead = Assert<z.infer<typeof HeadSchema> extends CaptureHead ? true : false>;
 export type TailIsTail = Assert<z.infer<typeof TailSchema>["tail"] extends CaptureTail ? true : false>;
 
+/** Mean levels are rounded to about this share of VDD, a fifth of a millivolt. */
+const MEAN_STEPS = 32_767;
+
+/** Volts that mean levels are rounded to, a power of two; null where no volts are known: each block then has a step of its own. */
+export function meanStepOf({ vdd_v }: Pick<CaptureHead, "vdd_v">): number | null {
+  return vdd_v === null || !(vdd_v > 0) ? null : 2 ** Math.ceil(Math.log2(vdd_v / MEAN_STEPS));
+}
+
 /** Ticks that leads are rounded to: a 256th of a sample or less, far below what sampling can tell; 1 where nothing was sampled. */
 export function leadStepOf(head: Pick<CaptureHead, "sampleTicks">): number {
   return head.sampleTicks === null || head.sampleTicks < 512 ? 1 : 2 ** Math.floor(Math.log2(head.sampleTicks / 256));

@@ -5,7 +5,7 @@ import type { EdgeBlock, VoltColumns } from "../samples/edges";
 import type { CaptureHead, CaptureTail } from "../samples/reader";
 import { BLOCK_EDGES, encodeBlock } from "./block";
 import { ByteWriter } from "./bytes";
-import { END, FRAME_BYTES, type FrameIndex, KIND, leadStepOf, MAGIC } from "./format";
+import { END, FRAME_BYTES, type FrameIndex, KIND, leadStepOf, MAGIC, meanStepOf } from "./format";
 import { utf8 } from "./text";
 
 export interface ArchiveWriter {
@@ -22,6 +22,7 @@ export function createArchiveWriter(head: CaptureHead, deflate: Host["deflate"])
   const parts: Uint8Array<ArrayBuffer>[] = [MAGIC.slice()];
   const index: FrameIndex[number][] = [];
   const leadStep = leadStepOf(head);
+  const meanStep = meanStepOf(head);
   let offset = MAGIC.length;
   let first = true;
   // Blocks are compressed one after the other, while the next ones are still being read.
@@ -48,7 +49,7 @@ export function createArchiveWriter(head: CaptureHead, deflate: Host["deflate"])
   function flush(): void {
     // All lanes at once, so that taps and bus stay in step for whoever reads the stream.
     lanes.forEach((lane, number) => {
-      if (lane.length > 0) frame(KIND.edges, number, lane.length, encodeBlock(lane.block(), leadStep), lane.ticks[0]);
+      if (lane.length > 0) frame(KIND.edges, number, lane.length, encodeBlock(lane.block(), leadStep, meanStep), lane.ticks[0]);
       lane.length = 0;
     });
     first = false;

@@ -14,6 +14,8 @@ export interface Source {
 }
 
 export interface DecodeApi {
+  /** Makes itself ready for a file that may come; ends early once one is there. */
+  warmUp(): Promise<void>;
   /** How the file is understood, before it is read. */
   preview(source: Source, choices: ReadChoices): Promise<CapturePreview>;
   /** Reads and analyses the whole capture; the listener is a comlink proxy. */

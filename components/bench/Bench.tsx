@@ -10,6 +10,7 @@ import type { Capture } from "@/lib/view/capture";
 import { EVERYTHING, filtered } from "@/lib/view/filter";
 import { neighbour } from "@/lib/view/marks";
 import type { Bounds } from "@/lib/view/scale";
+import type { ViewState } from "@/lib/view/state";
 import { verdicts } from "@/lib/view/words";
 import type { Source } from "@/workers/protocol";
 import { type BenchCase, NO_CASE, spansOf } from "./annotations";
@@ -174,12 +175,7 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
   });
 
   const onView = useCallback((first: number, last: number) => setView({ first, last }), []);
-  const shown: Bounds | null =
-    state.reading === "strip"
-      ? state.strip
-      : state.reading === "stack" && view && view.last < capture.ledger.length
-        ? { from: capture.ledger.startTick(view.first), to: capture.ledger.endTick(view.last) }
-        : null;
+  const shown = windowOf(capture, state, view);
   const margin = (
     <MarginColumn
       capture={capture}
@@ -241,6 +237,17 @@ function Opened({ session, capture, settings, onChange, of = NO_CASE, initialVie
       <Help open={help} onOpenChange={setHelp} />
     </div>
   );
+}
+
+/** The part of the record that is looked at: the strip's, or that of the rows of the stack in view. */
+function windowOf(
+  { ledger }: Capture,
+  { reading, strip }: ViewState,
+  view: { first: number; last: number } | null,
+): Bounds | null {
+  if (reading === "strip") return strip;
+  if (reading !== "stack" || view === null || view.last >= ledger.length) return null;
+  return { from: ledger.startTick(view.first), to: ledger.endTick(view.last) };
 }
 
 function sheetTitle(capture: Capture, selected: number | null): string {

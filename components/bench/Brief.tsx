@@ -1,9 +1,11 @@
 "use client";
 
+import { memo, startTransition, useEffect, useState } from "react";
 import { Faults } from "@/components/ledger/Faults";
 import { Limits } from "@/components/ledger/Limits";
 import { Evidence } from "@/components/margin/Evidence";
 import { RowTrace } from "@/components/score/RowTrace";
+import type { Summary } from "@/lib/diagnosis/report";
 import type { Capture } from "@/lib/view/capture";
 import { usualScale } from "@/lib/view/capture";
 import { address, count, instant, probability, timeDigits } from "@/lib/view/format";
@@ -68,10 +70,23 @@ function PrintedRow({
   );
 }
 
-/** What is printed after lede and facts: the brief of this capture. */
-export function Brief({ capture, of, names }: { capture: Capture; of: BenchCase; names: ReadonlyMap<number, string> }) {
-  const { summary } = capture;
-  if (!summary) return null;
+export interface BriefProps {
+  capture: Capture;
+  of: BenchCase;
+  names: ReadonlyMap<number, string>;
+}
+
+/** What is printed after lede and facts: the brief of this capture. Drawn once everything on the screen is. */
+export function Brief({ capture, of, names }: BriefProps) {
+  const [summary, setSummary] = useState<Summary | null>(null);
+  useEffect(() => startTransition(() => setSummary(capture.summary)), [capture.summary]);
+  // While the capture is read anew there is none of it.
+  if (summary === null || summary !== capture.summary) return null;
+  return <Printed capture={capture} summary={summary} of={of} names={names} />;
+}
+
+/** Its props change with the case, not with the view. */
+const Printed = memo(function Printed({ capture, summary, of, names }: BriefProps & { summary: Summary }) {
   const rows = notable(capture, of);
   const scale = usualScale(capture.ledger, WIDTH);
   return (
@@ -121,4 +136,4 @@ export function Brief({ capture, of, names }: { capture: Capture; of: BenchCase;
       </section>
     </div>
   );
-}
+});

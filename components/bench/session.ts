@@ -1,12 +1,13 @@
 "use client";
 
-import { useCallback, useEffect, useRef, useState } from "react";
+import { startTransition, useCallback, useEffect, useRef, useState } from "react";
 import type { Problem } from "@/lib/base/result";
 import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
 import { Capture } from "@/lib/view/capture";
 import type { Source } from "@/workers/protocol";
 import { DecodeClient } from "./client";
+import { Growth } from "./growth";
 
 /** What became of the file. "refused" is about the file and says what to do; "crashed" is our fault. */
 export type Stage =
@@ -22,7 +23,7 @@ export interface Session {
   readonly stage: Stage;
   readonly capture: Capture | null;
   readonly preview: CapturePreview | null;
-  /** Counts up whenever the capture has grown. */
+  /** Counts up whenever the capture has grown and the page was told. */
   readonly version: number;
   readonly stop: () => void;
   readonly again: () => void;
@@ -30,7 +31,8 @@ export interface Session {
 
 /**
  * Reads a source in the worker with these settings, anew whenever either changes. The page is told of growth some
- * times a second, however fast the blocks come. `settings` must keep its identity while it means the same.
+ * times a second, however fast the blocks come, and draws it in pieces between which it stays alive.
+ * `settings` must keep its identity while it means the same.
  */
 export function useSession(source: Source | null, settings: AnalysisSettings): Session {
   const [stage, setStage] = useState<Stage>({ is: "empty" });
@@ -39,6 +41,7 @@ export function useSession(source: Source | null, settings: AnalysisSettings): S
   const [version, setVersion] = useState(0);
   const [round, setRound] = useState(0);
   const client = useRef<DecodeClient | null>(null);
+  const growth = useRef<Growth | null>(null);
 
   // biome-ignore lint/correctness/useExhaustiveDependencies: a new round reads the same file again
   useEffect(() => {
@@ -51,14 +54,21 @@ export function useSession(source: Source | null, settings: AnalysisSettings): S
     const worker = new DecodeClient();
     client.current = worker;
     setStage({ is: "opening" });
-    run(worker, source, settings, { setStage, setCapture, setPreview, grown: () => setVersion((now) => now + 1) });
+    const reading = new Growth();
+    growth.current = reading;
+    run(worker, source, settings, reading, { setStage, setCapture, setPreview, grown: () => setVersion((now) => now + 1) });
     return () => {
+      reading.close();
       worker.stop();
       client.current = null;
     };
   }, [source, settings, round]);
 
+  // biome-ignore lint/correctness/useExhaustiveDependencies: told once the page shows this version
+  useEffect(() => growth.current?.shown(), [version]);
+
   const stop = useCallback(() => {
+    growth.current?.close();
     client.current?.stop();
     setStage({ is: "stopped" });
   }, []);
@@ -73,58 +83,34 @@ interface Told {
   grown(): void;
 }
 
-async function run(worker: DecodeClient, source: Source, settings: AnalysisSettings, told: Told): Promise<void> {
-  const frames = new Frames();
+async function run(worker: DecodeClient, source: Source, settings: AnalysisSettings, growth: Growth, told: Told): Promise<void> {
   const end = (stage: Stage) => {
-    frames.close();
-    if (!worker.stopped) told.setStage(stage);
+    growth.close();
+    if (!worker.stopped) startTransition(() => told.setStage(stage));
   };
   try {
-    // In a worker of its own, so that the first rows need not wait for it; a file that cannot be read is refused by the reading.
-    const preview = source.kind === "file" ? previewed(source, settings, worker, told) : null;
-    const stage = await read(worker, source, settings, told, frames);
+    let preview: Promise<void> | null = source.kind === "file" ? null : Promise.resolve();
+    const look = () => {
+      preview ??= previewed(source, settings, worker, told);
+      return preview;
+    };
+    const stage = await read(worker, source, settings, growth, told, look);
     // A refusal is answered beside what the file looks like.
-    if (stage.is === "refused") await preview;
+    const looked = look();
+    if (stage.is === "refused") await looked;
     end(stage);
   } catch (error) {
     end({ is: "crashed", message: error instanceof Error ? error.message : String(error) });
   }
 }
 
+/** Asked of the worker that reads: it looks between two chunks, with a program that is compiled by then. */
 async function previewed(source: Source, settings: AnalysisSettings, worker: DecodeClient, told: Told): Promise<void> {
-  const beside = new DecodeClient();
   try {
-    const preview = await beside.preview(source, settings.read);
-    if (!worker.stopped) told.setPreview(preview);
+    const preview = await worker.preview(source, settings.read);
+    if (!worker.stopped) startTransition(() => told.setPreview(preview));
   } catch {
     // It reads what the reading itself reads; what made it crash makes that crash, and is told there.
-  } finally {
-    beside.stop();
-  }
-}
-
-/** The page is told of growth at once the first time, then at most so often: reading is to be watched, not to be slowed. */
-const PACE_MS = 100;
-
-/** Runs one of many calls now and then, the last one never lost, and none after it was closed. */
-class Frames {
-  #timer: ReturnType<typeof setTimeout> | undefined;
-  #last = Number.NEGATIVE_INFINITY;
-  #closed = false;
-
-  ask(act: () => void): void {
-    if (this.#closed || this.#timer !== undefined) return;
-    const wait = Math.max(0, this.#last + PACE_MS - performance.now());
-    this.#timer = setTimeout(() => {
-      this.#timer = undefined;
-      this.#last = performance.now();
-      act();
-    }, wait);
-  }
-
-  close(): void {
-    this.#closed = true;
-    clearTimeout(this.#timer);
   }
 }
 
@@ -132,21 +118,27 @@ async function read(
   worker: DecodeClient,
   source: Source,
   settings: AnalysisSettings,
+  growth: Growth,
   told: Told,
-  frames: Frames,
+  /** Asks how the file is understood: once the first rows are on their way to the page, which need not wait for that. */
+  look: () => void,
 ): Promise<Stage> {
   const held: { capture: Capture | null } = { capture: null };
   let bytes = 0;
-  const changed = () =>
-    frames.ask(() => {
-      if (worker.stopped) return;
+  const tell = () => {
+    if (worker.stopped) return;
+    startTransition(() => {
       told.grown();
       told.setStage({ is: "reading", bytes });
     });
+    if (held.capture) look();
+  };
+  const changed = () => growth.ask(tell);
   const outcome = await worker.analyse(source, settings, {
     head(head) {
-      held.capture = new Capture(head);
-      if (!worker.stopped) told.setCapture(held.capture);
+      const capture = new Capture(head);
+      held.capture = capture;
+      if (!worker.stopped) startTransition(() => told.setCapture(capture));
     },
     edges(block) {
       held.capture?.appendEdges(block);
@@ -164,6 +156,6 @@ async function read(
   });
   if (!outcome.ok) return { is: "refused", problem: outcome.problem };
   held.capture?.conclude(outcome);
-  if (!worker.stopped) told.grown();
+  if (!worker.stopped) startTransition(() => told.grown());
   return { is: "done" };
 }

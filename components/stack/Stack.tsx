@@ -1,6 +1,6 @@
 "use client";
 
-import { useCallback, useEffect, useLayoutEffect, useMemo, useRef, useState } from "react";
+import { startTransition, useCallback, useEffect, useLayoutEffect, useMemo, useRef, useState } from "react";
 import type { BenchNote, BenchTag, TagKind } from "@/components/bench/annotations";
 import { TRACE_HEIGHT } from "@/components/score/RowTrace";
 import type { Capture } from "@/lib/view/capture";
@@ -65,6 +65,9 @@ export function Stack(props: StackProps) {
   const list = useRef<HTMLDivElement>(null);
   const [width, setWidth] = useState(0);
   const [view, setView] = useState(800);
+  /** Height of the list's part in the window when it first had a width: the rows that are drawn first. */
+  const [fore, setFore] = useState(0);
+  const [complete, setComplete] = useState(false);
   const [position, setPosition] = useState<Position>({ offset: 0, top: 0 });
   const layout = useMemo(() => layoutFor(width), [width]);
   const total = rows ? rows.length : capture.ledger.length;
@@ -75,17 +78,24 @@ export function Stack(props: StackProps) {
   useLayoutEffect(() => {
     const element = list.current;
     if (!element) return;
-    const observer = new ResizeObserver(() => {
-      setWidth(element.clientWidth);
-      setView(window.innerHeight);
-    });
+    // Width and the scale that follows from it at once, so that no row is drawn twice; and drawn in pieces.
+    const observer = new ResizeObserver(() =>
+      startTransition(() => {
+        setWidth(element.clientWidth);
+        setView(window.innerHeight);
+        setFore((now) => now || Math.max(1, window.innerHeight - Math.max(0, element.getBoundingClientRect().top)));
+        if (element.clientWidth > 0) onTraceWidth(layoutFor(element.clientWidth).traceWidth);
+      }),
+    );
     observer.observe(element);
     return () => observer.disconnect();
-  }, []);
+  }, [onTraceWidth]);
 
+  // The rows in the window at once; those below it and the spare ones once these stand.
+  const begun = width > 0 && total > 0;
   useEffect(() => {
-    if (width > 0) onTraceWidth(layoutFor(width).traceWidth);
-  }, [width, onTraceWidth]);
+    if (begun) startTransition(() => setComplete(true));
+  }, [begun]);
 
   useEffect(() => {
     let idle: ReturnType<typeof setTimeout> | undefined;
@@ -182,7 +192,7 @@ export function Stack(props: StackProps) {
     return () => clearTimeout(timer);
   }, [firstSeen, lastSeen, onView]);
 
-  const span = rowSpan(extent, position, SPARE);
+  const span = complete ? rowSpan(extent, position, SPARE) : rowSpan({ ...extent, view: fore }, position, 0);
   const digits = Math.min(7, timeDigits(capture.head.timebase, capture.head.sampleTicks));
   const drawn: number[] = [];
   for (let place = span.first; place < span.end; place++) drawn.push(place);

@@ -1,6 +1,6 @@
 import { FAULT_WORDS } from "@/lib/diagnosis/wording";
 import type { Capture } from "@/lib/view/capture";
-import { address, addressBytes, count, duration, hex, instant, span, timeDigits } from "@/lib/view/format";
+import { address, addressBytes, beside, count, duration, hex, instant, span, timeDigits } from "@/lib/view/format";
 import { faultWords } from "@/lib/view/words";
 import { MarginHead } from "./MarginHead";
 
@@ -75,7 +75,7 @@ export function TransactionPart({ capture, index, device }: TransactionPartProps
         {own.violations.map((entry) => (
           <li key={`${entry.parameter}${entry.time_s}`}>
             <span className="italic text-broken">{entry.parameter}</span> is{" "}
-            <span className="tabular text-hex">{duration(entry.measured_s)}</span>, the limit is{" "}
+            <span className="tabular text-hex">{beside(entry.measured_s, entry.limit_s)}</span>, the limit is{" "}
             {entry.side === "min" ? "at least" : "at most"} <span className="tabular text-hex">{duration(entry.limit_s)}</span>.
           </li>
         ))}

@@ -2,6 +2,7 @@
 // units, both address forms. One way for each, used by the screen, its descriptions and the print.
 
 import type { Timebase } from "../base/time";
+import { figure } from "../diagnosis/format";
 
 /** Keeps a number and its groups on one line. */
 const GAP = "\u00a0";
@@ -54,6 +55,12 @@ export function duration(seconds: number): string {
   const digits = value >= 99.95 ? 0 : value >= 9.995 ? 1 : 2;
   const written = value >= 999.5 ? count(Math.round(value)) : value.toFixed(digits);
   return `${sign}${written}${GAP}${unit}`;
+}
+
+/** A measured time beside its limit: with more digits where three would make the two the same. */
+export function beside(seconds: number, limit: number): string {
+  const text = duration(seconds);
+  return seconds === limit || text !== duration(limit) ? text : figure(seconds, [limit]).replace(" ", GAP);
 }
 
 /** The same where ticks are sample numbers and no second is known. */

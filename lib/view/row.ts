@@ -3,7 +3,7 @@
 
 import { FLAG } from "../engine/bus/transactions";
 import { type EdgeColumns, type Line, levelOf } from "./edges";
-import { duration, hex } from "./format";
+import { beside, duration, hex } from "./format";
 import type { Ledger, Row, RowByte } from "./ledger";
 import type { RowMarks } from "./marks";
 
@@ -184,7 +184,7 @@ function dimensions(
     // A set-up time ends at the instant it is reported for where a pulse rises there; every other interval begins there.
     const ends = /SU/.test(violation.parameter) && pulses.some((pulse) => Math.abs(pulse.rise - at) < 1);
     const side = violation.side === "min" ? "at least" : "at most";
-    const text = `${violation.parameter} ${duration(violation.measured_s)}, ${side} ${duration(violation.limit_s)}`;
+    const text = `${violation.parameter} ${beside(violation.measured_s, violation.limit_s)}, ${side} ${duration(violation.limit_s)}`;
     const line = lineOf(violation.parameter);
     list.push({ from: ends ? at - length : at, to: ends ? at : at + length, text, kind: "limit", line });
   }

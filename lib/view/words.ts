@@ -3,7 +3,7 @@
 
 import type { FaultKind, Summary } from "../diagnosis/report";
 import { FAULT_WORDS } from "../diagnosis/wording";
-import { address, count, duration, hex } from "./format";
+import { address, beside, count, duration, hex } from "./format";
 import type { Ledger, Row } from "./ledger";
 import type { Marks, RowMarks } from "./marks";
 
@@ -61,7 +61,10 @@ export function verdicts(row: Row, marks: RowMarks, all: Marks): Verdict[] {
     if (parameters.has(violation.parameter)) continue;
     parameters.add(violation.parameter);
     const side = violation.side === "min" ? "below" : "above";
-    list.push({ text: `${violation.parameter} ${duration(violation.measured_s)}, ${side} limit`, tone: "broken" });
+    list.push({
+      text: `${violation.parameter} ${beside(violation.measured_s, violation.limit_s)}, ${side} limit`,
+      tone: "broken",
+    });
   }
   const worst = marks.stretches.reduce((most, stretch) => Math.max(most, stretch.excess_s), 0);
   if (worst > 0) list.push({ text: `stretched ${duration(worst)}`, tone: "plain" });

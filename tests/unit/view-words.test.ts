@@ -5,6 +5,7 @@ import { addressesSeen, addressSearch, bytePattern, EVERYTHING, filtered } from 
 import {
   address,
   addressBytes,
+  beside,
   count,
   duration,
   evidenceBits,
@@ -43,6 +44,12 @@ describe("writing numbers", () => {
     [0, "0 s"],
   ])("writes %d s as %s", (seconds, text) => {
     expect(plain(duration(seconds))).toBe(text);
+  });
+
+  it("never rounds a broken limit onto its limit", () => {
+    expect(plain(beside(4.699999e-6, 4.7e-6))).toBe("4.699999 µs");
+    expect(plain(beside(4.7e-6, 4.7e-6))).toBe("4.70 µs");
+    expect(plain(beside(4.2e-6, 4.7e-6))).toBe("4.20 µs");
   });
 
   it("never rounds a likely contest to certainty", () => {

@@ -1,7 +1,6 @@
 import { useMemo } from "react";
 import { MarginHead } from "@/components/margin/MarginHead";
 import type { Capture } from "@/lib/view/capture";
-import { addressesSeen } from "@/lib/view/filter";
 import { address, addressBytes, count, duration, volts } from "@/lib/view/format";
 
 export interface BusPartProps {
@@ -18,7 +17,7 @@ const LISTED = 24;
 export function BusPart({ capture, version, names, onAddress }: BusPartProps) {
   const controllers = capture.summary?.controllers ?? [];
   // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place, the version says when
-  const seen = useMemo(() => addressesSeen(capture.ledger), [capture, version]);
+  const seen = useMemo(() => capture.ledger.addresses, [capture, version]);
   if (seen.length === 0 && controllers.length === 0) return null;
   return (
     <section>

@@ -12,8 +12,8 @@ import { InView } from "@/components/strip/InView";
 import { LogInView } from "@/components/strip/LogInView";
 import { StripTrace } from "@/components/strip/StripTrace";
 import { Tabs } from "@/components/ui/Tabs";
-import { type Capture, longest, usualScale } from "@/lib/view/capture";
-import { addressesSeen, SHOWS, type Show } from "@/lib/view/filter";
+import { type Capture, usualScale } from "@/lib/view/capture";
+import { SHOWS, type Show } from "@/lib/view/filter";
 import { count } from "@/lib/view/format";
 import { transactionNear } from "@/lib/view/hit";
 import { READINGS, type Reading, type ViewState } from "@/lib/view/state";
@@ -128,8 +128,7 @@ function StackReading({ capture, state, onState, rows, of, tagged, names, search
   const begun = capture.ledger.length > 0;
   // biome-ignore lint/correctness/useExhaustiveDependencies: fitted when the first rows are there and once more when all are
   const usual = useMemo(() => usualScale(capture.ledger, traceWidth), [capture, traceWidth, concluded, begun]);
-  // biome-ignore lint/correctness/useExhaustiveDependencies: as above
-  const most = useMemo(() => longest(capture.ledger), [capture, concluded, begun]);
+  const most = capture.ledger.longest;
   const scale = state.stackScale ?? usual;
 
   const zoom = useCallback(
@@ -155,7 +154,7 @@ function StackReading({ capture, state, onState, rows, of, tagged, names, search
     tagged: tagged.length,
   };
   // biome-ignore lint/correctness/useExhaustiveDependencies: the capture grows in place; while it does the list is not needed
-  const addresses = useMemo(() => addressesSeen(capture.ledger), [capture, concluded]);
+  const addresses = useMemo(() => capture.ledger.addresses, [capture, concluded]);
   const empty = rows !== null && rows.length === 0;
   return (
     <>

@@ -79,14 +79,18 @@ export function Stack(props: StackProps) {
     const element = list.current;
     if (!element) return;
     // Width and the scale that follows from it at once, so that no row is drawn twice; and drawn in pieces.
-    const observer = new ResizeObserver(() =>
+    const measure = () => {
+      const { clientWidth } = element;
+      const below = window.innerHeight - Math.max(0, element.getBoundingClientRect().top);
       startTransition(() => {
-        setWidth(element.clientWidth);
+        setWidth(clientWidth);
         setView(window.innerHeight);
-        setFore((now) => now || Math.max(1, window.innerHeight - Math.max(0, element.getBoundingClientRect().top)));
-        if (element.clientWidth > 0) onTraceWidth(layoutFor(element.clientWidth).traceWidth);
-      }),
-    );
+        setFore((now) => now || Math.max(1, below));
+        if (clientWidth > 0) onTraceWidth(layoutFor(clientWidth).traceWidth);
+      });
+    };
+    measure();
+    const observer = new ResizeObserver(measure);
     observer.observe(element);
     return () => observer.disconnect();
   }, [onTraceWidth]);

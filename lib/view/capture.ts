@@ -91,12 +91,3 @@ export function usualScale(ledger: Ledger, width: number): number {
   const length = Math.min(at(0.9), 3 * Math.max(1, at(0.5)));
   return Math.max(1 / 50, length / Math.max(50, width - 40));
 }
-
-/** Ticks of the longest transaction; 0 in an empty ledger. */
-export function longest(ledger: Ledger): number {
-  let most = 0;
-  for (const block of ledger.blocks) {
-    for (let k = 0; k < block.length; k++) most = Math.max(most, block.endTick[k] - block.startTick[k]);
-  }
-  return most;
-}

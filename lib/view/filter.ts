@@ -149,18 +149,3 @@ export function filtered(input: FilterInput, filter: LedgerFilter): Uint32Array 
   }
   return kept.slice(0, total);
 }
-
-/** Every address seen, ascending, with how often. */
-export function addressesSeen(ledger: Ledger): { readonly address: number; readonly bits: number; readonly count: number }[] {
-  const seen = new Map<number, { bits: number; count: number }>();
-  for (const block of ledger.blocks) {
-    for (let k = 0; k < block.length; k++) {
-      const address = block.address[k];
-      if (address < 0) continue;
-      const entry = seen.get(address);
-      if (entry) entry.count++;
-      else seen.set(address, { bits: block.addressBits[k], count: 1 });
-    }
-  }
-  return [...seen].map(([address, entry]) => ({ address, ...entry })).sort((a, b) => a.address - b.address);
-}

@@ -33,6 +33,13 @@ export interface Row {
   readonly pulses: number;
 }
 
+/** An address as it was seen on the bus, and how often. */
+export interface SeenAddress {
+  readonly address: number;
+  readonly bits: number;
+  readonly count: number;
+}
+
 const CLOSE_WORDS = ["P", "Sr", "none"] as const;
 
 export class Ledger {
@@ -40,6 +47,8 @@ export class Ledger {
   readonly #blocks: TransactionBlock[] = [];
   readonly #byteIndex = new BlockIndex();
   readonly #bytes: ByteBlock[] = [];
+  readonly #addresses = new Map<number, { bits: number; count: number }>();
+  #longest = 0;
 
   get length(): number {
     return this.#rows.total;
@@ -53,6 +62,16 @@ export class Ledger {
     return this.#blocks;
   }
 
+  /** Ticks of the longest transaction; 0 in an empty ledger. */
+  get longest(): number {
+    return this.#longest;
+  }
+
+  /** Every address seen, ascending. */
+  get addresses(): SeenAddress[] {
+    return [...this.#addresses].map(([address, seen]) => ({ address, ...seen })).sort((a, b) => a.address - b.address);
+  }
+
   append(block: TransactionBlock, bytes: ByteBlock): void {
     if (bytes.length > 0) {
       this.#byteIndex.append(bytes.length);
@@ -61,6 +80,19 @@ export class Ledger {
     if (block.length > 0) {
       this.#rows.append(block.length);
       this.#blocks.push(block);
+      this.#take(block);
+    }
+  }
+
+  /** What the page asks of the whole ledger is kept as it grows: a walk over a million rows would hold a frame up. */
+  #take(block: TransactionBlock): void {
+    for (let k = 0; k < block.length; k++) {
+      this.#longest = Math.max(this.#longest, block.endTick[k] - block.startTick[k]);
+      const address = block.address[k];
+      if (address < 0) continue;
+      const seen = this.#addresses.get(address);
+      if (seen) seen.count++;
+      else this.#addresses.set(address, { bits: block.addressBits[k], count: 1 });
     }
   }
 

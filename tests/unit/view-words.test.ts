@@ -1,7 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import type { Summary } from "@/lib/diagnosis/report";
-import { addressesSeen, addressSearch, bytePattern, EVERYTHING, filtered } from "@/lib/view/filter";
+import { addressSearch, bytePattern, EVERYTHING, filtered } from "@/lib/view/filter";
 import {
   address,
   addressBytes,
@@ -16,6 +16,7 @@ import {
   volts,
 } from "@/lib/view/format";
 import { transactionAt, transactionNear, transactionsIn } from "@/lib/view/hit";
+import { Ledger } from "@/lib/view/ledger";
 import { marksOf, neighbour } from "@/lib/view/marks";
 import { OPENING, readState, type ViewState, writeState } from "@/lib/view/state";
 import { edgesOf, message, readEdges } from "./view-support";
@@ -146,10 +147,16 @@ describe("the ledger", () => {
   });
 
   it("counts the addresses seen", () => {
-    expect(addressesSeen(ledger)).toEqual([
+    expect(ledger.addresses).toEqual([
       { address: 0x3d, bits: 7, count: 1 },
       { address: 0x50, bits: 7, count: 2 },
     ]);
+  });
+
+  it("knows its longest transaction", () => {
+    const lengths = [0, 1, 2].map((index) => ledger.endTick(index) - ledger.startTick(index));
+    expect(ledger.longest).toBe(Math.max(...lengths));
+    expect(new Ledger().longest).toBe(0);
   });
 
   it("finds the transaction at an instant, or the nearest", () => {

@@ -116,7 +116,7 @@ function readTransaction(ledger: Ledger, t: number, slots: Slots, limit: number)
   const base = ledger.openEntry[t] + 1;
   const pulses = Math.min(ledger.pulses(t), limit - slots.length);
   reserve(slots, slots.length + pulses + 1);
-  const { what, first, last } = ledger;
+  const { what } = ledger;
   const read = pulses > 7 && (what[base + 7] & VALUE) !== 0;
   let previousOwn = 1;
   let previous = 0;
@@ -133,7 +133,7 @@ function readTransaction(ledger: Ledger, t: number, slots: Slots, limit: number)
     slots.own[n] = own;
     slots.lowHabit[n] = p === 0 ? LOW_FIRST : bit === 0 ? LOW_NEXT : bit === 8 ? LOW_NINTH : LOW_IN;
     slots.highHabit[n] = bit === 8 ? HIGH_NINTH : HIGH_IN;
-    const moved = own === 1 && previousOwn === 1 && value !== previous && first[e] === last[e];
+    const moved = own === 1 && previousOwn === 1 && value !== previous && ledger.movedOnce(e);
     slots.dataHabit[n] = moved ? (value === 0 ? DATA_FALL : DATA_RISE) : 0;
     previousOwn = own;
     previous = value;

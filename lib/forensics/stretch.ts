@@ -181,7 +181,7 @@ function settle(cells: Map<string, Cell>, l: Long, address: number): Stretch["by
 /** Before a next byte: a controller that is late puts its first bit on SDA late, near the end of the low. */
 function handover(ledger: Ledger, l: Long): Stretch["by"] {
   const entry = ledger.openEntry[l.transaction] + 1 + l.pulse;
-  const late = ledger.last[entry] > 0.75 * ledger.low[entry] && ledger.first[entry] !== ledger.last[entry];
+  const late = ledger.lastMove(entry) > 0.75 * ledger.low[entry];
   const acknowledged = (ledger.what[entry - 1] & VALUE) === 0;
   return late || !acknowledged ? "controller" : "target";
 }

@@ -1,7 +1,7 @@
 // In: signatures and transactions. Out: how far each transaction's intervals, delays and levels lie from every controller's habits.
 // The pass over everything, so it is kept cheap: no logarithms, no allocation.
 
-import { type Ledger, VALUE } from "./ledger";
+import { type Ledger, MOVED_AGAIN, VALUE } from "./ledger";
 import { DATA_FALL, DATA_RISE, HIGH_IN, HIGH_NINTH, HOLD_START, LOW_IN } from "./message";
 import type { HabitFigure, Sampling, Signature } from "./signature";
 
@@ -175,7 +175,7 @@ export function allGauges(signatures: readonly Signature[], sampling: Sampling):
 
 /** Deviations of one transaction, at most `limit` pulses of it. A low beyond every controller's own is a stretch and says nothing. */
 export function tallyTransaction(ledger: Ledger, t: number, limit: number, g: Gauges, tally: Tally): void {
-  const { low, high, first, last, what, sdaLevel, sclLevel } = ledger;
+  const { low, high, first, what, sdaLevel, sclLevel } = ledger;
   const base = ledger.openEntry[t] + 1;
   const pulses = Math.min(ledger.pulses(t), limit);
   const read = pulses > 7 && (what[base + 7] & VALUE) !== 0;
@@ -201,8 +201,7 @@ export function tallyTransaction(ledger: Ledger, t: number, limit: number, g: Ga
     }
     if (bit > 0 && bit < 8 && (!read || p < 8)) {
       const zero = (what[e] & VALUE) === 0;
-      // NaN where SDA rested, so the comparison is false.
-      if (first[e] === last[e]) tally.one(zero ? g.fall : g.rise, first[e]);
+      if (first[e] >= 0 && (what[e] & MOVED_AGAIN) === 0) tally.one(zero ? g.fall : g.rise, first[e]);
       if (sdaLevel !== null && sclLevel !== null) {
         if (sclLevel[e] > -100) tally.one(g.scl, sclLevel[e]);
         if (zero && sdaLevel[e] > -100) tally.one(g.sda, sdaLevel[e]);

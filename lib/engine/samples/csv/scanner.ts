@@ -18,8 +18,9 @@ export interface FastPath {
   scan(bytes: Uint8Array, from: number, to: number, scanner: Scanner): number;
 }
 
-/** Rows that the scanner reads before it asks the fast path again. */
-const ASIDE_ROWS = 16;
+/** Rows that the scanner reads before it asks the fast path again: more each time that it was asked in vain. */
+const LEAST_ASIDE = 16;
+const MOST_ASIDE = 4096;
 
 export class Scanner {
   /** Line of the row at hand, from 1. */
@@ -34,6 +35,7 @@ export class Scanner {
   private odd: AsideReason | "" = "";
   private reading = 0;
   private lastByte = 0;
+  private aside = LEAST_ASIDE;
   private readonly delimiter: number;
   private readonly decimal: number;
   private readonly spaces: boolean;
@@ -63,8 +65,10 @@ export class Scanner {
     if (bytes[p] === LF && this.lastByte === CR) p += 1;
     while (p < to && this.line < this.plan.firstLine) p = this.skipLine(bytes, p, to);
     while (p < to) {
+      const asked = p;
       if (this.fast !== null) p = this.fast.scan(bytes, p, to, this);
-      if (p < to) p = this.scan(bytes, p, to, this.fast === null ? Number.POSITIVE_INFINITY : ASIDE_ROWS);
+      this.aside = p > asked ? LEAST_ASIDE : Math.min(MOST_ASIDE, 2 * this.aside);
+      if (p < to) p = this.scan(bytes, p, to, this.fast === null ? Number.POSITIVE_INFINITY : this.aside);
     }
     this.lastByte = bytes[to - 1];
   }

@@ -105,15 +105,23 @@ test("a profile of the team changes values of its base, version by version", asy
   await page.getByLabel("Name", { exact: true }).fill(name);
   await page.getByRole("button", { name: "Derive it" }).click();
   await expect(page.getByRole("heading", { name, level: 1 })).toBeVisible();
-  await page.getByLabel("Least of tLOW").fill("fast");
+  await page.getByLabel("Least of tLOW", { exact: true }).fill("fast");
   await expect(page.getByText("× a number, or - for no limit")).toBeVisible();
-  await page.getByLabel("Least of tLOW").fill("1400");
+  await page.getByLabel("Least of tLOW", { exact: true }).fill("1400");
   await page.getByLabel("Where the change of tLOW comes from").fill("test plan 12");
   await page.getByRole("button", { name: "Save as version 2" }).click();
   await expect(page.getByText(/Saved as version 2/)).toBeVisible();
   await page.reload();
-  await expect(page.getByLabel("Least of tLOW")).toHaveValue("1400");
+  await expect(page.getByLabel("Least of tLOW", { exact: true })).toHaveValue("1400");
   await expect(page.getByText("1 values differ.", { exact: false })).toBeVisible();
+  // Inside a High-speed transfer the same profile has values of its own.
+  await page.getByText("Inside a High-speed transfer", { exact: true }).click();
+  await page.getByLabel("Least of tLOW (Hs)").fill("170");
+  await page.getByRole("button", { name: "Save as version 3" }).click();
+  await expect(page.getByText(/Saved as version 3/)).toBeVisible();
+  await page.reload();
+  await expect(page.getByLabel("Least of tLOW (Hs)")).toHaveValue("170");
+  await expect(page.getByText("2 values differ.", { exact: false })).toBeVisible();
   await expectAccessible(page);
 });
 

@@ -2,8 +2,9 @@
 
 import { gateway, job, LEVEL, OXYGEN, pump, register, targets, VALVES } from "@/fixtures/demo/hatchery";
 import { type Recording, simulate } from "@/lib/simulation/bus";
-import { csvChanges, csvLevels, vcd } from "@/lib/simulation/files";
-import { scenario } from "@/lib/simulation/plan";
+import { csvChanges, csvLevels, csvVolts, vcd } from "@/lib/simulation/files";
+import { controller, scenario } from "@/lib/simulation/plan";
+import { createRandom } from "@/lib/simulation/random";
 import { write } from "@/lib/simulation/script";
 
 /** What a file picker takes. */
@@ -49,6 +50,14 @@ export function busVcd(name: string): TestFile {
 /** Every sample as a row, so that the file is longer than one part of an upload (8 MiB): two parts. */
 export function longCsv(name: string): TestFile {
   return file(name, csvLevels(readings(4), { ...INSTRUMENT, rate_hz: 100e6 }));
+}
+
+/** Volts of a controller whose high is a little too short for Standard-mode. */
+export function hurriedVolts(name: string): TestFile {
+  const jobs = Array.from({ length: 6 }, (_, i) => job(3e-4 + i * GAP_S, ...register(LEVEL, 0x00, 2)));
+  const hurried = controller("pump", { thigh_s: 3.7e-6, tlow_s: 6.4e-6 }, { jobs });
+  const recording = simulate(scenario(6, 0.0095, { controllers: [hurried], targets: targets() }));
+  return file(name, csvVolts(recording, { rate_hz: 20e6, noise_v: 0.008, step_v: 0.0156 }, createRandom(4)));
 }
 
 /** A web page that somebody saved under the name of an export. */

@@ -21,52 +21,48 @@ const WRONG_KEPT = 256;
 interface Tally {
   right: number;
   wrong: number;
-  readonly shape: string;
   readonly device: number;
-  readonly mismatches: { transaction: number; tick: number; sent: number; due: number }[];
+  /** Of each wrong one, in a row: transaction, tick of the PEC, what was sent, what was due. */
+  readonly mismatches: number[];
 }
+
+const ADDRESSES = 128;
 
 export const pecMismatch: Rule = {
   meta: { kind: "pec-mismatch", clause: "SMBus PEC, CRC-8 x^8+x^2+x+1 (Linux smbus-protocol.rst, RM0440)" },
   watch: (findings) => {
-    const shapes = new Map<string, Tally>();
-    const devices = new Map<number, { right: number; wrong: number }>();
+    const shapes = new Map<number | string, Tally>();
+    const right = new Uint32Array(ADDRESSES);
+    const wrong = new Uint32Array(ADDRESSES);
     const message = new Message();
     return {
       transaction(row) {
         message.extend(row);
         if (row.closes !== CLOSE.stop || !message.checkable) return;
-        const device = message.device;
-        const shape = `${device}.${message.command}.${message.directions}.${message.length}`;
-        const tally = shapes.get(shape) ?? { right: 0, wrong: 0, shape, device, mismatches: [] };
-        if (shapes.size < SHAPES_KEPT) shapes.set(shape, tally);
-        const whole = devices.get(device) ?? { right: 0, wrong: 0 };
-        devices.set(device, whole);
-        if (message.residue === 0) {
-          tally.right++;
-          whole.right++;
-          return;
+        const { device, shape } = message;
+        const fits = message.residue === 0;
+        if (fits) right[device]++;
+        else wrong[device]++;
+        let tally = shapes.get(shape);
+        if (tally === undefined) {
+          if (shapes.size === SHAPES_KEPT) return;
+          tally = { right: 0, wrong: 0, device, mismatches: [] };
+          shapes.set(shape, tally);
         }
-        tally.wrong++;
-        whole.wrong++;
-        if (tally.mismatches.length < WRONG_KEPT) {
-          tally.mismatches.push({
-            transaction: row.index,
-            tick: row.bytes.startTick[row.at + row.byteCount - 1],
-            sent: message.last,
-            due: message.due,
-          });
-        }
+        if (fits) tally.right++;
+        else if (tally.wrong++ < WRONG_KEPT)
+          tally.mismatches.push(row.index, row.bytes.startTick[row.at + row.byteCount - 1], message.last, message.due);
       },
       conclude() {
         for (const tally of shapes.values()) {
-          const whole = devices.get(tally.device) ?? tally;
+          const all = right[tally.device] + wrong[tally.device];
           const habit = tally.right >= HABIT && tally.right >= HABIT_SHARE * (tally.right + tally.wrong);
-          const ofDevice = whole.right >= DEVICE_HABIT && whole.right >= DEVICE_SHARE * (whole.right + whole.wrong);
+          const ofDevice = right[tally.device] >= DEVICE_HABIT && right[tally.device] >= DEVICE_SHARE * all;
           // Several messages of one shape and none with a right PEC: this shape carries none.
           const without = tally.right === 0 && tally.wrong > 1;
           if (!habit && (!ofDevice || without)) continue;
-          for (const { transaction, tick, sent, due } of tally.mismatches) {
+          for (let i = 0; i < tally.mismatches.length; i += 4) {
+            const [transaction, tick, sent, due] = tally.mismatches.slice(i, i + 4);
             findings.add("pec-mismatch", tick, `PEC ${hex(sent)} sent, ${hex(due)} due`, transaction);
           }
         }
@@ -74,6 +70,10 @@ export const pecMismatch: Rule = {
     };
   },
 };
+
+/** Transactions and bytes of a message whose shape is a small number; few have more. */
+const FEW_TRANSACTIONS = 4;
+const FEW_BYTES = 1024;
 
 /** The bytes from START to STOP, as the PEC runs over them: every byte, address bytes included. */
 class Message {
@@ -84,7 +84,10 @@ class Message {
   length = 0;
   device = 0;
   command = 0;
-  directions = "";
+  /** Of its transactions, a bit each behind a leading 1, and as letters where there are many. */
+  private directions = 1;
+  private course = "";
+  private transactions = 0;
   checkable = false;
   private whole = false;
 
@@ -94,22 +97,33 @@ class Message {
     if (row.kind !== KIND.normal || row.addressBits !== 7 || row.addressAck !== 1) this.whole = false;
     if (this.length > 0 && row.address !== this.device) this.whole = false;
     this.device = row.address;
-    this.directions += row.direction;
+    this.transactions++;
+    if (this.transactions <= FEW_TRANSACTIONS) this.directions = 2 * this.directions + row.direction;
+    else this.course += row.direction;
     for (let i = at; i < at + byteCount; i++) {
       if (bytes.bits[i] !== 8 || bytes.ack[i] > 1) this.whole = false;
       this.due = this.residue;
       this.last = bytes.value[i];
       this.residue = crc8(this.residue, this.last);
-      if (this.length === 1 && this.directions === "0") this.command = this.last;
+      if (this.length === 1 && this.transactions === 1 && row.direction === 0) this.command = this.last;
       this.length++;
     }
     this.checkable = this.whole && this.length >= SHORTEST && byteCount > 1;
   }
 
+  /** The same for messages to the same device with the same command, directions and length. No string where a number will do. */
+  get shape(): number | string {
+    const { device, command, directions, length, course } = this;
+    if (course === "" && length < FEW_BYTES) return ((device * 256 + command) * 32 + directions) * FEW_BYTES + length;
+    return `${device}.${command}.${directions}.${course}.${length}`;
+  }
+
   private begin(): void {
     this.residue = 0;
     this.length = 0;
-    this.directions = "";
+    this.directions = 1;
+    this.course = "";
+    this.transactions = 0;
     this.whole = true;
     this.command = 0;
   }

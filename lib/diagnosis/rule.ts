@@ -45,6 +45,8 @@ export interface End {
   readonly profile: Profile | null;
   /** Moments that lie in no transaction. */
   readonly outside: readonly Moment[];
+  /** Volts: SCL pulses of the byte before a time in which SCL is low throughout, -1 outside a byte; null where it is not. */
+  lowSlot(tick: number, width: number): number | null;
   readonly lookAlikes: readonly Fault[];
   readonly stretches: readonly Stretch[];
   /** Last transaction, and pulses seen in it; -1 where there was none. */

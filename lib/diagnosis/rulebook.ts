@@ -8,6 +8,7 @@ import type { Remnant } from "../engine/decoder";
 import type { EdgeBlock } from "../engine/samples/edges";
 import type { CaptureHead } from "../engine/samples/reader";
 import { FaultList } from "./findings";
+import { LowSpans } from "./lows";
 import { type Moment, Moments } from "./moments";
 import { LineWatch, TransactionPlaces } from "./places";
 import type { Fault, Harmless } from "./report";
@@ -23,6 +24,7 @@ export class RuleBook {
   private readonly list: FaultList;
   private readonly moments: Moments;
   private readonly lines = new LineWatch();
+  private readonly lows = new LowSpans();
   private readonly watches: readonly Watch[];
   private readonly forRows: readonly Watch[];
   private readonly forSpikes: readonly Watch[];
@@ -43,6 +45,7 @@ export class RuleBook {
 
   bits(block: BitBlock): void {
     this.moments.bits(block);
+    if (block.leads !== null) this.lows.bits(block);
   }
 
   spike(spike: Spike): void {
@@ -69,6 +72,7 @@ export class RuleBook {
     const whole: End = {
       ...end,
       lines: this.lines.atEnd(),
+      lowSlot: (tick, width) => this.lows.slotOf(tick, width),
       period: this.moments.period,
       outside: this.moments.outside,
       lastTransaction: this.moments.lastTransaction,

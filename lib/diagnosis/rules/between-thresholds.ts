@@ -1,5 +1,6 @@
 // In: what the comparator saw of a capture in volts. Out: visits between the thresholds that never became a level: receivers may
-// or may not have taken them for an edge. A dip that crosses no threshold is not listed.
+// or may not have taken them for an edge. On SDA while SCL is low nobody looks: those are harmless. A dip that crosses no threshold
+// is not listed.
 
 import { seconds } from "../../base/time";
 import { duration } from "../format";
@@ -10,6 +11,11 @@ export const betweenThresholds: Rule = {
   watch: (findings) => ({
     conclude(end) {
       for (const { line, tick, width, extreme_v } of end.tail.excursions) {
+        const slot = line === "sda" ? end.lowSlot(tick, width) : null;
+        if (slot !== null) {
+          findings.harmless(slot === 0 || slot === 8 ? "ack-handover" : "low-pulse", tick);
+          continue;
+        }
         const wide = duration(seconds(width, findings.base));
         findings.add("between-thresholds", tick, `${line.toUpperCase()} went to ${extreme_v.toFixed(2)} V for ${wide} and back`);
       }

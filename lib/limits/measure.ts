@@ -5,7 +5,7 @@
 import type { Timebase } from "../base/time";
 import { BIT, type BitBlock, IN_HS, LOST, OUTSIDE, type Spike, START, STOP } from "../engine/bits/bits";
 import type { CaptureHead } from "../engine/samples/reader";
-import type { Column } from "./column";
+import { ACK_SLOT, type Column } from "./column";
 import { type ColumnSet, columnsFor, columnsOf } from "./columns";
 import { type EdgePoints, edgePoints, THIRTY_TO_SEVENTY } from "./edges";
 import { type LevelColumns, levelColumns, noteLevels } from "./levels";
@@ -18,7 +18,6 @@ export type MeasureHead = Pick<CaptureHead, "timebase" | "levels" | "sampleTicks
 const STRETCHED = 1.5;
 /** From this many clock periods on, a mode that most of them are too fast for is no longer tried. */
 const SETTLED = 20_000;
-const ACK_SLOT = 8;
 /** Bits that need more than the plain walk. */
 const UNUSUAL = OUTSIDE | IN_HS;
 
@@ -185,13 +184,7 @@ class Run {
     const { fall, end, sdaLast } = block;
     const { fs, doubt, transaction } = this;
     fs.slow?.span(end, fall, from, to, doubt, transaction);
-    for (let i = from; i < to; ) {
-      const ack = this.slot === ACK_SLOT;
-      const next = ack ? i + 1 : Math.min(to, i + ACK_SLOT - this.slot);
-      (ack ? fs.vdAck : fs.vdDat).span(sdaLast, fall, i, next, doubt, transaction);
-      this.slot = ack ? 0 : this.slot + next - i;
-      i = next;
-    }
+    this.slot = fs.vdDat.spanBytes(sdaLast, fall, from, to, doubt, transaction, this.slot, fs.vdAck);
   }
 
   // The same of one low of a run in which some are stretched.

@@ -31,26 +31,31 @@ export const THIRTY_TO_SEVENTY: EdgePoints = { rise: 1, fall: 1, risePerRc: RISE
 const BEYOND_V = 0.15;
 
 export function edgePoints({ vdd_v, vil_v, vih_v }: ReadLevels, profile: Profile | null): EdgePoints {
-  if (vdd_v === null || vil_v === null || vih_v === null) return THIRTY_TO_SEVENTY;
-  const inRc = (low: number, high: number) => Math.log((vdd_v - low) / (vdd_v - high));
-  const own: EdgePoints = { ...THIRTY_TO_SEVENTY, risePerRc: inRc(vil_v, vih_v) };
   const low = (profile?.limits.VIL?.max ?? Number.NaN) - BEYOND_V;
   const high = (profile?.limits.VIH?.min ?? Number.NaN) + BEYOND_V;
-  // Below the upper point the supply cannot reach it, and there is no such rise.
-  if (profile?.spec !== "SMBus" || !(low < high && high < vdd_v)) return own;
-  const from = `${low.toFixed(2)} V (VIL,MAX - 0.15 V)`;
-  const to = `${high.toFixed(2)} V (VIH,MIN + 0.15 V)`;
+  const smbus = profile?.spec === "SMBus" && low < high;
+  if (vdd_v === null || vil_v === null || vih_v === null)
+    return smbus ? { ...THIRTY_TO_SEVENTY, words: wordsOf(low, high, null) } : THIRTY_TO_SEVENTY;
+  const inRc = (from: number, to: number) => Math.log((vdd_v - from) / (vdd_v - to));
+  // A supply below the upper point cannot reach it, and there is no such rise.
+  if (!smbus || high >= vdd_v) return { ...THIRTY_TO_SEVENTY, risePerRc: inRc(vil_v, vih_v) };
   const carried = Math.abs(low - vil_v) > 0.005 || Math.abs(high - vih_v) > 0.005;
-  const crossings = `the crossings of ${vil_v.toFixed(2)} V and ${vih_v.toFixed(2)} V`;
-  const by = (shape: string) => (carried ? `, reckoned from ${crossings} as ${shape}` : "");
   return {
     rise: inRc(low, high) / inRc(vil_v, vih_v),
     fall: (high - low) / (vih_v - vil_v),
     risePerRc: inRc(low, high),
     limitPerRc: inRc(low, high),
-    words: {
-      rise: `${from} to ${to}, SCL and SDA${by("an RC rise")}`,
-      fall: `${to} to ${from}, SCL and SDA${by("a straight fall")}`,
-    },
+    words: wordsOf(low, high, carried ? `the crossings of ${vil_v.toFixed(2)} V and ${vih_v.toFixed(2)} V` : null),
+  };
+}
+
+/** @param crossings what the times are reckoned from, null where they are measured between the points themselves */
+function wordsOf(low: number, high: number, crossings: string | null): EdgePoints["words"] {
+  const from = `${low.toFixed(2)} V (VIL,MAX - 0.15 V)`;
+  const to = `${high.toFixed(2)} V (VIH,MIN + 0.15 V)`;
+  const by = (shape: string) => (crossings === null ? "" : `, reckoned from ${crossings} as ${shape}`);
+  return {
+    rise: `${from} to ${to}, SCL and SDA${by("an RC rise")}`,
+    fall: `${to} to ${from}, SCL and SDA${by("a straight fall")}`,
   };
 }

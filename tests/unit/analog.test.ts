@@ -6,6 +6,8 @@ import { openArchive } from "@/lib/engine/archive/reader";
 import { recordArchive } from "@/lib/engine/archive/record";
 import { openCapture } from "@/lib/engine/samples/open";
 import type { ReadChoices } from "@/lib/engine/samples/reader";
+import { edgePoints } from "@/lib/limits/edges";
+import { builtIn } from "@/lib/limits/profile";
 import { createRandom } from "@/lib/simulation/random";
 import { host } from "@/workers/host";
 import { LineScript, reportOf } from "../support/line-script";
@@ -136,6 +138,17 @@ describe.each([
     const points = report.measurements.find((row) => row.parameter === "tr")?.points ?? "";
     expect(points).toContain(`${low.toFixed(2)} V (VIL,MAX - 0.15 V) to ${high.toFixed(2)} V (VIH,MIN + 0.15 V)`);
     expect(points).toContain("reckoned from the crossings");
+  });
+
+  test("a supply that cannot reach them, and levels alone", () => {
+    const profile = builtIn(limits);
+    const scarce = edgePoints({ vdd_v: high - 0.01, vil_v: 0.4, vih_v: 1 }, profile);
+    expect([scarce.rise, scarce.fall, scarce.words]).toEqual([1, 1, null]);
+    const levels = edgePoints({ vdd_v: null, vil_v: null, vih_v: null }, profile);
+    expect(levels).toMatchObject({
+      rise: 1,
+      words: { fall: expect.stringMatching(/MIN \+ 0\.15 V\) to 0\.65 V .*, SCL and SDA$/) },
+    });
   });
 
   test("measured between them where these levels are given", async () => {

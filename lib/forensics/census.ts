@@ -66,7 +66,7 @@ function settle(
   closed: boolean,
   list: readonly number[],
 ): readonly Signature[] {
-  const features = featuresOf(ledger, messages, list, sampling.step);
+  const features = featuresOf(ledger, messages, list, sampling);
   let signatures = clusters(features).map((group) => {
     const members = group.members.map((i) => features.messages[i]);
     return learn(ledger, messages, members, sampling);

@@ -26,6 +26,8 @@ export interface Group {
   readonly typical: Float64Array;
   /** What rounding alone may put between two messages: see `bias` of the features. */
   readonly bias: Float64Array;
+  /** Mean number of lows inside bytes that a message shows. */
+  readonly length: number;
 }
 
 export function clusters(features: Features): Group[] {
@@ -123,7 +125,8 @@ function summary(features: Features, members: readonly number[]): Group {
     error[f] = Math.sqrt(features.spread[f] ** 2 / weight + rounding[f] ** 2 / 6 / members.length);
     typical[f] = Math.sqrt(features.spread[f] ** 2 / (weight / members.length));
   }
-  return { members, mean, error, typical, bias: rounding };
+  const length = members.reduce((sum, i) => sum + features.count[F_LOW][i], 0) / members.length;
+  return { members, mean, error, typical, bias: rounding, length };
 }
 
 function apart(features: Features, f: number, a: number, b: number, ea: number, eb: number): number {
@@ -182,8 +185,9 @@ function isMixture(features: Features, group: Group, kept: readonly Group[]): bo
   return kept.some((keeper) => kept.some((other) => other !== keeper && isMixtureOf(features, group, keeper, other)));
 }
 
-/** Groups of so few messages may be contested for any part of their length; larger ones must be so throughout. */
+/** Groups this much smaller than both may be contested for any part of their length; larger ones must be so throughout. */
 const FEW = 4;
+const SMALL = 0.25;
 
 function isMixtureOf(features: Features, group: Group, keeper: Group, other: Group): boolean {
   const least = Math.min(keeper.members.length, other.members.length);
@@ -196,15 +200,20 @@ function isMixtureOf(features: Features, group: Group, keeper: Group, other: Gro
   const z = (f: number, x: number): number => apart(features, f, group.mean[f], x, group.error[f], error(f));
   // Share of the message in which both drove.
   let share = 1;
-  if (group.members.length <= Math.max(FEW, 0.1 * least)) {
+  if (group.members.length <= Math.max(FEW, SMALL * least)) {
     const along = [F_LOW, F_HIGH].map((f) => (both(f) - keeper.mean[f]) / error(f));
     const at = [F_LOW, F_HIGH].map((f) => (group.mean[f] - keeper.mean[f]) / error(f));
     const length = along[0] ** 2 + along[1] ** 2;
     if (length > 0) share = Math.min(1, Math.max(0, (along[0] * at[0] + along[1] * at[1]) / length));
   }
   const clocks = [F_LOW, F_HIGH].every((f) => Math.abs(z(f, keeper.mean[f] + share * (both(f) - keeper.mean[f]))) < 3.5);
-  return clocks && [F_FALL, F_RISE].every((f) => between(z(f, both(f)), z(f, keeper.mean[f])));
+  // Who has yielded clocks on to the end of its byte at most. Where several bytes are clocked together nobody has, and both drive SDA.
+  const driven = share === 1 && group.length > ONE_BYTE;
+  return clocks && [F_FALL, F_RISE].every((f) => between(z(f, both(f)), z(f, driven ? both(f) : keeper.mean[f])));
 }
+
+/** Lows inside bytes from which a message certainly has more than one byte. */
+const ONE_BYTE = 10;
 
 /** `a` and `b`: distances from the two ends, with sign, in standard errors; NaN where an end is not known. */
 function between(a: number, b: number): boolean {

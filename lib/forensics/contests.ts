@@ -10,6 +10,7 @@ import { type Alignment, align, NO_ALIGNMENT, withLog } from "./log-match";
 import { newSlots, readMessage } from "./message";
 import { type Judged, judge, type Rates } from "./posterior";
 import { Habitual } from "./retry";
+import { learn } from "./signature";
 import { part } from "./stream";
 import type { TapFindings } from "./taps";
 import { lastTogether, Scales } from "./weigh";
@@ -27,6 +28,8 @@ export interface ContestFindings {
 const WHOLE = 1000;
 /** Odds at which a controller is named: nine to one. */
 const NAMED = Math.log(9);
+/** Natural-log odds from which a message teaches its controller's habits. */
+const SURE = 3;
 /** Share of the probability that one pair must have to be named. */
 const PAIR = 0.6;
 
@@ -35,7 +38,7 @@ interface Work {
   readonly census: Census;
   readonly tapped: TapFindings | null;
   readonly taps: number;
-  readonly scales: Scales;
+  scales: Scales;
   readonly habitual: Habitual;
   readonly naming: Naming;
   readonly contests: Contest[];
@@ -127,12 +130,40 @@ function infer(work: Work): Alignment {
   }
   const total = census.signatures.reduce((n, s) => n + s.messages + 1, 0);
   const share = census.signatures.map((s) => (s.messages + 1) / total);
-  const { judged, rates } = judge(work.scales, work.habitual, candidates, messages.count, share);
+  const first = judge(work.scales, work.habitual, candidates, messages.count, share);
+  const again = withoutContests(work, first.judged);
+  if (again !== null) work.scales = again;
+  const { judged, rates } = again === null ? first : judge(again, work.habitual, candidates, messages.count, share);
   const shown = judged.filter((j) => !allTapped(j, tapped, work.taps));
   const times = shown.map((j) => ({ time_s: timeOf(work, j), weight: j.probability }));
   const alignment = capture.log.length > 0 ? align(capture, [...certainTimes(work), ...times]) : NO_ALIGNMENT;
   for (const j of shown) report(work, j, rates, alignment);
   return alignment;
+}
+
+/** Probability of a contest below which a message may teach what its controller alone does. */
+const PLAINLY_ALONE = 0.2;
+/** Messages that a controller's habits are learned from at least. */
+const LEAST_LESSONS = 6;
+
+/**
+ * Habits learned once more, now that it is known which messages are likely contests: those are like their keeper's in much, and where
+ * they are many they bend what is taken for its own. Null where there are none.
+ */
+function withoutContests(work: Work, judged: readonly Judged[]): Scales | null {
+  const { capture, census } = work;
+  const { ledger, messages, sampling } = capture;
+  const suspect = new Set(judged.filter((j) => j.probability >= PLAINLY_ALONE).map((j) => j.message));
+  if (suspect.size === 0) return null;
+  const lessons: number[][] = census.signatures.map(() => []);
+  for (let m = 0; m < messages.count; m++) {
+    if (census.by[m] >= 0 && !suspect.has(m) && work.contestedUntil[m] === 0 && census.margin[m] > SURE)
+      lessons[census.by[m]].push(m);
+  }
+  const signatures = census.signatures.map((old, c) =>
+    lessons[c].length < LEAST_LESSONS ? old : { ...learn(ledger, messages, lessons[c], sampling), messages: old.messages },
+  );
+  return new Scales(ledger, messages, signatures, sampling, capture.vdd);
 }
 
 /** When the contest would have been decided; the START where none is supposed. */

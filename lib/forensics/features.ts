@@ -5,6 +5,8 @@
 import { type Ledger, VALUE } from "./ledger";
 import { DATA_FALL, DATA_RISE, HIGH_IN, LOW_IN, type Messages, newSlots, readMessage, type Slots } from "./message";
 import { quantile } from "./normal";
+import { beat, byteRuns, PERIODS, runSpread } from "./period";
+import type { Sampling } from "./signature";
 
 export const F_LOW = 0;
 export const F_HIGH = 1;
@@ -46,30 +48,18 @@ export function bias(features: Features, f: number, i: number): number {
   return f === F_LOW || f === F_HIGH || f === F_FALL || f === F_RISE ? features.coherent[i] * features.step : 0;
 }
 
-/**
- * Sampling error does not average out when the bit time is nearly a whole number of samples, or of halves, thirds ...: every pulse is then
- * sampled at the same phase. q-th harmonic of the sawtooth of rounding, averaged over n pulses that advance by `bit` samples each.
- */
-export function beat(bit: number, n: number, jitter: number): number {
-  let sum = 0;
-  for (let q = 1; q <= 5; q++) {
-    const slip = Math.max(Math.abs(q * bit - Math.round(q * bit)), q * jitter);
-    const left = Math.min(1, 1 / (Math.PI * n * slip + 1e-12));
-    sum += (left / q) ** 2;
-  }
-  return sum / 12;
-}
-
 /** Longest stretch of a message that features are taken from, SCL pulses. */
 const LOOK = 120;
 
-export function featuresOf(ledger: Ledger, messages: Messages, list: readonly number[], step: number): Features {
+export function featuresOf(ledger: Ledger, messages: Messages, list: readonly number[], sampling: Sampling): Features {
+  // Step of a digital capture; crossings in volts are interpolated, which is like a finer one.
+  const step = Math.sqrt(12 * sampling.variance);
   const n = list.length;
   const value = Array.from({ length: FEATURES }, () => new Float64Array(n).fill(Number.NaN));
   const count = Array.from({ length: FEATURES }, () => new Float64Array(n));
   const within: number[][] = Array.from({ length: FEATURES }, () => []);
   const width = Array.from({ length: FEATURES }, () => new Float64Array(n));
-  const runs: number[] = [];
+  const differing = runSpread(sampling);
   const slots = newSlots();
   const even = new Uint8Array(n);
   const halves: number[][] = [];
@@ -92,9 +82,14 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
       width[f][i] = m.variance;
       if (m.count >= 4) within[f].push(m.variance);
     }
-    const period = periodOf(ledger, slots, value[F_LOW][i], value[F_HIGH][i], step, runs);
-    value[F_PERIOD][i] = period.mean;
-    count[F_PERIOD][i] = period.count;
+    const runs = byteRuns(ledger, slots, {
+      low: value[F_LOW][i],
+      high: value[F_HIGH][i],
+      reach: Math.max(2.1 * step, 0.06 * value[F_LOW][i]),
+    });
+    differing.add(runs);
+    count[F_PERIOD][i] = PERIODS * runs.length;
+    if (runs.length > 0) value[F_PERIOD][i] = runs.reduce((a, b) => a + b, 0) / count[F_PERIOD][i];
     halves.push(halfDifference(lists[F_LOW], value[F_LOW][i]), halfDifference(lists[F_HIGH], value[F_HIGH][i]));
   }
   const spread = new Float64Array(FEATURES);
@@ -105,8 +100,8 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
   }
   spread[F_HOLD] = Math.max(spread[F_LOW], 0.41 * step) * 1.5;
   for (let i = 0; i < n; i++) even[i] = agrees(halves[2 * i], spread[F_LOW]) && agrees(halves[2 * i + 1], spread[F_HIGH]) ? 1 : 0;
-  const jitter = periodJitter(runs, step);
-  // The two edges of seven periods of one byte: see `periodOf`.
+  // Rather too steady a clock than one that is thought to average its rounding away.
+  const jitter = Math.sqrt(differing.least() || 0);
   spread[F_PERIOD] = Math.sqrt(jitter ** 2 + (step * step) / (6 * PERIODS));
   width.forEach((list, f) => {
     for (let i = 0; i < n; i++) list[i] = shrunk(list[i], count[f][i], f === F_HOLD || f === F_PERIOD ? 0 : 1, spread[f]);
@@ -126,62 +121,8 @@ function shrunk(own: number, count: number, known: number, typical: number): num
   return (TYPICAL_WEIGHT * typical * typical + n * Math.max(own, 0.5 * typical * typical)) / (TYPICAL_WEIGHT + n);
 }
 
-/**
- * Standard deviation of one period, sampling error taken out: from how far the bytes of one message differ. Seven periods gather seven
- * times the variance of one, while the sampling error of their two edges stays what it is.
- * @param runs sums of seven periods, two of the same message after another
- */
-function periodJitter(runs: readonly number[], step: number): number {
-  const squares: number[] = [];
-  for (let i = 0; i + 1 < runs.length; i += 2) squares.push((runs[i] - runs[i + 1]) ** 2 / 2);
-  if (squares.length === 0) return 0;
-  const kept = squares.sort((a, b) => a - b).slice(0, Math.ceil(0.9 * squares.length));
-  const mean = kept.reduce((a, b) => a + b, 0) / kept.length;
-  return Math.sqrt(Math.max(0, mean - (step * step) / 6) / PERIODS);
-}
-
-/** Periods in one byte, from the rise of its first pulse to that of its eighth. */
-const PERIODS = 7;
 /** `beat` where the bit time is a whole number of samples and nothing jitters. */
 const FULL_BEAT = beat(1, 1e9, 0);
-
-/** Mean period over those bytes in which no interval is far from the message's own. */
-function periodOf(
-  ledger: Ledger,
-  slots: Slots,
-  low: number,
-  high: number,
-  step: number,
-  runs: number[],
-): { mean: number; count: number } {
-  let last = Number.NaN;
-  let sum = 0;
-  let count = 0;
-  let run = 0;
-  let runSum = 0;
-  for (let s = 0; s < slots.length; s++) {
-    if (slots.highHabit[s] !== HIGH_IN || slots.pulse[s] % 9 === 0) {
-      run = 0;
-      runSum = 0;
-    } else {
-      const before = ledger.high[slots.entry[s - 1]];
-      const l = ledger.low[slots.entry[s]];
-      const near =
-        Math.abs(l - low) < Math.max(2.1 * step, 0.03 * low) && Math.abs(before - high) < Math.max(2.1 * step, 0.03 * high);
-      run = near ? run + 1 : -PERIODS;
-      runSum += before + l;
-    }
-    if (run !== PERIODS) continue;
-    if (Number.isNaN(last)) last = runSum;
-    else {
-      runs.push(last, runSum);
-      last = Number.NaN;
-    }
-    sum += runSum;
-    count += PERIODS;
-  }
-  return { mean: count > 0 ? sum / count : Number.NaN, count };
-}
 
 function agrees(half: readonly number[], spread: number): boolean {
   const [difference, a, b] = half;

@@ -16,7 +16,7 @@ const ROUNDS = 4;
  * signature is a little off, say it a hundred times in the same direction and carry the rate with it.
  */
 const SPEAKS = 8;
-const RAISE = 0.8;
+const RAISE = 0.4;
 const RAISE_RATE = 2;
 /** A third contender is named only when it has this share of the probability. */
 const THIRD_SURE = 0.9;

@@ -22,6 +22,7 @@ import {
   SETUP_SR,
 } from "./message";
 import { quantile } from "./normal";
+import { byteRuns, PERIODS, runSpread } from "./period";
 
 export interface HabitFigure {
   readonly mean: number;
@@ -93,7 +94,87 @@ export function learn(ledger: Ledger, messages: Messages, members: readonly numb
     const lengthens = habit === LOW_NINTH || habit === LOW_NEXT || habit === LOW_FIRST || habit === LOW_SR || habit === LOW_STOP;
     return figure(list, sampling, lengthens, base);
   });
+  steadied(habits, clockVariance(ledger, messages, members, stride, habits, sampling), sampling);
   return { habits: filled(habits), sdaLow: level(sda), sclLow: level(scl), messages: members.length };
+}
+
+/** Pairs of bytes from which a clock's jitter is taken. */
+const PAIRS = 6;
+
+interface ClockVariance {
+  /** Of one period of the clock itself, with the error of finding it; NaN where too little is shown. */
+  readonly period: number;
+  /** Of a message's mean period, beyond what its periods' own variance and rounding explain. */
+  readonly wander: number;
+}
+
+function clockVariance(
+  ledger: Ledger,
+  messages: Messages,
+  members: readonly number[],
+  stride: number,
+  habits: readonly (HabitFigure | null)[],
+  sampling: Sampling,
+): ClockVariance {
+  const low = habits[LOW_IN];
+  const high = habits[HIGH_IN];
+  if (low === null || high === null) return { period: Number.NaN, wander: 0 };
+  const reach = 4 * Math.sqrt(Math.max(low.jitter, high.jitter) + 2 * sampling.variance);
+  const slots = newSlots();
+  const spread = runSpread(sampling);
+  const bytes: { period: number; count: number }[] = [];
+  for (let i = 0; i < members.length; i += stride) {
+    readMessage(ledger, messages, members[i], slots, LOOK);
+    const runs = byteRuns(ledger, slots, { low: low.mean, high: high.mean, reach });
+    spread.add(runs);
+    if (runs.length > 0) bytes.push({ period: runs.reduce((a, b) => a + b, 0) / runs.length / PERIODS, count: runs.length });
+  }
+  const period = spread.count < PAIRS ? Number.NaN : spread.variance(low.mean + high.mean) * (1 + 4 / spread.count);
+  const own = Number.isNaN(period) ? low.jitter + high.jitter : period;
+  return { period, wander: wanderOf(bytes, own, sampling) };
+}
+
+/** Messages that show whether a clock wanders. */
+const SEVERAL = 8;
+
+/** How much the periods of messages differ more than they should: a clock that drifts, or two that were not told apart. */
+function wanderOf(
+  messages: readonly { readonly period: number; readonly count: number }[],
+  jitter: number,
+  sampling: Sampling,
+): number {
+  const n = messages.length;
+  if (n < SEVERAL) return 0;
+  const middle = quantile(Float64Array.from(messages, (m) => m.period).sort(), 0.5);
+  // A contested message here and there is not the clock's wandering.
+  const kept = messages
+    .map((m) => (m.period - middle) ** 2 - (3 * sampling.variance + PERIODS * jitter) / (PERIODS * PERIODS * m.count))
+    .sort((a, b) => a - b)
+    .slice(0, Math.ceil(0.9 * n));
+  const mean = kept.reduce((a, b) => a + b, 0) / kept.length;
+  const error = Math.sqrt(kept.reduce((a, b) => a + (b - mean) ** 2, 0)) / kept.length;
+  return Math.max(0, mean - error);
+}
+
+/**
+ * What single intervals show of a clock's jitter is blurred by rounding: a steady low of seven and a half samples reads as seven or eight.
+ * Whole bytes show it better, so they bound it.
+ */
+function steadied(habits: (HabitFigure | null)[], clock: ClockVariance, sampling: Sampling): void {
+  const low = habits[LOW_IN];
+  const high = habits[HIGH_IN];
+  if (low === null || high === null) return;
+  const share = Number.isNaN(clock.period) ? 1 : Math.min(1, clock.period / (low.jitter + high.jitter));
+  // One message's intervals wander together: that many of them say no more about the mean than this variance of each allows.
+  const wander = (PERIODS * clock.wander) / 2;
+  const floor = 0.01 * sampling.step * sampling.step;
+  for (const [habit, figure] of [
+    [LOW_IN, low],
+    [HIGH_IN, high],
+  ] as const) {
+    const jitter = Math.max(share * figure.jitter, Math.min(figure.jitter, floor), (1e-4 * figure.mean) ** 2) + wander;
+    habits[habit] = { ...figure, jitter: jitter + (jitter + 2 * sampling.variance) / figure.count };
+  }
 }
 
 /** Lows inside later bytes say how often the habit is broken, not what it is. */

@@ -1,7 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { brokenDensity, Chain } from "@/lib/forensics/chain";
-import { beat } from "@/lib/forensics/features";
 import { larger, phi, smaller } from "@/lib/forensics/normal";
+import { beat } from "@/lib/forensics/period";
 import { parallel } from "@/lib/forensics/together";
 
 describe("signature arithmetic", () => {

@@ -1,10 +1,11 @@
-/** The page is told of growth at once the first time, then so long after it has shown the last: reading is not to be slowed. */
+/** The page is told of growth at once the first two times (the head, the first rows), then so long after it has shown the last. */
 const PACE_MS = 100;
 
 /** Runs one of many calls now and then, the last one never lost, none before the page has shown the one before, none once closed. */
 export class Growth {
   #timer: ReturnType<typeof setTimeout> | undefined;
   #drawing = false;
+  #shown = 0;
   #next: (() => void) | null = null;
   #closed = false;
 
@@ -17,7 +18,8 @@ export class Growth {
   shown(): void {
     if (!this.#drawing) return;
     this.#drawing = false;
-    this.#wait(PACE_MS);
+    this.#shown += 1;
+    this.#wait(this.#shown === 1 ? 0 : PACE_MS);
   }
 
   close(): void {

@@ -125,20 +125,34 @@ async function read(
 ): Promise<Stage> {
   const held: { capture: Capture | null } = { capture: null };
   let bytes = 0;
+  let shown: "nothing" | "head" | "rows" = "nothing";
   const tell = () => {
-    if (worker.stopped) return;
-    startTransition(() => {
+    const { capture } = held;
+    if (worker.stopped || capture === null) return;
+    const grown = () => {
       told.grown();
       told.setStage({ is: "reading", bytes });
-    });
-    if (held.capture) look();
+    };
+    if (shown === "nothing") {
+      shown = "head";
+      startTransition(() => {
+        told.setCapture(capture);
+        grown();
+      });
+      return;
+    }
+    if (shown === "head" && capture.ledger.length > 0) {
+      // Few rows, and what is waited for: nothing else goes before them.
+      shown = "rows";
+      grown();
+    } else startTransition(grown);
+    look();
   };
   const changed = () => growth.ask(tell);
   const outcome = await worker.analyse(source, settings, {
     head(head) {
-      const capture = new Capture(head);
-      held.capture = capture;
-      if (!worker.stopped) startTransition(() => told.setCapture(capture));
+      held.capture = new Capture(head);
+      changed();
     },
     edges(block) {
       held.capture?.appendEdges(block);
@@ -154,8 +168,13 @@ async function read(
       changed();
     },
   });
-  if (!outcome.ok) return { is: "refused", problem: outcome.problem };
-  held.capture?.conclude(outcome);
-  if (!worker.stopped) startTransition(() => told.grown());
-  return { is: "done" };
+  const { capture } = held;
+  if (outcome.ok) capture?.conclude(outcome);
+  if (capture && !worker.stopped) {
+    startTransition(() => {
+      told.setCapture(capture);
+      told.grown();
+    });
+  }
+  return outcome.ok ? { is: "done" } : { is: "refused", problem: outcome.problem };
 }

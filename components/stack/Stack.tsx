@@ -78,19 +78,17 @@ export function Stack(props: StackProps) {
   useLayoutEffect(() => {
     const element = list.current;
     if (!element) return;
-    // Width and the scale that follows from it at once, so that no row is drawn twice; and drawn in pieces.
+    // Width and the scale that follows from it at once, so that no row is drawn twice.
     const measure = () => {
       const { clientWidth } = element;
       const below = window.innerHeight - Math.max(0, element.getBoundingClientRect().top);
-      startTransition(() => {
-        setWidth(clientWidth);
-        setView(window.innerHeight);
-        setFore((now) => now || Math.max(1, below));
-        if (clientWidth > 0) onTraceWidth(layoutFor(clientWidth).traceWidth);
-      });
+      setWidth(clientWidth);
+      setView(window.innerHeight);
+      setFore((now) => now || Math.max(1, below));
+      if (clientWidth > 0) onTraceWidth(layoutFor(clientWidth).traceWidth);
     };
     measure();
-    const observer = new ResizeObserver(measure);
+    const observer = new ResizeObserver(() => startTransition(measure));
     observer.observe(element);
     return () => observer.disconnect();
   }, [onTraceWidth]);

@@ -198,18 +198,20 @@ function isMixtureOf(features: Features, group: Group, keeper: Group, other: Gro
   };
   const error = (f: number): number => Math.max(keeper.error[f], other.error[f]) + 0.4 * features.spread[f];
   const z = (f: number, x: number): number => apart(features, f, group.mean[f], x, group.error[f], error(f));
-  // Share of the message in which both drove.
-  let share = 1;
-  if (group.members.length <= Math.max(FEW, SMALL * least)) {
-    const along = [F_LOW, F_HIGH].map((f) => (both(f) - keeper.mean[f]) / error(f));
-    const at = [F_LOW, F_HIGH].map((f) => (group.mean[f] - keeper.mean[f]) / error(f));
-    const length = along[0] ** 2 + along[1] ** 2;
-    if (length > 0) share = Math.min(1, Math.max(0, (along[0] * at[0] + along[1] * at[1]) / length));
-  }
+  // Share of the message in which both drove, as far as the clock tells.
+  const along = [F_LOW, F_HIGH].map((f) => (both(f) - keeper.mean[f]) / error(f));
+  const at = [F_LOW, F_HIGH].map((f) => (group.mean[f] - keeper.mean[f]) / error(f));
+  const length = Math.hypot(along[0], along[1]);
+  const partly = group.members.length <= Math.max(FEW, SMALL * least);
+  const share = partly && length > 0 ? Math.min(1, Math.max(0, (along[0] * at[0] + along[1] * at[1]) / length ** 2)) : 1;
   const clocks = [F_LOW, F_HIGH].every((f) => Math.abs(z(f, keeper.mean[f] + share * (both(f) - keeper.mean[f]))) < 3.5);
+  if (!clocks) return false;
   // Who has yielded clocks on to the end of its byte at most. Where several bytes are clocked together nobody has, and both drive SDA.
-  const driven = share === 1 && group.length > ONE_BYTE;
-  return clocks && [F_FALL, F_RISE].every((f) => between(z(f, both(f)), z(f, driven ? both(f) : keeper.mean[f])));
+  const driven = share === 1 && length > 3.5 && group.length > ONE_BYTE;
+  // A handful may have been kept by the one here and by the other there.
+  const handful = group.members.length <= FEW;
+  const end = (f: number): number => (handful ? other.mean[f] : driven ? both(f) : keeper.mean[f]);
+  return [F_FALL, F_RISE].every((f) => between(z(f, handful ? keeper.mean[f] : both(f)), z(f, end(f))));
 }
 
 /** Lows inside bytes from which a message certainly has more than one byte. */

@@ -4,7 +4,7 @@
 import type { Contest } from "../diagnosis/report";
 import { type Capture, namingOf, placed } from "./capture";
 import type { Census } from "./census";
-import { evidenceOf, type Naming } from "./evidence";
+import { type Evidence, evidenceOf, type Naming } from "./evidence";
 import { FLOOR, gradeOf } from "./grade";
 import { type Alignment, align, NO_ALIGNMENT, withLog } from "./log-match";
 import { newSlots, readMessage } from "./message";
@@ -13,7 +13,8 @@ import { Habitual } from "./retry";
 import { learn } from "./signature";
 import { part } from "./stream";
 import type { TapFindings } from "./taps";
-import { lastTogether, Scales } from "./weigh";
+import { hiddenLoser } from "./untapped";
+import { type Known, lastTogether, Scales } from "./weigh";
 
 export interface ContestFindings {
   readonly contests: readonly Contest[];
@@ -110,7 +111,7 @@ function fromTaps(work: Work, tapped: TapFindings): void {
 
 /** Two pulses or more that somebody else began: one could be a spike. */
 function foreignIn(tapped: TapFindings | null, m: number): boolean {
-  return tapped !== null && tapped.foreign[m] >= 2;
+  return tapped !== null && (tapped.foreign[m] >= 2 || tapped.unseen[m] >= 2);
 }
 
 /** Both sides are tapped and no tap let go: nothing to infer. */
@@ -130,14 +131,16 @@ function infer(work: Work): Alignment {
   }
   const total = census.signatures.reduce((n, s) => n + s.messages + 1, 0);
   const share = census.signatures.map((s) => (s.messages + 1) / total);
-  const first = judge(work.scales, work.habitual, candidates, messages.count, share);
+  const known = (m: number): Known => ({ keeper: tapped?.owner[m] ?? -1, held: (tapped?.owner[m] ?? -1) >= 0 ? work.taps : 0 });
+  const first = judge(work.scales, work.habitual, candidates, messages.count, share, known);
   const again = withoutContests(work, first.judged);
   if (again !== null) work.scales = again;
-  const { judged, rates } = again === null ? first : judge(again, work.habitual, candidates, messages.count, share);
+  const { judged, rates } = again === null ? first : judge(again, work.habitual, candidates, messages.count, share, known);
   const shown = judged.filter((j) => !allTapped(j, tapped, work.taps));
   const times = shown.map((j) => ({ time_s: timeOf(work, j), weight: j.probability }));
   const alignment = capture.log.length > 0 ? align(capture, [...certainTimes(work), ...times]) : NO_ALIGNMENT;
   for (const j of shown) report(work, j, rates, alignment);
+  if (tapped !== null) besideTaps(work, tapped, rates);
   return alignment;
 }
 
@@ -165,6 +168,47 @@ function withoutContests(work: Work, judged: readonly Judged[]): Scales | null {
   );
   return new Scales(ledger, messages, signatures, sampling, capture.vdd);
 }
+
+/** Those without a tap that yielded in messages in which a tapped one did. */
+function besideTaps(work: Work, tapped: TapFindings, rates: Rates): void {
+  const { capture, census, scales, habitual, naming } = work;
+  const { messages } = capture;
+  const kinds = census.signatures.length;
+  for (const m of new Set(tapped.losses.map((l) => l.message))) {
+    const losers = tapped.losses.filter((l) => l.message === m);
+    const keeper = work.by[m];
+    const others = Array.from({ length: kinds }, (_, c) => c).filter((c) => c >= work.taps && c !== keeper);
+    if (keeper < 0 || others.length === 0) continue;
+    const hidden = hiddenLoser(scales, habitual, rates, { message: m, keeper, losers, others, until: tapped.unseenUntil[m] });
+    if (hidden === null) continue;
+    const proved = tapped.owner[m] >= 0 && tapped.unseen[m] >= 2;
+    const probability = proved ? Math.max(hidden.probability, 0.99) : hidden.probability;
+    if (probability < FLOOR) continue;
+    const slots = scales.read(m);
+    const option = { a: keeper, b: hidden.b, at: hidden.at, mode: hidden.mode, early: null, log: 0 };
+    const evidence = evidenceOf(scales, m, option, keeper, habitual, rates, naming);
+    if (proved) evidence.unshift(UNTAPPED);
+    const until = slots.entry[lastTogether(slots, hidden.at, hidden.mode)];
+    work.contestedUntil[m] = Math.max(work.contestedUntil[m], until);
+    const rival = habitual.rival(m, hidden.b, rates);
+    work.contests.push({
+      ...placed(capture, slots.transaction[hidden.at], slots.pulse[hidden.at]),
+      kept: naming.id(keeper),
+      yielded: naming.id(hidden.b),
+      retry: rival.retry >= 0 && rival.retrySlot === hidden.at ? messages.first[rival.retry] : null,
+      probability: Math.min(probability, 0.999),
+      grade: gradeOf(probability, proved),
+      evidence,
+      look_alikes: [],
+    });
+  }
+}
+
+const UNTAPPED: Evidence = {
+  kind: "drive-tap",
+  bits: 10,
+  detail: "SCL or SDA falls where no tap pulls it, more than once: a controller without a tap.",
+};
 
 /** When the contest would have been decided; the START where none is supposed. */
 function timeOf(work: Work, j: Judged): number {

@@ -99,7 +99,11 @@ export function featuresOf(ledger: Ledger, messages: Messages, list: readonly nu
     spread[f] = Math.max(Math.sqrt(sorted.length > 0 ? quantile(sorted, 0.5) : 0), floor);
   }
   spread[F_HOLD] = Math.max(spread[F_LOW], 0.41 * step) * 1.5;
-  for (let i = 0; i < n; i++) even[i] = agrees(halves[2 * i], spread[F_LOW]) && agrees(halves[2 * i + 1], spread[F_HIGH]) ? 1 : 0;
+  for (let i = 0; i < n; i++) {
+    // Lows that become longer are a target's doing, which leaves the address byte to its controller; a contest makes them shorter.
+    const [grown] = halves[2 * i];
+    even[i] = (grown < 0 || agrees(halves[2 * i], spread[F_LOW])) && agrees(halves[2 * i + 1], spread[F_HIGH]) ? 1 : 0;
+  }
   // Rather too steady a clock than one that is thought to average its rounding away.
   const jitter = Math.sqrt(differing.least() || 0);
   spread[F_PERIOD] = Math.sqrt(jitter ** 2 + (step * step) / (6 * PERIODS));

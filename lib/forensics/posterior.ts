@@ -3,7 +3,7 @@
 
 import { logAdd } from "./normal";
 import type { Habitual, RetryRates } from "./retry";
-import type { Option, Scales, Weighed } from "./weigh";
+import type { Known, Option, Scales, Weighed } from "./weigh";
 
 /** Before the capture has spoken: one message in a hundred, worth 20 messages of evidence. */
 const PRIOR_CONTEST = 0.01;
@@ -53,6 +53,7 @@ export function judge(
   odd: readonly number[],
   total: number,
   share: readonly number[],
+  known?: (message: number) => Known,
 ): { judged: Judged[]; rates: Rates } {
   const kinds = scales.signatures.length;
   const rates: Rates = {
@@ -64,7 +65,7 @@ export function judge(
     share: [...share],
   };
   let judged: Judged[] = [];
-  const weighed = odd.map((m) => scales.weigh(m, habitual, rates));
+  const weighed = odd.map((m) => scales.weigh(m, habitual, rates, known?.(m)));
   for (let round = 0; round < ROUNDS; round++) {
     judged = weighed.map((w) => conclude(w, rates, round === ROUNDS - 1));
     if (round < ROUNDS - 1) learnRates(weighed, judged, rates, total);

@@ -84,6 +84,10 @@ export interface TapFindings {
   readonly losses: readonly TapLoss[];
   /** Pulses of the message in which SCL fell before its owner pulled it: only another controller ends a HIGH. */
   readonly foreign: Uint16Array;
+  /** The same for all taps together: marks of a controller that has none. A START that no tap began counts two. */
+  readonly unseen: Uint16Array;
+  /** Last slot whose low no tap began; 0 where there is none. */
+  readonly unseenUntil: Uint16Array;
 }
 
 /** `slack`: how much later than the line itself a tap may show the same edge (sampling; interpolated crossings of a line in volts). */
@@ -98,6 +102,8 @@ export function readTaps(
   const joined = new Uint8Array(messages.count);
   const losses: TapLoss[] = [];
   const foreign = new Uint16Array(messages.count);
+  const unseen = new Uint16Array(messages.count);
+  const unseenUntil = new Uint16Array(messages.count);
   const lags: Lag[][] = taps.map(() => []);
   const slots = newSlots();
   for (let m = 0; m < messages.count; m++) {
@@ -127,13 +133,39 @@ export function readTaps(
         if (taps[i].hasSda && !taps[i].pulls(SDA, start + slack)) foreign[m] += 2;
       } else losses.push({ message: m, tap: i, slot });
     }
+    if (owner[m] < 0) continue;
+    const marks = untapped(ledger, slots, taps, slack);
+    unseen[m] = marks.count;
+    unseenUntil[m] = marks.until;
   }
   for (const list of lags) {
     const usual = list.map((l) => l.lag).sort((a, b) => a - b)[list.length >> 1];
     // In the address byte nobody but a controller holds SCL after the owner let go.
     for (const l of list) if (l.lag - usual > Math.max(2.5 * step, 0.03 * l.low)) foreign[l.message]++;
   }
-  return { owner, joined, losses, foreign };
+  return { owner, joined, losses, foreign, unseen, unseenUntil };
+}
+
+/** Edges of the bus that only a controller makes, and that no tap made. */
+function untapped(ledger: Ledger, slots: Slots, taps: readonly TapTrace[], slack: number): { count: number; until: number } {
+  const scl = taps.filter((tap) => tap.used && tap.hasScl);
+  const sda = taps.filter((tap) => tap.used && tap.hasSda);
+  // A tap without one of its lines cannot show who moved that line.
+  const whole = (list: readonly TapTrace[]): boolean => list.length > 0 && list.length === taps.length;
+  const start = ledger.openTick[slots.transaction[0]];
+  let count = whole(sda) && !sda.some((tap) => tap.pulls(SDA, start + slack)) ? 2 : 0;
+  let until = 0;
+  if (!whole(scl)) return { count, until };
+  let at = start + (ledger.hold[slots.transaction[0]] || 0);
+  // Later STARTs of the message follow a set-up time that only their own controller counts.
+  for (let s = 0; s < slots.length && slots.transaction[s] === slots.transaction[0]; s++) {
+    if (!scl.some((tap) => tap.pulls(SCL, at + slack))) {
+      count++;
+      until = s;
+    }
+    at += ledger.low[slots.entry[s]] + (ledger.high[slots.entry[s]] || 0);
+  }
+  return { count, until };
 }
 
 interface Lag {

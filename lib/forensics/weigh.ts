@@ -30,6 +30,16 @@ export interface Leaver {
   readonly mode: number;
 }
 
+/** What taps tell of a message beforehand. */
+export interface Known {
+  /** The tapped controller that made it, or -1. */
+  readonly keeper: number;
+  /** Controllers below this number are tapped and did not yield. */
+  readonly held: number;
+}
+
+const NOTHING_KNOWN: Known = { keeper: -1, held: 0 };
+
 export interface Weighed {
   readonly message: number;
   /** Per controller alone, natural log. */
@@ -85,7 +95,7 @@ export class Scales {
     };
   }
 
-  weigh(m: number, habitual: Habitual, rates: RetryRates): Weighed {
+  weigh(m: number, habitual: Habitual, rates: RetryRates, known: Known = NOTHING_KNOWN): Weighed {
     const slots = this.read(m);
     const { ledger, signatures, sampling } = this;
     const kinds = signatures.length;
@@ -96,7 +106,7 @@ export class Scales {
     const shown = signatures.map((s) => s.habits[LOW_IN] !== null && s.habits[HIGH_IN] !== null);
     for (let c = 0; c < kinds; c++) {
       // A tapped controller that never spoke in this capture has no habits to compare.
-      if (!shown[c]) {
+      if (!shown[c] || (known.keeper >= 0 && c !== known.keeper)) {
         alone[c] = Number.NEGATIVE_INFINITY;
         continue;
       }
@@ -107,10 +117,10 @@ export class Scales {
     const rivals = signatures.map((_, c) => habitual.rival(m, c, rates));
     const options: Option[] = [];
     for (let a = 0; a < kinds; a++) {
-      if (!shown[a]) continue;
+      if (!shown[a] || (known.keeper >= 0 && a !== known.keeper)) continue;
       const fresh = this.freshGains(slots, 1 << a, traces(1 << a));
       for (let b = 0; b < kinds; b++) {
-        if (a === b || !shown[b]) continue;
+        if (a === b || !shown[b] || b < known.held) continue;
         const start = holdTogether(hold, signatures[a], signatures[b], sampling);
         pairOptions(options, slots, a, b, traces(1 << a), traces((1 << a) | (1 << b)), fresh, start, rivals[b]);
       }
@@ -119,7 +129,7 @@ export class Scales {
     if (options.length === 0) return { message: m, alone, slowed, options };
     const best = topOf(options);
     if (kinds > 2 && shown.every(Boolean) && best.log > single + WORTH_A_THIRD)
-      this.tripleOptions(options, slots, best, traces, hold, rivals);
+      this.tripleOptions(options, slots, best, traces, hold, rivals, known);
     const most = topOf(options).log;
     return { message: m, alone, slowed, options: options.filter((o) => o.log > most - 25) };
   }
@@ -142,6 +152,7 @@ export class Scales {
     traces: (mask: number) => Trace,
     hold: number,
     rivals: readonly Rival[],
+    known: Known,
   ): void {
     const kinds = this.signatures.length;
     // Who kept the bus shows in the long tail, so only the two most probable are tried.
@@ -151,12 +162,12 @@ export class Scales {
       const one = traces(1 << a);
       const freshOne = this.freshGains(slots, 1 << a, one);
       for (let y = 0; y < kinds; y++) {
-        if (y === a) continue;
+        if (y === a || y < known.held) continue;
         const two = traces((1 << a) | (1 << y));
         const freshTwo = this.freshGains(slots, (1 << a) | (1 << y), two);
         const last = leavings(slots, rivals[y], two, one, freshOne);
         for (let x = 0; x < kinds; x++) {
-          if (x === a || x === y) continue;
+          if (x === a || x === y || x < known.held) continue;
           const three = traces((1 << a) | (1 << y) | (1 << x));
           const start = Math.max(
             holdTogether(hold, this.signatures[a], this.signatures[y], this.sampling),

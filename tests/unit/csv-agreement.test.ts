@@ -137,6 +137,7 @@ describe("three ways of reading agree", () => {
     ["levels at times of few digits", null, (s) => `${Number((s.at * 1e-9).toFixed(9))},${s.scl},${s.sda}`],
     ["changes at times with exponents", null, (s) => `${(s.at * 1e-9).toExponential()},${s.scl},${s.sda}`],
     ["levels after blanks", 1000, (s) => `${(s.at * 1e-9).toFixed(6)}, ${s.scl}, ${s.sda}`],
+    ["levels as letters", 1000, (s) => `${(s.at * 1e-9).toFixed(6)},${"LH"[s.scl]},${"lh"[s.sda]}`],
     ["levels before an empty column", 1000, (s) => `${(s.at * 1e-9).toFixed(6)},${s.scl},${s.sda},`],
   ];
   test.each(shapes)("%s", async (_name, interval, row) => {

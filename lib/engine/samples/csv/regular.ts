@@ -3,7 +3,7 @@
 // a time: a call on a rare path costs every row here more than its digits do.
 
 import type { RowBlock } from "./block";
-import { POWERS, scaled } from "./cell";
+import { Cell, POWERS, scaled } from "./cell";
 import { INSTANT, LEVEL, type ScanPlan, SKIP } from "./plan";
 
 const CR = 13;
@@ -11,6 +11,14 @@ const LF = 10;
 /** Digits on one side of the mark that are exact in 32 bits, and on both sides in a double. */
 const FEW_DIGITS = 9;
 const MOST_DIGITS = 15;
+
+const BLANKS = [9, 32, 0xa0];
+const cell = new Cell();
+/** What a cell of a single byte says as a level, by the full grammar; -1 where it says none, or where the cell is empty. */
+const LEVELS = Int8Array.from({ length: 256 }, (_, byte) => {
+  cell.read(Uint8Array.of(byte), 0, 1, 0);
+  return BLANKS.includes(byte) ? -1 : cell.level();
+});
 
 /** Appends rows to the block until it has `most`; returns the position after the last one, where one begins that is left. */
 export function readRows(bytes: Uint8Array, from: number, to: number, plan: ScanPlan, block: RowBlock, most: number): number {
@@ -29,8 +37,8 @@ export function readRows(bytes: Uint8Array, from: number, to: number, plan: Scan
       let b = bytes[p];
       while (b === 32) b = bytes[++p];
       if (mode === LEVEL) {
-        if ((b & 0xfe) !== 48) break rows;
-        readings[base + slots[column]] = b - 48;
+        if (LEVELS[b] < 0) break rows;
+        readings[base + slots[column]] = LEVELS[b];
         b = bytes[++p];
       } else if (mode === SKIP) {
         // A blank at the end of a row parted by blanks is no cell.

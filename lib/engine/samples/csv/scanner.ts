@@ -21,6 +21,8 @@ export interface FastPath {
 /** Rows that the scanner reads before it asks the fast path again: more each time that it was asked in vain. */
 const LEAST_ASIDE = 16;
 const MOST_ASIDE = 4096;
+/** Bytes that a fast path must take for having been worth asking. */
+const WORTH_BYTES = 1024;
 
 export class Scanner {
   /** Line of the row at hand, from 1. */
@@ -67,7 +69,7 @@ export class Scanner {
     while (p < to) {
       const asked = p;
       if (this.fast !== null) p = this.fast.scan(bytes, p, to, this);
-      this.aside = p > asked ? LEAST_ASIDE : Math.min(MOST_ASIDE, 2 * this.aside);
+      this.aside = p - asked > WORTH_BYTES ? LEAST_ASIDE : Math.min(MOST_ASIDE, 2 * this.aside);
       if (p < to) p = this.scan(bytes, p, to, this.fast === null ? Number.POSITIVE_INFINITY : this.aside);
     }
     this.lastByte = bytes[to - 1];

@@ -3,7 +3,7 @@
 
 import { Chain, single } from "./chain";
 import type { Ledger } from "./ledger";
-import { DATA_FALL, DATA_RISE, HOLD_START, type Slots } from "./message";
+import { DATA_FALL, DATA_RISE, HOLD_START, LOW_NEXT, LOW_NINTH, LOW_SR, LOW_STOP, type Slots } from "./message";
 import { logAdd, logNormal } from "./normal";
 import type { HabitFigure, LevelFigure, Sampling, Signature } from "./signature";
 
@@ -29,7 +29,7 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
   for (let s = 0; s < n; s++) {
     const e = slots.entry[s];
     if (slots.pulse[s] === 0) chain.restart();
-    out.low[s] = sampling.trust * interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]);
+    out.low[s] = sampling.trust * lowDensity(chain, ledger.low[e], slots.lowHabit[s], signature, sampling);
     out.high[s] = sampling.trust * interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]);
     const habit = slots.dataHabit[s];
     if (habit === DATA_FALL || habit === DATA_RISE) {
@@ -47,6 +47,14 @@ export function trace(ledger: Ledger, slots: Slots, signature: Signature, sampli
 /** Log density where nothing is known of a habit: anywhere up to twice the interval it stands in. */
 function anything(x: number): number {
   return -Math.log(2 * Math.max(x, 1));
+}
+
+/** Between bytes a target may hold SCL as long as it likes, so that a long low there is as likely whoever drives. */
+function lowDensity(chain: Chain, x: number, habit: number, signature: Signature, sampling: Sampling): number {
+  const between = habit === LOW_NINTH || habit === LOW_NEXT || habit === LOW_SR || habit === LOW_STOP;
+  if (!between || !(x > sampling.long)) return interval(chain, x, signature.habits[habit]);
+  chain.restart();
+  return -Math.log(x);
 }
 
 function interval(chain: Chain, x: number, habit: HabitFigure | null): number {
@@ -84,7 +92,7 @@ export function freshGain(
   for (let s = from; s < end; s++) {
     const e = slots.entry[s];
     if (slots.pulse[s] === 0) chain.restart();
-    gain += sampling.trust * interval(chain, ledger.low[e], signature.habits[slots.lowHabit[s]]) - running.low[s];
+    gain += sampling.trust * lowDensity(chain, ledger.low[e], slots.lowHabit[s], signature, sampling) - running.low[s];
     gain += sampling.trust * interval(chain, ledger.high[e], signature.habits[slots.highHabit[s]]) - running.high[s];
   }
   return gain;

@@ -153,13 +153,14 @@ const FINE = 10;
 
 function samplingOf(ledger: Ledger, step: number, volts: boolean): Sampling {
   // Crossings of a line in volts are interpolated between samples.
-  if (volts) return { step, variance: (0.03 * step) ** 2, trust: 1 };
+  if (volts) return { step, variance: (0.03 * step) ** 2, trust: 1, long: Number.POSITIVE_INFINITY };
   const lows = ledger.low
     .slice(0, Math.min(ledger.count, 2000))
     .filter((low) => low > 0)
     .sort();
   const typical = lows.length > 0 ? lows[lows.length >> 1] : 0;
-  return { step, variance: (step * step) / 12, trust: Math.min(1, Math.max(0.3, typical / step / FINE)) };
+  const trust = Math.min(1, Math.max(0.3, typical / step / FINE));
+  return { step, variance: (step * step) / 12, trust, long: Number.POSITIVE_INFINITY };
 }
 
 /** Step of the time grid that the events stand on: the greatest common divisor of many intervals. */

@@ -57,6 +57,8 @@ export interface Sampling {
    * together, which the filter does not know.
    */
   readonly trust: number;
+  /** Lows between bytes from this on, ticks, may be a target's and tell nobody's habit. */
+  readonly long: number;
 }
 
 const ENOUGH = 400;

@@ -50,20 +50,26 @@ export interface Weighed {
 }
 
 const LOOK = 180;
+/** Lows between bytes this many times as long as any controller's inside bytes may be a target's stretching. */
+const TARGETS_OWN = 1.5;
 /** A third contender is looked for when two explain this much better than one, natural log. */
 const WORTH_A_THIRD = 4;
 
 export class Scales {
   private readonly mixed = new Map<number, Signature>();
   private readonly slots = newSlots();
+  readonly sampling: Sampling;
 
   constructor(
     readonly ledger: Ledger,
     readonly messages: Messages,
     readonly signatures: readonly Signature[],
-    readonly sampling: Sampling,
+    sampling: Sampling,
     private readonly vdd: number | null,
-  ) {}
+  ) {
+    const longest = signatures.reduce((most, s) => Math.max(most, s.habits[LOW_IN]?.mean ?? 0), 0);
+    this.sampling = { ...sampling, long: TARGETS_OWN * longest };
+  }
 
   read(m: number): Slots {
     readMessage(this.ledger, this.messages, m, this.slots, LOOK);

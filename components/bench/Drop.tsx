@@ -1,8 +1,8 @@
 "use client";
 
-import { type DragEvent, useEffect, useId, useState } from "react";
+import { type DragEvent, useId, useState } from "react";
 import { Button, buttonClass } from "@/components/ui/Button";
-import { makeReady } from "./client";
+import { useReadyDecoder } from "./ready";
 
 export interface DropProps {
   onFiles: (files: readonly File[]) => void;
@@ -12,19 +12,12 @@ export interface DropProps {
   busy?: boolean;
 }
 
-/** A decoder is started for the file that will come once the page has stood so long. */
-const READY_MS = 200;
-
 /** Where a capture is laid down. The whole sheet takes a dropped file, the button opens the picker. */
 export function Drop({ onFiles, multiple = false, onSample, busy = false }: DropProps) {
   const [over, setOver] = useState(false);
   const id = useId();
 
-  useEffect(() => {
-    // The page itself comes first.
-    const timer = setTimeout(makeReady, READY_MS);
-    return () => clearTimeout(timer);
-  }, []);
+  useReadyDecoder();
 
   function drop(event: DragEvent) {
     event.preventDefault();

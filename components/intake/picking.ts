@@ -2,7 +2,8 @@
 
 import { useEffect, useRef, useState } from "react";
 import useSWR from "swr";
-import { DecodeClient } from "@/components/bench/client";
+import { DecodeClient, makeReady } from "@/components/bench/client";
+import { useReadyDecoder } from "@/components/bench/ready";
 import { ask, wordsOf } from "@/components/casework/api";
 import { type Upload, UploadListSchema } from "@/lib/case/upload";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
@@ -37,6 +38,7 @@ export interface Picking {
 export function usePicking(): Picking {
   const [files, setFiles] = useState<readonly Picked[]>([]);
   const client = useRef<DecodeClient | null>(null);
+  useReadyDecoder();
   useEffect(
     () => () => {
       client.current?.stop();
@@ -84,6 +86,8 @@ export function send(files: readonly Picked[], caseNumber: number): void {
     return transfer;
   });
   startNext(queue);
+  // For the page of the case, which reads the file as it travels.
+  makeReady();
 }
 
 const UNDER_WAY: readonly TransferState[] = ["waiting", "sending", "checking"];

@@ -53,7 +53,7 @@ export async function analyze(
   const grained = grainOf(head);
   listener.head(head);
   const read = await opened.read({
-    // The lines' watch looks back at the block before, as a passing sink may.
+    // The rules look at the newest block only; of earlier ones they keep what they need.
     passing: listener.passing,
     edges(block) {
       book.edges(block);

@@ -92,18 +92,34 @@ export class TransactionPlaces {
   }
 }
 
-/** Keeps the last two edge blocks and since when each line has had its level. */
+/** Entries at the end of a block that are kept when the block itself has been handed over to somebody else. */
+const TAIL = 128;
+
+interface Stretch {
+  readonly length: number;
+  readonly ticks: Float64Array;
+  readonly lines: Uint8Array;
+}
+
+/**
+ * Looks back at the last two edge blocks, and knows since when each line has had its level. A listener may take a block's memory
+ * away once it was pushed (the browser's worker transfers it), so the end of each is kept as well.
+ */
 export class LineWatch {
-  private last: EdgeBlock | null = null;
-  private before: EdgeBlock | null = null;
+  private last: Stretch | null = null;
+  private tail: Stretch | null = null;
+  private tailBefore: Stretch | null = null;
   private sclSince = 0;
   private sdaSince = 0;
   private levels = SCL_UNKNOWN | SDA_UNKNOWN;
 
   push(block: EdgeBlock): void {
     if (block.length === 0) return;
-    this.before = this.last;
     this.last = block;
+    this.tailBefore = this.tail;
+    const from = Math.max(0, block.length - TAIL);
+    const { length } = block;
+    this.tail = { length: length - from, ticks: block.ticks.slice(from, length), lines: block.lines.slice(from, length) };
     const scl = lastChange(block, SCL | SCL_UNKNOWN, this.levels);
     const sda = lastChange(block, SDA | SDA_UNKNOWN, this.levels);
     if (scl >= 0) this.sclSince = block.ticks[scl];
@@ -111,18 +127,19 @@ export class LineWatch {
     this.levels = block.lines[block.length - 1] & ~CUT;
   }
 
-  /** Whether SCL was high at a tick of the last two blocks; null where that is not known. */
+  /** Whether SCL was high at a tick of the newest block or of the end of the one before; null where that is not known. */
   sclHighAt(tick: number): boolean | null {
-    for (const block of [this.last, this.before]) {
-      if (block === null || block.ticks[0] > tick) continue;
+    const taken = this.last?.ticks.length === 0;
+    for (const stretch of [taken ? null : this.last, this.tail, this.tailBefore]) {
+      if (stretch === null || stretch.ticks[0] > tick) continue;
       let low = 0;
-      let high = block.length;
+      let high = stretch.length;
       while (low < high) {
         const middle = (low + high) >> 1;
-        if (block.ticks[middle] <= tick) low = middle + 1;
+        if (stretch.ticks[middle] <= tick) low = middle + 1;
         else high = middle;
       }
-      const lines = block.lines[low - 1];
+      const lines = stretch.lines[low - 1];
       return (lines & SCL_UNKNOWN) !== 0 ? null : (lines & SCL) !== 0;
     }
     return null;

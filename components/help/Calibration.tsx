@@ -21,7 +21,7 @@ const thresholds = [
 
 /** How sure is sure: what was claimed against what was so, on simulated buses whose truth is known. */
 export function Calibration({ figures }: { figures: CalibrationFigures }) {
-  const { corpus, reliability, roc, visible, tapped, attribution } = figures;
+  const { corpus, reliability, roc, visible, tapped, untapped, attribution } = figures;
   return (
     <>
       <p className="mt-2 max-w-[68ch] font-serif text-body">
@@ -29,9 +29,8 @@ export function Calibration({ figures }: { figures: CalibrationFigures }) {
         {count(figures.captures)} simulated buses with {count(figures.transactions)} transactions and {count(figures.contests)}{" "}
         contests, of which everything is known (seeds {corpus.first} to {corpus.first + corpus.count - 1}; clocks, sampling,
         noise, stretching and retries vary). Expected calibration error:{" "}
-        <span className="tabular text-hex">{figures.ece.toFixed(3)}</span>. Causes of wrong answers were looked for on these same
-        buses, so others may do worse: sixty that nobody had looked at gave 2.9 false contests in 2,000 from a probability of 0.5
-        on, and 1.6 from 0.9 on.
+        <span className="tabular text-hex">{figures.ece.toFixed(3)}</span>. Causes of wrong answers were looked for on other buses
+        of the same kind, never on these. A real bus may do what no simulated one does.
       </p>
       <div className="mt-5 grid gap-x-12 gap-y-8 lg:grid-cols-[1fr_1fr]">
         <div>
@@ -70,8 +69,9 @@ export function Calibration({ figures }: { figures: CalibrationFigures }) {
               right: {percent(visible.bothParties)}.
             </li>
             <li>
-              With drive taps, {count(tapped.contests)} contests: found {percent(tapped.found)}, deciding bit exact{" "}
-              {percent(tapped.exactBit)}, false {count(tapped.false)}.
+              Where the one that yielded has a drive tap, {count(tapped.contests)} contests: found {percent(tapped.found)},
+              deciding bit exact {percent(tapped.exactBit)}, false {count(tapped.false)}. Where only others have one,{" "}
+              {count(untapped.contests)}: found {percent(untapped.found)}, exact {percent(untapped.exactBit)}.
             </li>
             <li>
               Who sent an uncontested transaction: told for {percent(attribution.given)}, right in {percent(attribution.right)} of

@@ -21,7 +21,10 @@ export interface CalibrationFigures {
   readonly visible: Visible;
   /** Those of them with two contenders. */
   readonly visiblePairs: Visible;
+  /** In captures with drive taps, contests whose loser has one. */
   readonly tapped: { readonly contests: number; readonly found: number; readonly exactBit: number; readonly false: number };
+  /** In the same captures, contests whose loser has none. */
+  readonly untapped: { readonly contests: number; readonly found: number; readonly exactBit: number };
   readonly attribution: { readonly given: number; readonly right: number };
   /** Share of the captures in which the number of controllers was found right. */
   readonly controllersRight: number;

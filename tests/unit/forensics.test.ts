@@ -90,6 +90,36 @@ describe("forensics on simulated buses", () => {
     }
   });
 
+  test("one steady clock whose bit is a whole number of samples is one controller, however its messages are rounded", () => {
+    // 5.0 and 4.7 us, and 0.14 us for filter and edges: 9.84 us, 12 samples. A message reads 6 and 6 throughout, or 7 and 5.
+    const steady = trial({ contests: 0, rate_hz: 12 / 9.84e-6 });
+    const [pump] = steady.scenario.controllers;
+    const controllers = [{ ...pump, habit: { ...pump.habit, jitter_s: 0.2e-9 } }];
+    const { outcome } = concludeTrial({ ...steady, scenario: { ...steady.scenario, controllers } });
+    expect(outcome.controllers).toHaveLength(1);
+    expect(outcome.contests).toEqual([]);
+  });
+
+  test("beside a loser with a tap one without is found too", () => {
+    const two = trial({ contests: 8, taps: [0, 1] });
+    const third = controller(
+      "display",
+      { ...PUMP, tlow_s: 6.3e-6, thigh_s: 3.9e-6, hdsta_s: 3.6e-6 },
+      {
+        jobs: Array.from({ length: 30 }, (_, i): Job => {
+          const contested = i % 2 === 1 && i < 16;
+          return job(1e-3 + i * 2e-3 + (contested ? 0.3e-6 : 1e-3), [write(0x20, [0x02, 0x1c])]);
+        }),
+      },
+    );
+    const scene = { ...two.scenario, controllers: [...two.scenario.controllers, third] };
+    const { outcome, recording } = concludeTrial({ ...two, scenario: scene });
+    const losses = recording.truth.yields.filter((y) => !y.alone);
+    expect(losses.filter((y) => y.controller === 2).length).toBeGreaterThan(5);
+    const told = outcome.contests.filter((c) => c.probability >= 0.5).map((c) => [c.transaction, c.bit_index]);
+    expect(told.sort()).toEqual(losses.map((y) => [y.transaction, y.bit_index]).sort());
+  });
+
   test("contests in the R/W bit and in the acknowledge of a read", () => {
     const rw = concludeTrial(trial({ contests: 4, clash: [[write(0x48, [7])], [read(0x48, 2)]] }));
     expect(rw.outcome.contests.map((c) => c.bit_index)).toEqual([7, 7, 7, 7]);

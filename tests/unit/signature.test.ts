@@ -1,8 +1,9 @@
 import { describe, expect, test } from "vitest";
 import { brokenDensity, Chain } from "@/lib/forensics/chain";
 import { larger, phi, smaller } from "@/lib/forensics/normal";
-import { beat } from "@/lib/forensics/period";
+import { beat, runSpread } from "@/lib/forensics/period";
 import { parallel } from "@/lib/forensics/together";
+import { createRandom } from "@/lib/simulation/random";
 
 describe("signature arithmetic", () => {
   test("normal distribution function against its tabulated values (Abramowitz and Stegun, table 26.1; from memory)", () => {
@@ -55,5 +56,28 @@ describe("signature arithmetic", () => {
     expect(beat(100, 20, 0)).toBeGreaterThan(0.08);
     expect(beat(100.37, 20, 0)).toBeLessThan(0.01);
     expect(beat(100, 20, 0.5)).toBeLessThan(0.01);
+  });
+
+  test("a clock's jitter is found under coarse rounding, and none is found where there is none", () => {
+    const step = 100;
+    const found = (jitter: number, period: number): number => {
+      const random = createRandom(3);
+      const spread = runSpread({ step, variance: step ** 2 / 12 });
+      for (let m = 0; m < 400; m++) {
+        const run = (): number => {
+          const from = random.range(0, step);
+          const to = from + 7 * period + Math.sqrt(7) * jitter * random.gauss();
+          return (Math.ceil(to / step) - Math.ceil(from / step)) * step;
+        };
+        spread.add([run(), run()]);
+      }
+      return Math.sqrt(spread.variance(period));
+    };
+    // Seven periods of 1007 end on half a step, where rounding is at its worst. The estimate has its own standard error on top.
+    for (const period of [1000, 1003, 1007]) {
+      expect(found(0, period)).toBeLessThan(0.12 * step);
+      expect(found(30, period)).toBeGreaterThan(26);
+      expect(found(30, period)).toBeLessThan(36);
+    }
   });
 });

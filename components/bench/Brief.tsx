@@ -1,6 +1,6 @@
 "use client";
 
-import { memo, startTransition, useEffect, useState } from "react";
+import { memo, useEffect, useState } from "react";
 import { Faults } from "@/components/ledger/Faults";
 import { Limits } from "@/components/ledger/Limits";
 import { Evidence } from "@/components/margin/Evidence";
@@ -13,6 +13,7 @@ import { rowScene } from "@/lib/view/row";
 import { verdicts } from "@/lib/view/words";
 import type { BenchCase } from "./annotations";
 import { Cautions } from "./Cautions";
+import { unhurried } from "./unhurried";
 
 /** Drawn rows of a printed brief, and their width on A4. */
 const DRAWN = 16;
@@ -79,7 +80,7 @@ export interface BriefProps {
 /** What is printed after lede and facts: the brief of this capture. Drawn once everything on the screen is. */
 export function Brief({ capture, of, names }: BriefProps) {
   const [summary, setSummary] = useState<Summary | null>(null);
-  useEffect(() => startTransition(() => setSummary(capture.summary)), [capture.summary]);
+  useEffect(() => unhurried(() => setSummary(capture.summary)), [capture.summary]);
   // While the capture is read anew there is none of it.
   if (summary === null || summary !== capture.summary) return null;
   return <Printed capture={capture} summary={summary} of={of} names={names} />;

@@ -1,15 +1,19 @@
 /** The page is told of growth at once the first two times (the head, the first rows), then so long after it has shown the last. */
 const PACE_MS = 100;
 
+/** Has the page draw; may answer what is to be called once it has. */
+type Act = () => (() => void) | undefined;
+
 /** Runs one of many calls now and then, the last one never lost, none before the page has shown the one before, none once closed. */
 export class Growth {
   #timer: ReturnType<typeof setTimeout> | undefined;
   #drawing = false;
   #shown = 0;
-  #next: (() => void) | null = null;
+  #next: Act | null = null;
+  #drawn: (() => void) | null = null;
   #closed = false;
 
-  ask(act: () => void): void {
+  ask(act: Act): void {
     this.#next = act;
     if (!this.#drawing && this.#timer === undefined) this.#wait(0);
   }
@@ -18,6 +22,7 @@ export class Growth {
   shown(): void {
     if (!this.#drawing) return;
     this.#drawing = false;
+    this.#drawn?.();
     this.#shown += 1;
     this.#wait(this.#shown === 1 ? 0 : PACE_MS);
   }
@@ -25,6 +30,7 @@ export class Growth {
   close(): void {
     this.#closed = true;
     clearTimeout(this.#timer);
+    this.#drawn?.();
   }
 
   #wait(ms: number): void {
@@ -35,7 +41,7 @@ export class Growth {
       this.#next = null;
       if (act === null) return;
       this.#drawing = true;
-      act();
+      this.#drawn = act() ?? null;
     }, ms);
   }
 }

@@ -1,6 +1,6 @@
 "use client";
 
-import { startTransition, useCallback, useEffect, useRef, useState } from "react";
+import { useCallback, useEffect, useRef, useState } from "react";
 import type { Problem } from "@/lib/base/result";
 import type { AnalysisSettings } from "@/lib/diagnosis/analysis";
 import type { CapturePreview } from "@/lib/engine/samples/preview";
@@ -8,6 +8,7 @@ import { Capture } from "@/lib/view/capture";
 import type { Source } from "@/workers/protocol";
 import { DecodeClient } from "./client";
 import { Growth } from "./growth";
+import { unhurried } from "./unhurried";
 
 /** What became of the file. "refused" is about the file and says what to do; "crashed" is our fault. */
 export type Stage =
@@ -86,7 +87,11 @@ interface Told {
 async function run(worker: DecodeClient, source: Source, settings: AnalysisSettings, growth: Growth, told: Told): Promise<void> {
   const end = (stage: Stage) => {
     growth.close();
-    if (!worker.stopped) startTransition(() => told.setStage(stage));
+    if (!worker.stopped)
+      unhurried(
+        () => told.setStage(stage),
+        () => !worker.stopped,
+      );
   };
   try {
     let preview: Promise<void> | null = source.kind === "file" ? null : Promise.resolve();
@@ -108,7 +113,11 @@ async function run(worker: DecodeClient, source: Source, settings: AnalysisSetti
 async function previewed(source: Source, settings: AnalysisSettings, worker: DecodeClient, told: Told): Promise<void> {
   try {
     const preview = await worker.preview(source, settings.read);
-    if (!worker.stopped) startTransition(() => told.setPreview(preview));
+    if (!worker.stopped)
+      unhurried(
+        () => told.setPreview(preview),
+        () => !worker.stopped,
+      );
   } catch {
     // It reads what the reading itself reads; what made it crash makes that crash, and is told there.
   }
@@ -126,27 +135,31 @@ async function read(
   const held: { capture: Capture | null } = { capture: null };
   let bytes = 0;
   let shown: "nothing" | "head" | "rows" = "nothing";
+  let over = false;
   const tell = () => {
     const { capture } = held;
-    if (worker.stopped || capture === null) return;
+    if (worker.stopped || capture === null) return undefined;
+    const wanted = () => !worker.stopped && !over;
     const grown = () => {
       told.grown();
       told.setStage({ is: "reading", bytes });
     };
     if (shown === "nothing") {
       shown = "head";
-      startTransition(() => {
+      return unhurried(() => {
         told.setCapture(capture);
         grown();
-      });
-      return;
+      }, wanted);
     }
     if (shown === "head" && capture.ledger.length > 0) {
       // Few rows, and what is waited for: nothing else goes before them.
       shown = "rows";
       grown();
-    } else startTransition(grown);
+      look();
+      return undefined;
+    }
     look();
+    return unhurried(grown, wanted);
   };
   const changed = () => growth.ask(tell);
   const outcome = await worker.analyse(source, settings, {
@@ -168,13 +181,17 @@ async function read(
       changed();
     },
   });
+  over = true;
   const { capture } = held;
   if (outcome.ok) capture?.conclude(outcome);
   if (capture && !worker.stopped) {
-    startTransition(() => {
-      told.setCapture(capture);
-      told.grown();
-    });
+    unhurried(
+      () => {
+        told.setCapture(capture);
+        told.grown();
+      },
+      () => !worker.stopped,
+    );
   }
   return outcome.ok ? { is: "done" } : { is: "refused", problem: outcome.problem };
 }

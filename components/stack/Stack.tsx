@@ -1,7 +1,8 @@
 "use client";
 
-import { startTransition, useCallback, useEffect, useLayoutEffect, useMemo, useRef, useState } from "react";
+import { useCallback, useEffect, useLayoutEffect, useMemo, useRef, useState } from "react";
 import type { BenchNote, BenchTag, TagKind } from "@/components/bench/annotations";
+import { unhurried } from "@/components/bench/unhurried";
 import { TRACE_HEIGHT } from "@/components/score/RowTrace";
 import type { Capture } from "@/lib/view/capture";
 import { timeDigits } from "@/lib/view/format";
@@ -88,7 +89,7 @@ export function Stack(props: StackProps) {
       if (clientWidth > 0) onTraceWidth(layoutFor(clientWidth).traceWidth);
     };
     measure();
-    const observer = new ResizeObserver(() => startTransition(measure));
+    const observer = new ResizeObserver(measure);
     observer.observe(element);
     return () => observer.disconnect();
   }, [onTraceWidth]);
@@ -96,7 +97,7 @@ export function Stack(props: StackProps) {
   // The rows in the window at once; those below it and the spare ones once these stand.
   const begun = width > 0 && total > 0;
   useEffect(() => {
-    if (begun) startTransition(() => setComplete(true));
+    if (begun) return unhurried(() => setComplete(true));
   }, [begun]);
 
   useEffect(() => {

@@ -14,7 +14,10 @@ function asked(growth: Growth) {
   let number = 0;
   const ask = () => {
     const own = number++;
-    growth.ask(() => ran.push(own));
+    growth.ask(() => {
+      ran.push(own);
+      return undefined;
+    });
   };
   return { ran, ask };
 }
@@ -77,4 +80,16 @@ test("tells nothing once closed", () => {
   growth.shown();
   vi.advanceTimersByTime(1000);
   expect(ran).toEqual([]);
+});
+
+test("says once what it drew is shown, so that nothing is drawn a second time", () => {
+  const growth = new Growth();
+  let taken = 0;
+  growth.ask(() => () => {
+    taken++;
+  });
+  vi.runOnlyPendingTimers();
+  expect(taken).toBe(0);
+  growth.shown();
+  expect(taken).toBe(1);
 });

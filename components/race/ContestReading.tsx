@@ -8,7 +8,7 @@ import type { Contest, Summary } from "@/lib/diagnosis/report";
 import type { Capture } from "@/lib/view/capture";
 import { count, evidenceBits, probability } from "@/lib/view/format";
 import { byName, type Race, raceOf } from "@/lib/view/race";
-import { raceSentences, settlings } from "@/lib/view/race-words";
+import { blindSentences, raceSentences, settlings } from "@/lib/view/race-words";
 import { Ask, answerTo } from "./Ask";
 import { BitRace } from "./BitRace";
 import { ContestList } from "./ContestList";
@@ -46,7 +46,24 @@ export function ContestReading({ capture, names, onGo, selected }: ContestReadin
         </p>
       )}
       <ContestList capture={capture} summary={summary} chosen={shown} onChoose={setChosen} onGo={onGo} />
+      <Blind summary={summary} />
     </div>
+  );
+}
+
+/** What was looked for in vain and could not have been found: silence about it is no proof. */
+function Blind({ summary }: { summary: Summary }) {
+  const sentences = blindSentences(summary);
+  if (sentences.length === 0) return null;
+  return (
+    <section aria-label="What these lines cannot show" className="screen-only mt-6 max-w-[60rem]">
+      <h3 className="border-b border-ink font-serif text-[1.0625rem] italic">What these lines cannot show</h3>
+      {sentences.map((sentence) => (
+        <p key={sentence} className="mt-1 font-serif text-body">
+          {sentence}
+        </p>
+      ))}
+    </section>
   );
 }
 

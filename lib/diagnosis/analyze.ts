@@ -130,6 +130,7 @@ function summaryOf({ head, tail, outcome, rows, chosen, book, asked, measured, r
     fault_totals: Object.fromEntries(totals()),
     log: outcome.log,
     target_contests: [...outcome.targetContests],
+    blind_pairs: [...outcome.blindPairs],
   };
   const told = (transaction: number) => book.places.told(transaction);
   return { ...summary, lede: ledeOf(summary, { told, timebase: head.timebase, roster }) };

@@ -88,6 +88,9 @@ export const TargetContestSchema = ContestSchema.pick({
   grade: true,
 }).extend({ kept: z.int().nullable(), yielded: z.int().nullable(), detail: z.string() });
 
+/** A contest that these two would leave no trace of on these lines: together they look like the one that keeps the bus. */
+export const BlindPairSchema = z.object({ kept: z.string(), yielded: z.string() });
+
 export const FAULT_KINDS = [
   "address-nack",
   "data-nack",
@@ -240,12 +243,15 @@ export const ReportSchema = z.object({
   lede: z.array(z.string()).optional(),
   log: LogSchema.nullable().optional(),
   target_contests: z.array(TargetContestSchema).optional(),
+  /** Only a retry, a log or a tap could speak for these; none where no two controllers were found. */
+  blind_pairs: z.array(BlindPairSchema).optional(),
 });
 
 export type Report = z.infer<typeof ReportSchema>;
 /** The report without its transactions: small however long the capture, so it crosses threads and is stored as a summary. */
 export type Summary = Omit<Report, "transactions"> & { readonly transactionCount: number };
 export type TargetContest = z.infer<typeof TargetContestSchema>;
+export type BlindPair = z.infer<typeof BlindPairSchema>;
 export type PlacedLog = z.infer<typeof LogSchema>;
 export type Contest = z.infer<typeof ContestSchema>;
 export type Fault = z.infer<typeof FaultSchema>;

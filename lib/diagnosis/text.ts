@@ -30,6 +30,8 @@ export function* reportText(name: string, summary: Summary, transactions: Iterab
     const evidence = contest.evidence.map((one) => `${one.kind} ${one.bits.toFixed(1)}`).join(", ");
     return `  #${contest.transaction} decided at ${instant(contest.decided_s)}, byte ${contest.byte} bit ${contest.bit}${parties}; probability ${contest.probability.toFixed(2)} (${contest.grade}); ${evidence}`;
   });
+  for (const { kept, yielded } of summary.blind_pairs ?? [])
+    yield `  Had ${yielded} yielded to ${kept}, nothing on these lines could show it: together they look like ${kept} alone.\n`;
   if ((summary.target_contests ?? []).length > 0)
     yield* listed("Between targets", summary.target_contests ?? [], (contest) => {
       return `  #${contest.transaction} byte ${contest.byte} bit ${contest.bit}; probability ${contest.probability.toFixed(2)} (${contest.grade}); ${contest.detail}`;

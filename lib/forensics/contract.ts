@@ -1,7 +1,7 @@
 // In: transactions, bytes, per-transaction clock and data habits. Out: who drove what, and which transactions were contested.
 // This file holds the types both sides of the stair agree on; nothing here computes.
 
-import type { Contest, ControllerRow, Fault, PlacedLog, Stretch, TargetContest } from "../diagnosis/report";
+import type { BlindPair, Contest, ControllerRow, Fault, PlacedLog, Stretch, TargetContest } from "../diagnosis/report";
 import type { BitBlock } from "../engine/bits/bits";
 import type { ByteBlock, TransactionBlock } from "../engine/bus/transactions";
 import type { EdgeBlock } from "../engine/samples/edges";
@@ -40,6 +40,8 @@ export interface ForensicsOutcome {
   readonly stretches: readonly Stretch[];
   /** Faults of kind "look-alike". */
   readonly lookAlikes: readonly Fault[];
+  /** Pairs whose contests would leave no trace on these lines. */
+  readonly blindPairs: readonly BlindPair[];
   /** Contests between targets that answered one read. */
   readonly targetContests: readonly TargetContest[];
   /** The controller log on the capture's clock; null where none was given. */

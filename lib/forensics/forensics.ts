@@ -5,6 +5,7 @@ import type { ControllerRow } from "../diagnosis/report";
 import { type ByteBlock, NO_ADDRESS, type TransactionBlock } from "../engine/bus/transactions";
 import type { CaptureHead, TapChoice } from "../engine/samples/reader";
 import { Answers, betweenTargets } from "./answers";
+import { blindPairs } from "./blind";
 import { type Capture, ranks } from "./capture";
 import { type Census, takeCensus } from "./census";
 import { contestsOf } from "./contests";
@@ -88,6 +89,7 @@ function concludeCapture(
     attribution: perTransaction(messages, found.by, ordered.index),
     stretches: stretchesOf({ ...capture, census, by: found.by, contestedUntil: found.contestedUntil }),
     lookAlikes: lookAlikesOf(capture, found),
+    blindPairs: blindPairs(census.signatures, capture, tapped === null ? 0 : traces.length, (c) => `C${ordered.index[c] + 1}`),
     log: placed(capture.log, found.alignment, record[0] / perSecond, record[1] / perSecond),
   };
 }

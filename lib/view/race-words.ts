@@ -4,7 +4,7 @@
 import type { Contest, Summary } from "../diagnosis/report";
 import { type Meeting, type MessagePart, placeOf, type Slot, UNDEFINED_PAIRS } from "../forensics/intent";
 import { address, count, duration, hex } from "./format";
-import type { Leaver, Race } from "./race";
+import { byName, type Leaver, type Race } from "./race";
 
 const NUMBERS =
   "no one two three four five six seven eight nine ten eleven twelve thirteen fourteen fifteen sixteen seventeen eighteen nineteen twenty".split(
@@ -185,4 +185,13 @@ export function settlings(contest: Contest, summary: Summary): Settling[] {
 function controllerName(contest: Contest, summary: Summary): string {
   const row = summary.controllers.find((controller) => controller.id === contest.yielded);
   return row ? (row.name ?? `controller ${row.id}`) : "each controller";
+}
+
+/** Which contests these lines could not show, in sentences; none where every one would leave its mark. */
+export function blindSentences({ blind_pairs, controllers }: Pick<Summary, "blind_pairs" | "controllers">): string[] {
+  const name = (id: string) => byName({ controllers }, id);
+  return (blind_pairs ?? []).map(
+    ({ kept, yielded }) =>
+      `Had ${name(yielded)} yielded to ${name(kept)}, nothing on these lines could show it: the two together look like ${name(kept)} alone. Only a retry that fits, a log or a tap of ${name(yielded)} speaks for such a contest.`,
+  );
 }

@@ -175,6 +175,17 @@ describe("forensics on simulated buses", () => {
     expect(outcome.contests).toEqual([]);
   });
 
+  test("a pair that would leave no trace is named, from the one side only, and not where a tap would show it", () => {
+    // Longer low, shorter high and hold, data that falls sooner and rises later: with the pump beside it, the lines are the gateway's own.
+    const covers = { dataFall_s: 0.45e-6, dataRise_s: 1.0e-6 };
+    const { outcome } = concludeTrial(trial({ contests: 0, gateway: covers }));
+    const [slow, quick] = [...outcome.controllers].sort((a, b) => (b.tlow_s ?? 0) - (a.tlow_s ?? 0)).map(({ id }) => id);
+    expect(outcome.blindPairs).toEqual([{ kept: slow, yielded: quick }]);
+    // Here the pump's data falls first.
+    expect(concludeTrial(trial({ contests: 0 })).outcome.blindPairs).toEqual([]);
+    expect(concludeTrial(trial({ contests: 0, gateway: covers, taps: [0, 1] })).outcome.blindPairs).toEqual([]);
+  });
+
   test("a controller log finds its place by the losses it reports, whatever its clock, and a flag without a contest is named", () => {
     const setting = trial({ contests: 12 });
     const plain = concludeTrial(setting);

@@ -3,7 +3,16 @@ import type { Contest, Summary } from "@/lib/diagnosis/report";
 import { meet } from "@/lib/forensics/intent";
 import { readTyped } from "@/lib/forensics/typed-message";
 import { bracesOf, byName, drawnSlots, isNinth, laneLevels, lanePath, raceOf, slotText } from "@/lib/view/race";
-import { clockBits, numbered, prefixWords, raceSentences, releasedWords, settlings, whatIfWords } from "@/lib/view/race-words";
+import {
+  blindSentences,
+  clockBits,
+  numbered,
+  prefixWords,
+  raceSentences,
+  releasedWords,
+  settlings,
+  whatIfWords,
+} from "@/lib/view/race-words";
 import { edgesOf, message, readEdges } from "./view-support";
 
 /** The write to the feed log that kept the bus, and the retry of the one that yielded at bit 20. */
@@ -77,6 +86,13 @@ describe("a bit race from the ledger", () => {
       { id: "C12", name: null },
     ].map((row) => ({ ...row, tlow_s: null, thigh_s: null, vol_v: null, transactions: 1 }));
     expect(byName({ controllers: rows }, "C1 holds 4.6 us, C12 4.2 us, C2 none")).toBe("pump holds 4.6 us, C12 4.2 us, C2 none");
+  });
+
+  it("says what the lines could not show, by name", () => {
+    const summaryOf = summary([contest]);
+    expect(blindSentences({ ...summaryOf, blind_pairs: [] })).toEqual([]);
+    const [sentence] = blindSentences({ ...summaryOf, blind_pairs: [{ kept: "C1", yielded: "C2" }] });
+    expect(sentence).toMatch(/^Had gateway yielded to pump/);
   });
 
   it("says it in words", () => {

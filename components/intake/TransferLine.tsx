@@ -49,7 +49,7 @@ export function TransferLine({ transfer }: { transfer: Transfer }) {
       {view.message !== "" && <p className="mt-1 font-serif text-body">{view.message}</p>}
       {view.state !== "done" && (
         <progress
-          className="mt-1 block h-[3px] w-full appearance-none bg-hairline accent-accent"
+          className="mt-1 block h-[3px] w-full appearance-none border-0 bg-hairline [&::-moz-progress-bar]:bg-accent [&::-webkit-progress-bar]:bg-hairline [&::-webkit-progress-value]:bg-accent"
           value={view.sent}
           max={view.size}
         >

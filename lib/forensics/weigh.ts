@@ -140,14 +140,17 @@ export class Scales {
     return { message: m, alone, slowed, options: options.filter((o) => o.log > most - 25) };
   }
 
-  /** Gain of starting the clock filter afresh after each slot. */
-  private freshGains(slots: Slots, mask: number, running: Trace): Float64Array {
-    const out = new Float64Array(slots.length + 1);
-    for (let s = 0; s < slots.length; s++) {
-      if (slots.own[s] === 0 && slots.pulse[s] % 9 !== 8) continue;
-      out[s] = freshGain(this.ledger, slots, s + 1, this.signature(mask), running, this.sampling);
-    }
-    return out;
+  /** Gain of starting the clock filter afresh after a slot; few slots are asked for, each perhaps more than once. */
+  private freshGains(slots: Slots, mask: number, running: Trace): Fresh {
+    const signature = this.signature(mask);
+    const known = new Float64Array(slots.length).fill(Number.NaN);
+    return (s) => {
+      if (Number.isNaN(known[s])) {
+        const silent = slots.own[s] === 0 && slots.pulse[s] % 9 !== 8;
+        known[s] = silent ? 0 : freshGain(this.ledger, slots, s + 1, signature, running, this.sampling);
+      }
+      return known[s];
+    };
   }
 
   /** Three drive, `x` yields, two drive, `y` yields, `a` keeps the bus. */
@@ -185,7 +188,7 @@ export class Scales {
             for (const l of last) {
               if (e.at > l.at || e.end > l.end) continue;
               // The fresh start after the first leaving is forgotten where the second follows at once.
-              const log = base + e.log + l.log - (l.end === e.end ? freshTwo[e.end] : 0);
+              const log = base + e.log + l.log - (l.end === e.end ? freshTwo(e.end) : 0);
               out.push({ a, b: y, at: l.at, mode: l.mode, early: { b: x, at: e.at, mode: e.mode }, log });
             }
           }
@@ -199,6 +202,8 @@ function topOf(options: readonly Option[]): Option {
   return options.reduce((x, y) => (y.log > x.log ? y : x));
 }
 
+type Fresh = (slot: number) => number;
+
 interface Leaving {
   readonly at: number;
   readonly end: number;
@@ -207,7 +212,7 @@ interface Leaving {
 }
 
 /** Log weight of `b` yielding at each slot, against what is left driving alone: `more` with it, `less` without it. */
-function leavings(slots: Slots, rival: Rival, more: Trace, less: Trace, fresh: Float64Array): Leaving[] {
+function leavings(slots: Slots, rival: Rival, more: Trace, less: Trace, fresh: Fresh): Leaving[] {
   const out: Leaving[] = [];
   const low = gains(more.low, less.low);
   const high = gains(more.high, less.high);
@@ -221,7 +226,7 @@ function leavings(slots: Slots, rival: Rival, more: Trace, less: Trace, fresh: F
       const g = lastTogether(slots, k, mode);
       if (mode !== LEAVES && g === k) continue;
       const lastHigh = logAdd(Math.log(0.5) + more.high[g], Math.log(0.5) + less.high[g]) - less.high[g];
-      const log = low[g + 1] + high[g] + lastHigh + data[k] + sda[k] + scl[g + 1] + fresh[g] + prior;
+      const log = low[g + 1] + high[g] + lastHigh + data[k] + sda[k] + scl[g + 1] + fresh(g) + prior;
       out.push({ at: k, end: g, mode, log });
     }
   }
@@ -235,7 +240,7 @@ function pairOptions(
   b: number,
   one: Trace,
   both: Trace,
-  fresh: Float64Array,
+  fresh: Fresh,
   start: number,
   rival: Rival,
 ): void {

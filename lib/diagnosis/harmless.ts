@@ -26,6 +26,11 @@ export const HARMLESS_WORDS: Readonly<Record<HarmlessKind, HarmlessWords>> = {
     title: "SDA pulse while SCL is low",
     meaning: "SDA may change as often as it likes while SCL is low (UM10204 3.1.3); only its level at the rise of SCL counts.",
   },
+  "crosstalk-dip": {
+    title: "Dip that crosses no threshold",
+    meaning:
+      "A high was pulled down, mostly by an edge on a line beside it, and came back without reaching VIH. No receiver sees it; it eats noise margin (UM10204 Table 10, VnH).",
+  },
 };
 
 interface Found {

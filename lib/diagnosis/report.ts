@@ -125,7 +125,7 @@ export const FaultSchema = z.object({
   detail: z.string(),
 });
 
-export const HARMLESS_KINDS = ["read-end-nack", "ack-handover", "low-pulse"] as const;
+export const HARMLESS_KINDS = ["read-end-nack", "ack-handover", "low-pulse", "crosstalk-dip"] as const;
 
 /** What looks like a fault and is none: every occurrence is counted, the first hundred are listed. */
 export const HarmlessSchema = z.object({

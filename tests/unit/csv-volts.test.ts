@@ -89,6 +89,29 @@ describe("comparator", () => {
     expect(found.width).toBe(300_000 + 100_000 - 2 * 55_000);
   });
 
+  test("a dip that stays above VIH is kept as a graze, told from the beginning of a fall, and from steps of a low", async () => {
+    const rows = volts(INTERVAL, 300, { scl: 0, sda: 0 }, FRAMES);
+    const plain = await readText(csv(rows));
+    expect(plain.tail.excursions).toEqual([]);
+    // To 2.7 V for 300 ns on the idle SDA, and to 2.6 and 2.8 V on SCL.
+    for (let i = 100; i < 103; i += 1) rows[i] = { ...rows[i], w: 2.7 };
+    rows[150] = { ...rows[150], v: 2.6 };
+    rows[151] = { ...rows[151], v: 2.8 };
+    // A low that another driver takes over at 0.4 V for a while.
+    const low = rows.findIndex((_, i) => i > 300 && rows.slice(i - 5, i + 15).every(({ v }) => v === 0));
+    for (let i = low; i < low + 5; i += 1) rows[i] = { ...rows[i], v: 0.4 };
+    const read = await readText(csv(rows));
+    expect(read.ticks).toEqual(plain.ticks);
+    expect(read.tail.excursionCount).toBe(0);
+    expect(read.tail.excursions).toEqual([
+      { line: "sda", tick: 10_000_000, width: 300_000, extreme_v: 2.7 },
+      { line: "scl", tick: 15_000_000, width: 200_000, extreme_v: 2.6 },
+    ]);
+    // Rows that no form fits are read one by one, and say the same.
+    const spaced = csv(rows).replaceAll(/^(.*),(.*),(.*)$/gm, (line, t, v, w) => (t.endsWith("3") ? `${t}, ${v} , ${w}` : line));
+    expect((await readText(spaced)).tail.excursions).toEqual(read.tail.excursions);
+  });
+
   test("given levels win: VDD, VIL, VIH", async () => {
     const text = csv(volts(INTERVAL, 1000, { scl: 0, sda: 0 }, FRAMES));
     const vdd = await readText(text, { vdd_v: 3 });

@@ -360,9 +360,9 @@ describe("in volts", () => {
 
   // Of this write the low before the ninth bit lies from 108 500 to 114 000 ns; the fifth bit is low from 66 500 to 72 000 ns and then
   // high until 77 000 ns.
-  const visited = (line: "scl" | "sda", tick: number) => {
+  const visited = (line: "scl" | "sda", tick: number, extreme_v = 1.6) => {
     const script = new LineScript().write(0xa0, 0x55);
-    const excursion = { line, tick, width: 300, extreme_v: 1.6 } as const;
+    const excursion = { line, tick, width: 300, extreme_v } as const;
     return reportOf(captureOf([inVolts(script, 200, () => 0.1)], script.now, VOLTS, [excursion]));
   };
 
@@ -370,6 +370,14 @@ describe("in volts", () => {
     const report = await visited("sda", 75_000);
     expect(only(report, "between-thresholds").detail).toContain("SDA went to 1.60 V for 300 ns");
     expect(report.harmless).toEqual([]);
+  });
+
+  test("a dip that reaches no threshold is harmless, on either line", async () => {
+    for (const line of ["scl", "sda"] as const) {
+      const report = await visited(line, 75_000, 2.5);
+      expect(report.faults).toEqual([]);
+      expect(report.harmless).toMatchObject([{ kind: "crosstalk-dip", count: 1, places: [{ transaction: 0 }] }]);
+    }
   });
 
   test.each([

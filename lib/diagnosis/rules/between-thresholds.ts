@@ -10,7 +10,12 @@ export const betweenThresholds: Rule = {
   meta: { kind: "between-thresholds", clause: "UM10204 Rev 7 Table 10, VIL and VIH" },
   watch: (findings) => ({
     conclude(end) {
+      const { vih_v } = end.head;
       for (const { line, tick, width, extreme_v } of end.tail.excursions) {
+        if (vih_v !== null && extreme_v >= vih_v) {
+          findings.harmless("crosstalk-dip", tick);
+          continue;
+        }
         const slot = line === "sda" ? end.lowSlot(tick, width) : null;
         if (slot !== null) {
           findings.harmless(slot === 0 || slot === 8 ? "ack-handover" : "low-pulse", tick);

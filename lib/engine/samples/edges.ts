@@ -37,7 +37,10 @@ export interface VoltColumns {
   readonly meanSda: Float32Array;
 }
 
-/** A visit between the thresholds that never became a level (volts): rose past VIL but not VIH, or fell past VIH but not VIL. */
+/**
+ * What a line in volts did without changing its level: a visit between the thresholds (rose past VIL but not VIH, or fell past VIH but
+ * not VIL), or a graze, whose extreme is not below VIH: it left the settled high and came back without reaching VIH.
+ */
 export interface Excursion {
   readonly line: "scl" | "sda";
   readonly tick: number;

@@ -1,5 +1,6 @@
 // In: samples of one line, in order. Out: its levels through a comparator with hysteresis: a rise is decided at VIH, a
-// fall at VIL, at crossing times interpolated between samples; and visits between the two that decided nothing.
+// fall at VIL, at crossing times interpolated between samples; visits between the two that decided nothing; and grazes, which leave
+// the settled high and come back without reaching VIH.
 
 import type { Excursion } from "../edges";
 import type { RowBlock } from "./block";
@@ -11,6 +12,12 @@ export interface Thresholds {
   /** Change within the settling window up to which a sample counts as settled. */
   readonly settle: number;
 }
+
+/** Told when the line is back: since when it was away, for how long, and how far. */
+export type Visitor = (tick: number, width: number, extreme: number) => void;
+
+/** How far from the settled level a graze goes at least, in tolerances of settling: what noise does is none. */
+const GRAZE = 2;
 
 /** Longest settling window in samples. */
 export const WINDOW_LIMIT = 64;
@@ -35,12 +42,18 @@ export class Comparator {
   private count = 0;
   private readonly ring: Float64Array;
   private at = 0;
+  /** Since when the line grazes; NaN while it does not. */
+  private grazeAt = Number.NaN;
+  private grazeBase = 0;
+  private grazeExtreme = 0;
 
   /** `window`: samples over which a settled line may change by no more than `settle`. */
   constructor(
     thresholds: Thresholds,
     window: number,
-    private readonly visit: (tick: number, width: number, extreme: number) => void,
+    private readonly visit: Visitor,
+    /** Told of grazes; null where nobody asks for them. */
+    private readonly grazed: Visitor | null = null,
   ) {
     this.vil = thresholds.vil;
     this.vih = thresholds.vih;
@@ -68,9 +81,10 @@ export class Comparator {
     if (this.between || this.level === 2) return;
     const change = v - ago;
     if (change <= this.settle && change >= -this.settle) {
+      if (!Number.isNaN(this.grazeAt)) this.graze(this.previousTick, v, 0);
       this.sum += v;
       this.count += 1;
-    }
+    } else if (this.count > 0) this.graze(this.previousTick, v, this.sum / this.count);
   }
 
   /** Whether the sample changes nothing but the mean: the level is decided and the sample lies on its side. */
@@ -107,6 +121,7 @@ export class Comparator {
     const { readings, width, ticks } = block;
     const { ring, settle } = this;
     const window = ring.length;
+    let grazes = !Number.isNaN(this.grazeAt);
     let { at, sum, count } = this;
     for (let i = from, place = from * width + slot; i < to; i += 1, place += width) {
       const v = readings[place];
@@ -114,9 +129,10 @@ export class Comparator {
       ring[at] = v;
       at = at + 1 === window ? 0 : at + 1;
       if (change <= settle && change >= -settle) {
+        if (grazes) grazes = this.graze(ticks[i], v, 0);
         sum += v;
         count += 1;
-      }
+      } else if (count > 0) grazes = this.graze(ticks[i], v, sum / count);
     }
     this.at = at;
     this.sum = sum;
@@ -138,9 +154,30 @@ export class Comparator {
     this.level = 2;
     this.between = false;
     this.leftAt = Number.NaN;
+    this.grazeAt = Number.NaN;
     this.previous = Number.NaN;
     this.previousTick = Number.NaN;
     this.ring.fill(Number.NaN);
+  }
+
+  /**
+   * Follows a sample above VIH, away from the settled `mean` or back; whether it is still away. A low is not followed: its steps are
+   * drivers that take over from each other.
+   */
+  private graze(tick: number, v: number, mean: number): boolean {
+    if (this.grazed === null || this.level !== 1) return false;
+    if (Number.isNaN(this.grazeAt)) {
+      if (mean - v < GRAZE * this.settle) return false;
+      this.grazeAt = tick;
+      this.grazeBase = mean;
+      this.grazeExtreme = v;
+      return true;
+    }
+    if (v < this.grazeExtreme) this.grazeExtreme = v;
+    if (this.grazeBase - v > this.settle) return true;
+    this.grazed(this.grazeAt, tick - this.grazeAt, this.grazeExtreme);
+    this.grazeAt = Number.NaN;
+    return false;
   }
 
   private lose(tick: number): boolean {
@@ -164,6 +201,7 @@ export class Comparator {
   private dip(tick: number, v: number): boolean {
     if (!this.between) {
       this.leftAt = this.crossing(tick, v, this.vih);
+      this.grazeAt = Number.NaN;
       this.between = true;
       this.extreme = v;
     } else if (v < this.extreme) this.extreme = v;
@@ -204,19 +242,36 @@ export class Comparator {
   }
 }
 
-/** Keeps the first excursions and counts all. */
+/** Keeps the first excursions and counts all; of grazes, which lead nowhere, it keeps fewer and counts none. */
 export class Excursions {
-  readonly list: Excursion[] = [];
+  private readonly kept: Excursion[] = [];
   count = 0;
   private static readonly KEPT = 10_000;
+  /** For each line. */
+  private static readonly GRAZES = 1_000;
 
   /** `volts`: false where the numbers have no scale, so that no voltage is shown. */
   constructor(private readonly volts: boolean) {}
 
-  visitor(line: "scl" | "sda"): (tick: number, width: number, extreme: number) => void {
+  /** In order of time: runs of quiet samples are taken one line after the other. */
+  get list(): readonly Excursion[] {
+    return this.kept.toSorted((a, b) => a.tick - b.tick || (a.line < b.line ? -1 : 1));
+  }
+
+  visitor(line: "scl" | "sda"): Visitor {
     return (tick, width, extreme) => {
       this.count += 1;
-      if (this.list.length < Excursions.KEPT) this.list.push({ line, tick, width, extreme_v: this.volts ? extreme : Number.NaN });
+      if (this.count <= Excursions.KEPT) this.kept.push({ line, tick, width, extreme_v: this.volts ? extreme : Number.NaN });
+    };
+  }
+
+  /** Null where the numbers have no scale: what is a graze there is not shown anyway. */
+  grazer(line: "scl" | "sda"): Visitor | null {
+    if (!this.volts) return null;
+    let seen = 0;
+    return (tick, width, extreme) => {
+      seen += 1;
+      if (seen <= Excursions.GRAZES) this.kept.push({ line, tick, width, extreme_v: extreme });
     };
   }
 }

@@ -108,7 +108,11 @@ interface BusLine {
 
 function busLine(job: BodyJob, selection: Selection, judged: JudgedLevels, excursions: Excursions): BusLine {
   const window = windowOf(job.body);
-  return { job, selection, comparator: (which) => new Comparator(judged[which], window, excursions.visitor(which)) };
+  return {
+    job,
+    selection,
+    comparator: (which) => new Comparator(judged[which], window, excursions.visitor(which), excursions.grazer(which)),
+  };
 }
 
 function bind(line: BusLine, taker: RowTaker & { finish(): void }, fast: (rows: Rows) => FastPath | null): Bound {

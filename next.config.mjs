@@ -7,6 +7,8 @@ const config = {
   // "npm test" checks the types of the whole tree; building on somebody's machine need not do it again.
   typescript: { ignoreBuildErrors: true },
   reactStrictMode: true,
+  // A browser asks for this by itself where it has not seen the page's own icon yet.
+  rewrites: async () => [{ source: "/favicon.ico", destination: "/icon.svg" }],
   serverExternalPackages: [
     "@mikro-orm/core",
     "@mikro-orm/knex",

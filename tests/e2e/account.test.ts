@@ -180,3 +180,9 @@ test("every page has a content policy of its own and tells its address to no oth
   }
   expect(nonces.size).toBe(4);
 });
+
+test("the icon is there under the name that browsers ask for by themselves, too", async ({ request }) => {
+  const answer = await request.get("/favicon.ico");
+  expect(answer.status()).toBe(200);
+  expect(answer.headers()["content-type"]).toContain("image/svg+xml");
+});

@@ -20,6 +20,8 @@ export interface TransferView {
 
 let count = 0;
 const PARALLEL = 2;
+/** How long a part on its way is waited for after another broke off. */
+const GRACE_MS = 5000;
 /** Seconds between tries while the connection is gone; the browser's "online" event cuts the wait short. */
 const WAITS_S = [1, 2, 4, 8, 15];
 
@@ -163,13 +165,26 @@ export class Transfer {
   private async sendParts(arrived: () => void): Promise<void> {
     const { parts = 0 } = this.upload ?? {};
     const missing = Array.from({ length: parts }, (_, i) => i + 1).filter((n) => !this.etags.has(n));
+    let broken = false;
     const lane = async () => {
-      for (let number = missing.shift(); number !== undefined && this.running; number = missing.shift()) {
-        await this.sendPart(number);
+      for (let number = missing.shift(); number !== undefined && this.running && !broken; number = missing.shift()) {
+        try {
+          await this.sendPart(number);
+        } catch (error) {
+          broken = true;
+          throw error;
+        }
         arrived();
       }
     };
-    await Promise.all(Array.from({ length: PARALLEL }, lane));
+    const lanes = Array.from({ length: PARALLEL }, lane);
+    try {
+      await Promise.all(lanes);
+    } catch (error) {
+      // What is on its way beside the part that broke off may still arrive, and need not be sent again.
+      await Promise.race([Promise.allSettled(lanes), new Promise((done) => setTimeout(done, GRACE_MS))]);
+      throw error;
+    }
   }
 
   private async sendPart(number: number): Promise<void> {

@@ -210,6 +210,9 @@ function isMixtureOf(features: Features, group: Group, keeper: Group, other: Gro
   const driven = share === 1 && length > 3.5 && group.length > ONE_BYTE;
   // A handful may have been kept by the one here and by the other there.
   const handful = group.members.length <= FEW;
+  // Two drivers sink lower than either, so that no mixture stands above whoever drives it alone for the rest.
+  const top = handful ? Math.max(keeper.mean[F_SDA_LEVEL], other.mean[F_SDA_LEVEL]) : keeper.mean[F_SDA_LEVEL];
+  if (z(F_SDA_LEVEL, top) > 3.5) return false;
   const end = (f: number): number => (handful ? other.mean[f] : driven ? both(f) : keeper.mean[f]);
   return [F_FALL, F_RISE].every((f) => between(z(f, handful ? keeper.mean[f] : both(f)), z(f, end(f))));
 }

@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import type { Trial } from "@/fixtures/calibration/corpus";
+import { corpusTrial, type Trial } from "@/fixtures/calibration/corpus";
 import { concludeTrial } from "@/fixtures/calibration/trial";
 import { controller, scenario, target } from "@/lib/simulation/plan";
 import { createRandom } from "@/lib/simulation/random";
@@ -173,6 +173,18 @@ describe("forensics on simulated buses", () => {
     const { outcome } = concludeTrial(alone);
     expect(outcome.controllers).toHaveLength(1);
     expect(outcome.contests).toEqual([]);
+  });
+
+  test("a controller whose clock lies between two others' is none of their contests, for its low level stands above both", () => {
+    // Seed 1252 of the corpus: three controllers in volts, the second of them with the longer of the others' lows, nearly, and the
+    // shorter of their highs.
+    const trial = corpusTrial(1252);
+    const { outcome, recording } = concludeTrial(trial);
+    expect(outcome.controllers).toHaveLength(3);
+    const contested = new Set(recording.truth.yields.map(({ transaction }) => transaction));
+    const ties = recording.truth.transactions.flatMap(({ controllers }, t) => (controllers.length > 1 ? [t] : []));
+    const real = new Set([...contested, ...ties]);
+    expect(outcome.contests.filter(({ transaction, probability }) => probability >= 0.5 && !real.has(transaction))).toEqual([]);
   });
 
   test("a pair that would leave no trace is named, from the one side only, and not where a tap would show it", () => {

@@ -80,10 +80,14 @@ export function useCase(initial: CaseView): CaseHandle {
       },
     );
 
-  const keepNote = (note: NoteFile) => {
-    const others = view.notes.filter((other) => other.id !== note.id);
-    return mutate({ ...view, notes: [...others, note].sort((a, b) => a.number - b.number) }, { revalidate: false });
-  };
+  // On the case as it stands by then: while the server answered, a capture may have arrived or been read.
+  const put = (change: (now: CaseView) => CaseView) => mutate((now) => change(now ?? view), { revalidate: false });
+
+  const keepNote = (note: NoteFile) =>
+    put((now) => {
+      const others = now.notes.filter((other) => other.id !== note.id);
+      return { ...now, notes: [...others, note].sort((a, b) => a.number - b.number) };
+    });
 
   const editNote = (note: NoteFile, text: string) =>
     attempt(
@@ -115,13 +119,13 @@ export function useCase(initial: CaseView): CaseHandle {
     removeNote: (note) =>
       attempt(async () => {
         await ask({ method: "DELETE", path: `${path}/notes/${note.id}`, body: { version: note.version } });
-        await mutate({ ...view, notes: view.notes.filter((other) => other.id !== note.id) }, { revalidate: false });
+        await put((now) => ({ ...now, notes: now.notes.filter((other) => other.id !== note.id) }));
       }),
     changeTags: (change) =>
       attempt(async () => {
         const { added, removed } = await ask({ method: "POST", path: `${path}/tags`, body: change, answer: TagsAnswerSchema });
         const gone = new Set([...removed, ...added.map((tag) => tag.id)]);
-        await mutate({ ...view, tags: [...view.tags.filter((tag) => !gone.has(tag.id)), ...added] }, { revalidate: false });
+        await put((now) => ({ ...now, tags: [...now.tags.filter((tag) => !gone.has(tag.id)), ...added] }));
       }),
     settle: async (choice) => {
       if (conflict === null) return true;

@@ -230,3 +230,20 @@ test("support's way: read, ask in a note, and nothing more", async ({ page, brow
   expect(refused.map((answer) => answer.status())).toEqual([403, 403, 403, 403, 403, 403]);
   expect((await page.goto("/cases/new"))?.status()).toBe(404);
 });
+
+test("a tag that is answered late takes nothing back that came meanwhile", async ({ page }) => {
+  await signIn(page, "engineer");
+  const number = await openCase(page, titled("Late answer"), busCsv("late.csv"));
+  await expect(page.getByText("the bus carried 21 transactions")).toBeVisible();
+  // The tag is answered only once the archive is kept and the page has learned of it.
+  await page.route(/\/tags$/, async (route) => {
+    const answer = await route.fetch();
+    await kept(page, number);
+    await expect(page.getByRole("link", { name: "Report" })).toBeVisible();
+    await route.fulfill({ response: answer });
+  });
+  await page.keyboard.press("n");
+  await page.keyboard.press("2");
+  await expect(row(page, 6)).toContainText("not acknowledged");
+  await expect(page.getByRole("link", { name: "Report" })).toBeVisible();
+});

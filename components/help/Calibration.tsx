@@ -60,7 +60,8 @@ export function Calibration({ figures }: { figures: CalibrationFigures }) {
           </Table>
           <p className="mt-2 max-w-[56ch] font-serif text-body">
             Many contests leave no trace on two wires: both controllers' clocks are alike, or the sampling is too slow to tell.
-            They are among those not found.
+            They are among those not found. Many of the false ones stand in a few captures where one controller was not told from
+            the others: look at the number of controllers first.
           </p>
           <ul className="mt-4 max-w-[56ch] space-y-1.5 font-serif text-body">
             <li>
